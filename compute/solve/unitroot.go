@@ -1,0 +1,80 @@
+package solve
+
+import "math"
+
+// A Ratio is a positive function of a positive variable with its logarithmic slope dln(ratio)/dln(x).
+// Functions of depth run like powers of it, so that their logarithms are nearly straight lines.
+type Ratio func(x float64) (ratio, power float64)
+
+// mostSteps bounds the work of UnitRoot; the bisection inside it needs fewer than 80 for any bracket of floats.
+const mostSteps = 240
+
+// UnitRoot returns the x in [lo, hi] at which f is one, where f rises there (or falls, if rising is false) through one.
+// and is continuous. lo may be 0 and hi +Inf. ok is false where the function turns out not to be a number, or in the
+// end did not converge; x is then the best point seen and no answer.
+//
+// Steps are Newton's on ln f over ln x with the logarithm and the exponential replaced by their Pade approximants [1/1]
+// (which makes them rational and of bounded length); a step that leaves the bracket, or a bracket that shrinks too slowly, is
+// answered by bisection in the logarithm. It does not allocate.
+func UnitRoot(f Ratio, lo, hi, guess float64, rising bool) (x float64, ok bool) {
+	x = guess
+	if !(x > lo && x < hi) {
+		x = middle(lo, hi)
+	}
+	best, bestError := x, math.Inf(1)
+	for step := range mostSteps {
+		ratio, power := f(x)
+		e := ratio - 1
+		if e == 0 {
+			return x, true
+		}
+		if e != e {
+			return x, false
+		}
+		if a := math.Abs(e); a < bestError {
+			best, bestError = x, a
+		}
+		if (e < 0) == rising {
+			lo = x
+		} else {
+			hi = x
+		}
+		d := -2 / power // the limit for an immense ratio
+		if ratio < 1e100 {
+			d *= e / (ratio + 1)
+		}
+		next := x * (2 + d) / (2 - d)
+		switch {
+		case !(d > -1.5 && d < 1.5) || step > 8 && step%3 == 0 && !(math.Abs(d) < 1e-9):
+			next = middle(lo, hi)
+		case math.Abs(d) < 1e-11 && math.Abs(e) < 1e-9:
+			// The next error is of the order of d squared: below the last place.
+			if next >= lo && next <= hi {
+				return next, true
+			}
+			return best, true
+		case !(next > lo && next < hi):
+			next = middle(lo, hi)
+		}
+		if next == x || !(next > lo && next < hi) {
+			return best, true // the bracket or the step has shrunk below the last place
+		}
+		x = next
+	}
+	return best, false
+}
+
+// middle returns a point between two bounds, geometrically where they are far apart.
+func middle(lo, hi float64) float64 {
+	switch {
+	case lo == 0 && math.IsInf(hi, 1):
+		return 1
+	case lo == 0:
+		return hi / 16
+	case math.IsInf(hi, 1):
+		return lo * 16
+	case hi > 4*lo:
+		return math.Sqrt(lo) * math.Sqrt(hi)
+	}
+	return lo + (hi-lo)/2
+}
