@@ -1,0 +1,103 @@
+package friction
+
+import (
+	"math"
+
+	"leat/compute/section"
+)
+
+// Power is a law in which the conveyance is a constant times a power of the hydraulic radius,
+//
+//	K = C * A * R^(2/3)   with Form Manning
+//	K = C * A * R^(1/2)   with Form Chezy
+//
+// so that it depends neither on slope nor on discharge. It is exported for solvers that treat such a law in closed form:
+// they test for it with a type assertion to Power.
+type Power struct {
+	C    float64 // m^(1/3)/s for Manning's and Strickler's law, m^(1/2)/s for Chezy's
+	form Form
+}
+
+// NewManning returns Manning's law, K = A R^(2/3)/n with n in s/m^(1/3) (R. Manning 1891, in the form of common practice).
+// It fails with compute.Faults where n is not from 1e-6 to 1e3.
+func NewManning(n float64) (Law, error) {
+	if faults := withinManning(nil, "manning", n); len(faults) > 0 {
+		return nil, faults
+	}
+	return Power{C: 1 / n, form: Manning}, nil
+}
+
+// NewStrickler returns the law of Gauckler and Strickler, K = k A R^(2/3) with k = 1/n in m^(1/3)/s (A. Strickler 1923).
+// It fails with compute.Faults where k is not from 1e-3 to 1e6.
+func NewStrickler(k float64) (Law, error) {
+	if faults := within(nil, "strickler", "Strickler coefficient", k, leastStrickler, greatestStrickler); len(faults) > 0 {
+		return nil, faults
+	}
+	return Power{C: k, form: Manning}, nil
+}
+
+// NewChezy returns Chezy's law, K = C A R^(1/2) with C in m^(1/2)/s (A. de Chezy 1768).
+// It fails with compute.Faults where C is not from 1e-3 to 1e6.
+func NewChezy(c float64) (Law, error) {
+	if faults := within(nil, "chezy", "Chezy coefficient", c, leastChezy, greatestChezy); len(faults) > 0 {
+		return nil, faults
+	}
+	return Power{C: c, form: Chezy}, nil
+}
+
+// Exponent returns the power of the hydraulic radius: 2/3 or 1/2.
+func (p Power) Exponent() float64 {
+	if p.form == Chezy {
+		return 1. / 2
+	}
+	return 2. / 3
+}
+
+// At returns the conveyance, which is the same at every slope and discharge.
+func (p Power) At(g section.Geometry) Conveyance {
+	if !(g.Area > 0 && g.Perimeter > 0) {
+		return Conveyance{}
+	}
+	if p.form == Chezy {
+		speed := p.C * math.Sqrt(g.Area/g.Perimeter)
+		return Conveyance{
+			K:    speed * g.Area,
+			Rate: speed * (1.5*g.TopWidth - 0.5*g.Area/g.Perimeter*g.PerimeterRate),
+		}
+	}
+	return manning(g, p.C)
+}
+
+// AtSlope implements Law.
+func (p Power) AtSlope(g section.Geometry, _ float64) Conveyance { return p.At(g) }
+
+// AtDischarge implements Law.
+func (p Power) AtDischarge(g section.Geometry, _ float64) Conveyance { return p.At(g) }
+
+// Coefficients implements Law: the section is one, so both are 1.
+func (p Power) Coefficients(section.Geometry) Coefficients { return one }
+
+// Breaks implements Law: there are none.
+func (p Power) Breaks() []float64 { return nil }
+
+// Form implements Law.
+func (p Power) Form() Form { return p.form }
+
+// one is what every law answers that treats the section as one.
+var one = Coefficients{Energy: 1, Momentum: 1}
+
+// manning returns c A R^(2/3) and its derivative c R^(2/3) (5/3 T - 2/3 R dP/dy).
+func manning(g section.Geometry, c float64) Conveyance {
+	radius := g.Area / g.Perimeter
+	speed := c * twoThirds(radius)
+	return Conveyance{
+		K:    speed * g.Area,
+		Rate: speed * (5*g.TopWidth - 2*radius*g.PerimeterRate) / 3,
+	}
+}
+
+// twoThirds returns x^(2/3).
+func twoThirds(x float64) float64 {
+	root := math.Cbrt(x)
+	return root * root
+}
