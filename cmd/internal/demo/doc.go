@@ -1,0 +1,6 @@
+// Package demo makes the register of Ostermere: the drainage assets of an invented fen district, as the people who keep such
+// registers would hand them over. Everything in it is made up: places, sizes, surveys and flows.
+//
+// The register is a list of requests for the `depths` operation, one JSON object a line. A fixed seed gives the same bytes on
+// every run. Some twenty rows are wrong on purpose; Mistakes lists them with what a caller must be told.
+package demo
