@@ -1,0 +1,36 @@
+package wire
+
+// Number is a number that a request may leave out. After Decode it is in SI units.
+type Number struct {
+	Value float64
+	Given bool
+}
+
+// Or returns the value, or another where none was given.
+func (n Number) Or(other float64) float64 {
+	if n.Given {
+		return n.Value
+	}
+	return other
+}
+
+// Whole is a whole number that a request may leave out.
+type Whole struct {
+	Value int
+	Given bool
+}
+
+// Or returns the value, or another where none was given.
+func (w Whole) Or(other int) int {
+	if w.Given {
+		return w.Value
+	}
+	return other
+}
+
+// ID is a caller's id as the JSON literal that stood in the request, quotes included; nil where none was given.
+// It is a part of the body that was decoded and lives no longer than that.
+type ID []byte
+
+// MaxIDCharacters is the length of the longest id that is a string.
+const MaxIDCharacters = 256

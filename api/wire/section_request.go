@@ -1,0 +1,12 @@
+package wire
+
+// SectionRequest asks for geometry and hydraulics at given depths. Exactly one of Depth and Depths is given.
+type SectionRequest struct {
+	Common
+	Section   Section   `json:"section" validate:"required"`
+	Depth     Number    `json:"depth" quantity:"length" validate:"omitempty,gte=1e-18,lte=1e9"`
+	Depths    []float64 `json:"depths" quantity:"length" validate:"omitempty,min=1,dive,gte=1e-18,lte=1e9"`
+	Roughness Roughness `json:"roughness"`
+	BedSlope  Number    `json:"bed_slope" validate:"omitempty,gt=-1,lt=1,floor=1e-15"`
+	Discharge Number    `json:"discharge" quantity:"discharge" validate:"omitempty,gte=1e-15,lte=1e12"`
+}

@@ -1,0 +1,32 @@
+package wire
+
+import "strconv"
+
+// summary returns the one sentence that stands for all faults: the first, with where it is and how many others there are.
+func summary(faults []Fault) string {
+	if len(faults) == 0 {
+		return ""
+	}
+	first := faults[0].Where() + faults[0].Detail
+	switch n := len(faults) - 1; n {
+	case 0:
+		return first
+	case 1:
+		return first + " (and 1 other fault)"
+	default:
+		return first + " (and " + strconv.Itoa(n) + " other faults)"
+	}
+}
+
+// Where returns the place of a fault as text that a sentence can follow: its pointer, parameter or column and a colon; empty for the top of a request.
+func (f Fault) Where() string {
+	switch {
+	case f.Parameter != "":
+		return f.Parameter + ": "
+	case f.Column != "":
+		return f.Column + ": "
+	case f.Pointer != "":
+		return f.Pointer + ": "
+	}
+	return ""
+}
