@@ -13,9 +13,9 @@ const mostSteps = 240
 // and is continuous. lo may be 0 and hi +Inf. ok is false where the function turns out not to be a number, or in the
 // end did not converge; x is then the best point seen and no answer.
 //
-// Steps are Newton's on ln f over ln x with the logarithm and the exponential replaced by their Pade approximants [1/1]
-// (which makes them rational and of bounded length); a step that leaves the bracket, or a bracket that shrinks too slowly, is
-// answered by bisection in the logarithm. It does not allocate.
+// Steps are Newton's on ln f over ln x: far from the root with a rough power, near it with the logarithm and the exponential
+// replaced by their Pade approximants [1/1], which makes them rational. A step that leaves the bracket, or a bracket that
+// shrinks too slowly, is answered by bisection in the logarithm. It does not allocate.
 func UnitRoot(f Ratio, lo, hi, guess float64, rising bool) (x float64, ok bool) {
 	x = guess
 	if !(x > lo && x < hi) {
@@ -39,13 +39,13 @@ func UnitRoot(f Ratio, lo, hi, guess float64, rising bool) (x float64, ok bool) 
 		} else {
 			hi = x
 		}
-		d := -2 / power // the limit for an immense ratio
-		if ratio < 1e100 {
-			d *= e / (ratio + 1)
-		}
+		d := -2 * e / ((ratio + 1) * power)
 		next := x * (2 + d) / (2 - d)
+		if ratio > 4 || ratio < 0.25 {
+			next = x * roughPower(ratio, -1/power)
+		}
 		switch {
-		case !(d > -1.5 && d < 1.5) || step > 8 && step%3 == 0 && !(math.Abs(d) < 1e-9):
+		case d == 0 || !(d > -1.5 && d < 1.5) || step > 8 && step%3 == 0 && !(math.Abs(d) < 1e-9):
 			next = middle(lo, hi)
 		case math.Abs(d) < 1e-11 && math.Abs(e) < 1e-9:
 			// The next error is of the order of d squared: below the last place.
@@ -77,4 +77,15 @@ func middle(lo, hi float64) float64 {
 		return math.Sqrt(lo) * math.Sqrt(hi)
 	}
 	return lo + (hi-lo)/2
+}
+
+// roughPower returns x^p within some percent, for x > 0, from the bits of x taken as its logarithm. Where the
+// result is no normal number it returns NaN.
+func roughPower(x, p float64) float64 {
+	const one = 0x3FF << 52
+	exponent := p * float64(int64(math.Float64bits(x))-one)
+	if !(math.Abs(exponent) < 1000<<52) {
+		return math.NaN()
+	}
+	return math.Float64frombits(uint64(int64(exponent) + one))
 }
