@@ -41,4 +41,7 @@ const (
 	Manning
 	// Chezy promises K = C*A*R^(1/2) with such a constant.
 	Chezy
+	// Whole promises a conveyance that is the area times a function of the hydraulic radius alone that rises with it, and
+	// coefficients of 1 (Colebrook-White).
+	Whole
 )

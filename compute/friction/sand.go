@@ -110,7 +110,7 @@ func (s SandRoughness) Coefficients(section.Geometry) Coefficients { return one 
 func (s SandRoughness) Breaks() []float64 { return nil }
 
 // Form implements Law.
-func (s SandRoughness) Form() Form { return General }
+func (s SandRoughness) Form() Form { return Whole }
 
 // DarcyFactor returns the Darcy-Weisbach friction factor f of Colebrook and White at a Reynolds number and a relative roughness
 // ks/D (0 is smooth), and whether there is one: there is none where the relative roughness reaches 3.7.

@@ -1,0 +1,4 @@
+package friction
+
+// Colebrook lets tests count the Newton steps.
+var Colebrook = colebrook
