@@ -1,0 +1,118 @@
+package serve
+
+import (
+	"context"
+	"errors"
+	"io"
+	"net/http"
+	"os"
+	"sync"
+	"sync/atomic"
+
+	"leat/api/wire"
+)
+
+// A larder holds the request bodies that are in memory and bounds their sum. Room is taken as bytes arrive, so that a caller who
+// announces much and sends little holds little.
+type larder struct {
+	room    int64
+	held    atomic.Int64
+	buffers sync.Pool
+}
+
+// keptBuffer is the size of a fresh buffer; larger ones are not kept for reuse.
+const keptBuffer = 16 << 10
+
+func newLarder(room int64) *larder {
+	return &larder{room: room, buffers: sync.Pool{New: func() any { return new([keptBuffer]byte) }}}
+}
+
+func (l *larder) take(n int64) bool {
+	if l.held.Add(n) > l.room {
+		l.held.Add(-n)
+		return false
+	}
+	return true
+}
+
+// A body is a request body in memory. Release it when it is done with.
+type body struct {
+	bytes  []byte
+	larder *larder
+	held   int64
+	pooled *[keptBuffer]byte
+}
+
+func (b *body) release() {
+	b.larder.held.Add(-b.held)
+	b.held = 0
+	b.bytes = nil
+	if b.pooled != nil {
+		b.larder.buffers.Put(b.pooled)
+		b.pooled = nil
+	}
+}
+
+// errGone is the error of a client that is no longer there to be answered.
+var errGone = errors.New("client gone")
+
+// read reads a request's body of at most limit bytes; one of exactly the limit passes. It returns a problem, or errGone.
+// On failure nothing is held.
+func (l *larder) read(r *http.Request, limit int64) (b body, problem *wire.Problem, err error) {
+	if r.ContentLength > limit {
+		skip(r, limit)
+		return body{}, tooLarge(limit), nil
+	}
+	b = body{larder: l}
+	defer func() {
+		if problem != nil || err != nil {
+			b.release()
+		}
+	}()
+	if !l.take(keptBuffer) {
+		return b, fullHouse(), nil
+	}
+	b.held = keptBuffer
+	b.pooled = l.buffers.Get().(*[keptBuffer]byte)
+	b.bytes = b.pooled[:0]
+	for {
+		if len(b.bytes) == cap(b.bytes) {
+			size := min(2*int64(cap(b.bytes)), limit+1) // the byte beyond the limit tells exactly full from too much
+			if size > int64(cap(b.bytes)) {
+				if !l.take(size - b.held) {
+					return b, fullHouse(), nil
+				}
+				b.held = size
+				grown := make([]byte, len(b.bytes), size)
+				copy(grown, b.bytes)
+				b.bytes = grown
+			}
+		}
+		n, readErr := r.Body.Read(b.bytes[len(b.bytes):cap(b.bytes)])
+		b.bytes = b.bytes[:len(b.bytes)+n]
+		if int64(len(b.bytes)) > limit {
+			skip(r, limit)
+			return b, tooLarge(limit), nil
+		}
+		switch {
+		case readErr == nil:
+		case readErr == io.EOF:
+			return b, nil, nil
+		case errors.Is(readErr, os.ErrDeadlineExceeded):
+			return b, slowBody(), nil
+		case errors.Is(readErr, context.Canceled), r.Context().Err() != nil:
+			return b, nil, errGone
+		default:
+			return b, brokenBody(), nil
+		}
+	}
+}
+
+// skip reads and drops what is left of a body that is too large, up to a bound, so that a client that sends first and reads
+// afterwards finds its answer instead of a broken connection. One that waits for leave to send is not given it.
+func skip(r *http.Request, limit int64) {
+	if r.Header.Get("Expect") != "" {
+		return
+	}
+	io.CopyN(io.Discard, r.Body, 8*limit)
+}

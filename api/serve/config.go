@@ -1,0 +1,47 @@
+package serve
+
+import (
+	"os"
+	"time"
+)
+
+// Config is everything an operator may set. The zero value is not useful: start from Default.
+type Config struct {
+	Listen string // TCP address, host:port; port 0 picks a free one
+
+	BodyBytes  int64         // greatest request body of a unary operation
+	LineBytes  int64         // greatest record of a bulk request, without its line end
+	HeldBytes  int64         // request bodies held in memory at once, over all unary requests
+	ArrayItems int           // greatest length of a list in a request
+	Points     int           // greatest number of points of a surveyed section, and of rows of a tabulated one
+	TimeLimit  time.Duration // longest time for one unary request, from its header to its answer
+
+	IdleLimit   time.Duration // a bulk stream without progress in either direction is cut after this
+	SpoolDir    string        // folder for answers that a bulk client does not take yet
+	MemoryBytes int64         // answers that wait in memory, for each bulk stream, before they go to its file
+	SpoolBytes  int64         // answers that wait in the file of one bulk stream
+	SpoolTotal  int64         // answers that wait in the files of all bulk streams together
+
+	DrainDelay time.Duration // from being unready until the listener closes
+	DrainLimit time.Duration // from a stop signal until what still runs is cut
+}
+
+// Default returns the settings of a server that was told nothing.
+func Default() Config {
+	return Config{
+		Listen:      "127.0.0.1:8080",
+		BodyBytes:   1 << 20,
+		LineBytes:   1 << 20,
+		HeldBytes:   32 << 20,
+		ArrayItems:  10_000,
+		Points:      10_000,
+		TimeLimit:   10 * time.Second,
+		IdleLimit:   30 * time.Second,
+		SpoolDir:    os.TempDir(),
+		MemoryBytes: 4 << 20,
+		SpoolBytes:  2 << 30,
+		SpoolTotal:  8 << 30,
+		DrainDelay:  0,
+		DrainLimit:  25 * time.Second,
+	}
+}

@@ -1,0 +1,129 @@
+package serve
+
+import (
+	"crypto/sha256"
+	"encoding/hex"
+	"fmt"
+	"net/http"
+	"strconv"
+	"strings"
+
+	"github.com/gin-gonic/gin"
+	"github.com/go-json-experiment/json"
+	"github.com/go-json-experiment/json/jsontext"
+
+	"leat/api/site"
+)
+
+// A document is one representation of a GET route, made at the start and never changed.
+type document struct {
+	media string
+	body  []byte
+	tag   string // entity tag
+	class string // Cache-Control
+	rules string // Content-Security-Policy, where it is not that of all answers
+}
+
+// How long documents may be kept: those that change with the binary a little while, those that change with the settings not without asking.
+const (
+	keepAWhile = "public, max-age=300"
+	keepAndAsk = "no-cache"
+)
+
+func newDocument(media, class string, body []byte) document {
+	sum := sha256.Sum256(body)
+	return document{media: media, body: body, tag: `"` + hex.EncodeToString(sum[:12]) + `"`, class: class}
+}
+
+// documents builds the GET documents.
+func (s *Server) documents(contract []byte) ([]route, error) {
+	contractJSON, err := yamlToJSON(contract)
+	if err != nil {
+		return nil, fmt.Errorf("the contract cannot be turned into JSON: %w", err)
+	}
+	limits, err := encode(s.limits())
+	if err != nil {
+		return nil, err
+	}
+	units, err := encode(unitsDocument())
+	if err != nil {
+		return nil, err
+	}
+	version, err := encode(s.build.document())
+	if err != nil {
+		return nil, err
+	}
+	page := newDocument(mediaHTML+"; charset=utf-8", keepAWhile, site.Page())
+	page.rules = site.ContentSecurityPolicy()
+	return []route{
+		s.get("/v1/limits", newDocument(mediaJSON, keepAndAsk, limits)),
+		s.get("/v1/units", newDocument(mediaJSON, keepAWhile, units)),
+		s.get("/version", newDocument(mediaJSON, keepAndAsk, version)),
+		s.get("/openapi.yaml", newDocument(mediaYAML, keepAWhile, contract)),
+		s.get("/openapi.json", newDocument(mediaJSON, keepAWhile, contractJSON)),
+		s.get("/", page, newDocument(mediaJSON, keepAWhile, site.Links())),
+	}, nil
+}
+
+// encode writes a document as indented JSON, since people read it too.
+func encode(v any) ([]byte, error) {
+	b, err := json.Marshal(v, jsontext.WithIndent("  "))
+	return append(b, '\n'), err
+}
+
+// get is the route of a document with one or more representations, the preferred one first.
+func (s *Server) get(path string, representations ...document) route {
+	offers := make([]string, len(representations))
+	for i, d := range representations {
+		offers[i], _, _ = strings.Cut(d.media, ";")
+	}
+	handle := func(c *gin.Context) {
+		h := c.Writer.Header()
+		if len(offers) > 1 {
+			h["Vary"] = []string{"Accept"}
+		}
+		chosen, found := negotiate(c.Request.Header, offers...)
+		if !found {
+			s.writeProblem(c, notAcceptable(offers...))
+			return
+		}
+		for i, d := range representations {
+			if offers[i] == chosen {
+				d.write(c)
+				return
+			}
+		}
+	}
+	return route{method: http.MethodGet, path: path, handle: handle}
+}
+
+func (d document) write(c *gin.Context) {
+	h := c.Writer.Header()
+	h["Etag"] = []string{d.tag}
+	h["Cache-Control"] = []string{d.class}
+	if d.rules != "" {
+		h["Content-Security-Policy"] = []string{d.rules}
+	}
+	if unchanged(c.Request.Header["If-None-Match"], d.tag) {
+		c.Writer.WriteHeader(http.StatusNotModified)
+		c.Writer.WriteHeaderNow()
+		return
+	}
+	h["Content-Type"] = []string{d.media}
+	h["Content-Length"] = []string{strconv.Itoa(len(d.body))}
+	c.Writer.WriteHeader(http.StatusOK)
+	c.Writer.Write(d.body)
+}
+
+// unchanged reports whether an If-None-Match header names the tag, by weak comparison (RFC 9110, 13.1.2).
+func unchanged(headers []string, tag string) bool {
+	for _, header := range headers {
+		for candidate := range strings.SplitSeq(header, ",") {
+			candidate = strings.TrimSpace(candidate)
+			if candidate == "*" || strings.TrimPrefix(candidate, "W/") == tag {
+				return true
+			}
+		}
+	}
+	return false
+}

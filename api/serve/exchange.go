@@ -1,0 +1,35 @@
+package serve
+
+import (
+	"io"
+
+	"github.com/gin-gonic/gin"
+)
+
+// An exchange is what the middleware knows of one request beyond gin's context.
+type exchange struct {
+	requestID string
+	traceID   string
+	bytesIn   countingBody
+	lines     int64  // bulk lines answered
+	problems  int64  // bulk lines answered by a problem, or 1 for a refused request
+	cut       string // why the answer broke off, where it did
+}
+
+type exchangeKey struct{}
+
+func exchangeOf(c *gin.Context) *exchange {
+	return c.MustGet(exchangeKey{}).(*exchange)
+}
+
+// countingBody counts the bytes of a request body as they are read.
+type countingBody struct {
+	io.ReadCloser
+	n int64
+}
+
+func (b *countingBody) Read(p []byte) (int, error) {
+	n, err := b.ReadCloser.Read(p)
+	b.n += int64(n)
+	return n, err
+}

@@ -1,0 +1,124 @@
+package serve
+
+import (
+	"net/http"
+	"runtime"
+	"strconv"
+	"time"
+
+	"github.com/prometheus/client_golang/prometheus"
+	"github.com/prometheus/client_golang/prometheus/collectors"
+
+	"leat/compute"
+)
+
+// unmatched is the route label of a request that no route answers.
+const unmatched = "unmatched"
+
+// methods are the values of the method label; anything else counts as "other".
+var methods = []string{
+	http.MethodGet, http.MethodHead, http.MethodPost, http.MethodPut, http.MethodPatch,
+	http.MethodDelete, http.MethodOptions, http.MethodConnect, http.MethodTrace,
+}
+
+// Outcomes of a solve or a bulk line.
+const (
+	outcomeResult  = "result"
+	outcomeProblem = "problem"
+	outcomePanic   = "panic"
+)
+
+// metrics are all that /metrics tells of ourselves. Every label comes from a fixed list.
+type metrics struct {
+	registry *prometheus.Registry
+	requests *prometheus.CounterVec
+	duration *prometheus.HistogramVec
+	solves   *prometheus.CounterVec
+	refusals *prometheus.CounterVec
+	lines    *prometheus.CounterVec
+}
+
+func newMetrics(build Build, spoolBytes, heldBytes func() int64) *metrics {
+	m := &metrics{
+		registry: prometheus.NewRegistry(),
+		requests: prometheus.NewCounterVec(prometheus.CounterOpts{
+			Name: "leat_requests_total",
+			Help: "Requests answered, by route template, method and status.",
+		}, []string{"route", "method", "status"}),
+		duration: prometheus.NewHistogramVec(prometheus.HistogramOpts{
+			Name: "leat_request_duration_seconds",
+			Help: "Time from a request's header to the end of its answer, by route template.",
+			Buckets: []float64{
+				50e-6, 100e-6, 250e-6, 500e-6, 1e-3, 2.5e-3, 5e-3, 10e-3, 25e-3, 50e-3, 100e-3, 250e-3, 500e-3, 1, 2.5, 5, 10, 60, 600,
+			},
+		}, []string{"route"}),
+		solves: prometheus.NewCounterVec(prometheus.CounterOpts{
+			Name: "leat_solves_total",
+			Help: "Requests and bulk lines that were handed to an operation, by operation and outcome.",
+		}, []string{"operation", "outcome"}),
+		refusals: prometheus.NewCounterVec(prometheus.CounterOpts{
+			Name: "leat_refusals_total",
+			Help: "Whole requests refused, by the kind of the problem; refused bulk lines are counted in leat_bulk_lines_total.",
+		}, []string{"problem"}),
+		lines: prometheus.NewCounterVec(prometheus.CounterOpts{
+			Name: "leat_bulk_lines_total",
+			Help: "Bulk lines answered, by operation and outcome.",
+		}, []string{"operation", "outcome"}),
+	}
+	spool := prometheus.NewGaugeFunc(prometheus.GaugeOpts{
+		Name: "leat_spool_bytes",
+		Help: "Bulk answers that wait in spool files for their readers.",
+	}, func() float64 { return float64(spoolBytes()) })
+	held := prometheus.NewGaugeFunc(prometheus.GaugeOpts{
+		Name: "leat_held_bytes",
+		Help: "Request bodies of unary operations held in memory.",
+	}, func() float64 { return float64(heldBytes()) })
+	info := prometheus.NewGauge(prometheus.GaugeOpts{
+		Name: "leat_build_info",
+		Help: "Always 1; the labels say what runs.",
+		ConstLabels: prometheus.Labels{
+			"version": build.Version, "revision": build.Revision, "engine_version": compute.EngineVersion, "go_version": runtime.Version(),
+		},
+	})
+	info.Set(1)
+	m.registry.MustRegister(
+		m.requests, m.duration, m.solves, m.refusals, m.lines, spool, held, info,
+		collectors.NewGoCollector(), collectors.NewProcessCollector(collectors.ProcessCollectorOpts{}),
+	)
+	return m
+}
+
+// prepare creates the series that are certain to occur, so that rates start from zero.
+func (m *metrics) prepare(routes []route, operations []string) {
+	for _, r := range routes {
+		if r.silent {
+			continue
+		}
+		m.duration.WithLabelValues(r.path)
+		m.requests.WithLabelValues(r.path, r.method, "200")
+	}
+	m.duration.WithLabelValues(unmatched)
+	for _, kind := range kinds {
+		m.refusals.WithLabelValues(kind)
+	}
+	for _, name := range operations {
+		for _, outcome := range []string{outcomeResult, outcomeProblem, outcomePanic} {
+			m.solves.WithLabelValues(name, outcome)
+			m.lines.WithLabelValues(name, outcome)
+		}
+	}
+}
+
+func (m *metrics) observe(route, method string, status int, elapsed time.Duration) {
+	m.requests.WithLabelValues(route, methodLabel(method), strconv.Itoa(status)).Inc()
+	m.duration.WithLabelValues(route).Observe(elapsed.Seconds())
+}
+
+func methodLabel(method string) string {
+	for _, known := range methods {
+		if method == known {
+			return known
+		}
+	}
+	return "other"
+}

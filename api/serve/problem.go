@@ -1,0 +1,126 @@
+package serve
+
+import (
+	"fmt"
+	"net/http"
+	"slices"
+	"strconv"
+	"strings"
+	"time"
+
+	"github.com/gin-gonic/gin"
+
+	"leat/api/wire"
+)
+
+// The problems of the edge itself. What a request body may do wrong is package wire's to say.
+
+func noRoute(path string, routes []route) *wire.Problem {
+	if path != "/" {
+		for _, r := range routes {
+			if r.path == strings.TrimRight(path, "/") {
+				return wire.NotFound(fmt.Sprintf("There is nothing at this path; without its trailing slash it is %s.", r.path))
+			}
+		}
+	}
+	return wire.NotFound("There is nothing at this path; GET / lists what there is.")
+}
+
+func noMethod(allow string) *wire.Problem {
+	return wire.MethodNotAllowed(fmt.Sprintf("This path does not take the request's method; it takes %s.", allow))
+}
+
+func notAcceptable(offers ...string) *wire.Problem {
+	return wire.NotAcceptable(fmt.Sprintf("The Accept header refuses all that can be given here: %s. Name it, or leave the header out.", strings.Join(offers, ", ")))
+}
+
+func wrongMedia(given, want string) *wire.Problem {
+	said := "The request has no Content-Type header"
+	if given != "" {
+		said = fmt.Sprintf("The request's Content-Type is %q", clip(given))
+	}
+	fix := fmt.Sprintf("; send Content-Type: %s.", want)
+	if strings.HasPrefix(strings.ToLower(given), "application/x-www-form-urlencoded") {
+		fix += fmt.Sprintf(" Some programs send this type unless told otherwise: give Python's urllib headers={\"Content-Type\": %q}, curl -H \"Content-Type: %s\".", want, want)
+	}
+	return wire.UnsupportedMediaType(said + fix)
+}
+
+func wrongCharset(charset string) *wire.Problem {
+	return wire.UnsupportedMediaType(fmt.Sprintf("The request's charset is %q; send UTF-8, and leave charset out or say utf-8.", clip(charset)))
+}
+
+func wrongCoding(coding string) *wire.Problem {
+	return wire.UnsupportedMediaType(fmt.Sprintf("The request's Content-Encoding is %q; send the body as it is, without that header.", clip(coding)))
+}
+
+func tooLarge(limit int64) *wire.Problem {
+	return wire.TooLarge(wire.Fault{Code: "body_bytes", Detail: fmt.Sprintf("The request body is larger than body_bytes, %d bytes; GET /v1/limits shows the limits.", limit)})
+}
+
+func slowBody() *wire.Problem {
+	return wire.RequestTimeout("The request body did not arrive in time; send it without pauses.")
+}
+
+func brokenBody() *wire.Problem {
+	return wire.MalformedJSON(wire.Fault{Code: "incomplete_body", Detail: "The request body could not be read to its end: its length or its chunks are wrong, or the sender stopped."})
+}
+
+func fullHouse() *wire.Problem {
+	return wire.Saturated("Too many request bodies are held in memory at this moment; send the request again after the seconds in Retry-After.")
+}
+
+func aboutToStop() *wire.Problem {
+	return wire.Draining("The service is about to stop and takes no new bulk streams; send the request again after the seconds in Retry-After.")
+}
+
+func lateAnswer(limit time.Duration) *wire.Problem {
+	return wire.TimeLimit(fmt.Sprintf("The request took longer than time_limit_seconds, %v; ask for less at once.", limit.Seconds()))
+}
+
+func internalFault() *wire.Problem {
+	return wire.Internal("The service failed; the fault is ours, and its log holds it under the request id in instance.")
+}
+
+// notReady is for probes alone.
+func notReady(detail string) *wire.Problem {
+	return &wire.Problem{Type: "/docs/problems/not_ready", Title: "The service is not ready", Status: http.StatusServiceUnavailable, Detail: detail}
+}
+
+// kinds are the values of the problem label.
+var kinds = []string{
+	"malformed_json", "bad_parameter", "not_found", "method_not_allowed", "not_acceptable", "request_timeout", "too_large",
+	"unsupported_media_type", "invalid_request", "no_solution", "internal_error", "non_finite_result", "saturated", "draining", "time_limit", "not_ready", "other",
+}
+
+func kindLabel(p *wire.Problem) string {
+	kind := p.Type[strings.LastIndexByte(p.Type, '/')+1:]
+	if slices.Contains(kinds, kind) {
+		return kind
+	}
+	return "other"
+}
+
+// retryAfter is the pause, in seconds, that a refusal for want of room asks for.
+const retryAfter = 1
+
+// writeProblem answers with a problem, whatever Accept says.
+func (s *Server) writeProblem(c *gin.Context, p *wire.Problem) {
+	e := exchangeOf(c)
+	e.problems++
+	answer := *p
+	answer.Instance = "urn:request:" + e.requestID
+	body := appendProblem(nil, &answer)
+	h := c.Writer.Header()
+	h["Content-Type"] = []string{"application/problem+json"}
+	h["Cache-Control"] = noStore
+	delete(h, "Etag")
+	h["Content-Length"] = []string{strconv.Itoa(len(body))}
+	if p.Status == http.StatusServiceUnavailable {
+		h["Retry-After"] = []string{strconv.Itoa(retryAfter)}
+	}
+	s.metrics.refusals.WithLabelValues(kindLabel(p)).Inc()
+	c.Writer.WriteHeader(p.Status)
+	c.Writer.Write(body)
+	c.Abort()
+}

@@ -1,0 +1,106 @@
+package serve
+
+import (
+	"net/http"
+	"strconv"
+	"sync"
+	"time"
+
+	"github.com/gin-gonic/gin"
+
+	"leat/api/operation"
+	"leat/api/wire"
+)
+
+// answers are buffers for the answers of unary operations.
+type answers struct{ pool sync.Pool }
+
+// largestKeptAnswer bounds the buffers that are kept for reuse.
+const largestKeptAnswer = 256 << 10
+
+func (a *answers) get() *[]byte {
+	if b, found := a.pool.Get().(*[]byte); found {
+		return b
+	}
+	b := make([]byte, 0, 4<<10)
+	return &b
+}
+
+func (a *answers) put(b *[]byte) {
+	if cap(*b) <= largestKeptAnswer {
+		*b = (*b)[:0]
+		a.pool.Put(b)
+	}
+}
+
+// unary is the handler of one operation on one request object.
+func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
+	outcomes := s.outcomes(op.Name)
+	return func(c *gin.Context) {
+		began := time.Now()
+		options, problem := s.admit(c, mediaJSON)
+		if problem != nil {
+			s.refuse(c, problem)
+			return
+		}
+		options.Inside = true
+		body, problem, err := s.bodies.read(c.Request, s.config.BodyBytes)
+		if err != nil {
+			exchangeOf(c).cut = err.Error()
+			panic(http.ErrAbortHandler)
+		}
+		if problem != nil {
+			closeConnection(c) // what is left of the body is not worth reading
+			s.writeProblem(c, problem)
+			return
+		}
+		defer body.release()
+		buffer := s.answers.get()
+		defer s.answers.put(buffer)
+		answer, problem := outcomes.answer(op, (*buffer)[:0], body.bytes, options)
+		*buffer = answer
+		if problem == nil && time.Since(began) > s.config.TimeLimit {
+			problem = lateAnswer(s.config.TimeLimit)
+		}
+		if problem != nil {
+			s.writeProblem(c, problem)
+			return
+		}
+		h := c.Writer.Header()
+		h["Content-Type"] = jsonType
+		h["Content-Length"] = []string{strconv.Itoa(len(answer))}
+		c.Writer.WriteHeader(http.StatusOK)
+		c.Writer.Write(answer)
+	}
+}
+
+var jsonType = []string{mediaJSON}
+
+// admit checks all that a POST says before its body: query, media type, what it accepts.
+func (s *Server) admit(c *gin.Context, media string) (operation.Options, *wire.Problem) {
+	options, problem := readQuery(c.Request.URL.RawQuery)
+	if problem == nil {
+		problem = checkMedia(c.Request.Header, c.Writer.Header(), media)
+	}
+	if problem == nil {
+		if _, found := negotiate(c.Request.Header, media); !found {
+			problem = notAcceptable(media)
+		}
+	}
+	return options, problem
+}
+
+// refuse answers with a problem before the body was read. It drops what the client is sending all the same, up to a bound, so
+// that one that sends first and reads afterwards finds the problem and no broken connection.
+func (s *Server) refuse(c *gin.Context, problem *wire.Problem) {
+	skip(c.Request, s.config.BodyBytes)
+	s.writeProblem(c, problem)
+}
+
+// closeConnection has an HTTP/1.1 connection closed after the answer; it must be called before the answer's header is sent. HTTP/2 has
+// no need of it, since there a body ends with its own stream.
+func closeConnection(c *gin.Context) {
+	if c.Request.ProtoMajor == 1 {
+		c.Writer.Header()["Connection"] = []string{"close"}
+	}
+}

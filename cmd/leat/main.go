@@ -1,0 +1,50 @@
+// Command leat is the one binary: the HTTP service and what belongs to running it.
+package main
+
+import (
+	"fmt"
+	"io"
+	"os"
+)
+
+// Exit codes.
+const (
+	exitOK       = 0
+	exitFailed   = 1
+	exitMisused  = 2
+	usageMessage = `Leat computes what open-channel flow does in ditches, lined channels, culverts and pipes.
+
+  leat serve     start the HTTP service; leat serve --help lists its settings
+  leat health    ask a running service whether it is ready; exit code 0 if so, else 1
+  leat version   say what this binary is
+  leat help      this text
+
+Exit codes: 0 done, 1 failed, 2 misused.
+`
+)
+
+func main() {
+	os.Exit(run(os.Args[1:], os.Environ(), os.Stdout, os.Stderr))
+}
+
+// run is main with its surroundings handed in.
+func run(arguments, environment []string, stdout, stderr io.Writer) int {
+	if len(arguments) == 0 {
+		fmt.Fprint(stderr, usageMessage)
+		return exitMisused
+	}
+	rest := arguments[1:]
+	switch arguments[0] {
+	case "serve":
+		return runServe(rest, environment, stdout, stderr)
+	case "health":
+		return runHealth(rest, environment, stdout, stderr)
+	case "version":
+		return runVersion(rest, stdout, stderr)
+	case "help", "--help", "-h":
+		fmt.Fprint(stdout, usageMessage)
+		return exitOK
+	}
+	fmt.Fprintf(stderr, "leat: unknown command %q\n\n%s", arguments[0], usageMessage)
+	return exitMisused
+}
