@@ -5,6 +5,7 @@ import (
 
 	"leat/compute"
 	"leat/compute/section"
+	"leat/compute/solve"
 )
 
 // Combination is the rule by which parts of a perimeter with different Manning coefficients act together.
@@ -50,7 +51,7 @@ func (c Combination) weight(n float64) float64 {
 func (c Combination) composite(g section.Geometry, sum, sumRate float64) Conveyance {
 	if c == HortonEinstein { // K = A (A/sum)^(2/3)
 		radius := g.Area / sum
-		speed := twoThirds(radius)
+		speed := solve.TwoThirds(radius)
 		return Conveyance{
 			K:    speed * g.Area,
 			Rate: speed * (5*g.TopWidth - 2*radius*sumRate) / 3,
@@ -58,7 +59,7 @@ func (c Combination) composite(g section.Geometry, sum, sumRate float64) Conveya
 	}
 	// K = A R^(2/3)/sqrt(sum/P) = A (A^4/(P sum^3))^(1/6)
 	radius := g.Area / g.Perimeter
-	speed := twoThirds(radius) / math.Sqrt(sum/g.Perimeter)
+	speed := solve.TwoThirds(radius) / math.Sqrt(sum/g.Perimeter)
 	return Conveyance{
 		K:    speed * g.Area,
 		Rate: speed * (10*g.TopWidth - radius*g.PerimeterRate - 3*g.Area*(sumRate/sum)) / 6,

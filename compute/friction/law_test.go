@@ -350,13 +350,14 @@ func TestBreaksOfZones(t *testing.T) {
 
 // TestForms checks the promises on which solvers build.
 func TestForms(t *testing.T) {
-	want := map[string]friction.Form{"manning": friction.Manning, "strickler": friction.Manning, "chezy": friction.Chezy}
+	want := map[string]friction.Form{"manning": friction.Manning, "strickler": friction.Manning, "chezy": friction.Chezy,
+		"sand_roughness": friction.Whole, "sand_roughness_viscous": friction.Whole}
 	for _, s := range settings() {
 		if s.law.Form() != want[s.name] {
 			t.Errorf("%s: form %v", s.name, s.law.Form())
 		}
 		power, isPower := s.law.(friction.Power)
-		if isPower != (s.law.Form() != friction.General) {
+		if isPower != (s.law.Form() == friction.Manning || s.law.Form() == friction.Chezy) {
 			t.Errorf("%s: Power %v", s.name, isPower)
 		}
 		if isPower {

@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"leat/compute/section"
+	"leat/compute/solve"
 )
 
 // Power is a law in which the conveyance is a constant times a power of the hydraulic radius,
@@ -89,15 +90,9 @@ var one = Coefficients{Energy: 1, Momentum: 1}
 // manning returns c A R^(2/3) and its derivative c R^(2/3) (5/3 T - 2/3 R dP/dy).
 func manning(g section.Geometry, c float64) Conveyance {
 	radius := g.Area / g.Perimeter
-	speed := c * twoThirds(radius)
+	speed := c * solve.TwoThirds(radius)
 	return Conveyance{
 		K:    speed * g.Area,
 		Rate: speed * (5*g.TopWidth - 2*radius*g.PerimeterRate) / 3,
 	}
-}
-
-// twoThirds returns x^(2/3).
-func twoThirds(x float64) float64 {
-	root := math.Cbrt(x)
-	return root * root
 }

@@ -37,11 +37,3 @@ func within(faults compute.Faults, member, name string, value, least, greatest f
 func withinManning(faults compute.Faults, member string, n float64) compute.Faults {
 	return within(faults, member, "Manning coefficient", n, leastManning, greatestManning)
 }
-
-// failing turns collected faults into an error: nil where there are none.
-func failing(faults compute.Faults) error {
-	if len(faults) == 0 {
-		return nil
-	}
-	return faults
-}

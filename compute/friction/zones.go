@@ -7,6 +7,7 @@ import (
 
 	"leat/compute"
 	"leat/compute/section"
+	"leat/compute/solve"
 )
 
 // Zones is Manning's law in a section parted at offsets into zones, each with its own coefficient. The lines between zones
@@ -55,7 +56,7 @@ func NewZones(s section.Zoned, untils []float64, n []float64, how Combination) (
 		return nil, faults
 	}
 	law := &Zones{parts: parts, how: how, n: slices.Clone(n)}
-	if law.Whole() {
+	if law.AsOne() {
 		law.weight = make([]float64, len(n))
 		for i := range n {
 			law.weight[i] = how.weight(n[i])
@@ -74,15 +75,15 @@ func NewZones(s section.Zoned, untils []float64, n []float64, how Combination) (
 	return law, nil
 }
 
-// Whole reports whether the rule treats the section as one, so that alpha and beta are 1.
-func (z *Zones) Whole() bool { return z.how == HortonEinstein || z.how == Pavlovskii }
+// AsOne reports whether the rule treats the section as one, so that alpha and beta are 1.
+func (z *Zones) AsOne() bool { return z.how == HortonEinstein || z.how == Pavlovskii }
 
 // At returns the conveyance, which is the same at every slope and discharge, and the velocity coefficients, in one go.
 func (z *Zones) At(g section.Geometry) (Conveyance, Coefficients) {
 	if !(g.Area > 0 && g.Perimeter > 0) {
 		return Conveyance{}, one
 	}
-	if z.Whole() {
+	if z.AsOne() {
 		var sum, rate float64
 		for i, part := range z.parts {
 			zone := part.At(g.Depth)
@@ -94,7 +95,7 @@ func (z *Zones) At(g section.Geometry) (Conveyance, Coefficients) {
 	// Areas are taken relative to the whole area and zone velocities v = R^(2/3)/n relative to R^(2/3) of the whole, so that no power
 	// overflows. Then Ki = A v, Ki^2/Ai = A v^2 and Ki^3/Ai^2 = A v^3, whose derivatives follow from v ~ (A/P)^(2/3) with no
 	// division by the zone's area: a zone that is nearly dry does no harm.
-	scale := twoThirds(g.Area / g.Perimeter)
+	scale := solve.TwoThirds(g.Area / g.Perimeter)
 	var first, second, third, firstRate, secondRate, thirdRate float64
 	for i, part := range z.parts {
 		zone := part.At(g.Depth)
@@ -102,7 +103,7 @@ func (z *Zones) At(g section.Geometry) (Conveyance, Coefficients) {
 			continue
 		}
 		radius := zone.Area / zone.Perimeter
-		v := twoThirds(radius) / z.n[i] / scale
+		v := solve.TwoThirds(radius) / z.n[i] / scale
 		share := zone.Area / g.Area
 		widening := zone.TopWidth / g.Area
 		lengthening := radius * zone.PerimeterRate / g.Area
@@ -142,7 +143,7 @@ func (z *Zones) AtDischarge(g section.Geometry, _ float64) Conveyance {
 
 // Coefficients implements Law.
 func (z *Zones) Coefficients(g section.Geometry) Coefficients {
-	if z.Whole() {
+	if z.AsOne() {
 		return one
 	}
 	_, coefficients := z.At(g)
