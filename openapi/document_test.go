@@ -424,6 +424,9 @@ func TestDocumentShowsTheExampleFiles(t *testing.T) {
 		}
 	}
 	for _, response := range at(t, doc, "components", "responses").(map[string]any) {
+		if response.(map[string]any)["content"] == nil {
+			continue
+		}
 		show("problem.%s.answer.json", at(t, response, "content", "application/problem+json"))
 	}
 
