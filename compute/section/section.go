@@ -21,10 +21,11 @@ func (g Geometry) Radius() float64 { return g.Area / g.Perimeter }
 // A Section is one compiled cross-section. It is immutable and safe for concurrent use; its methods do not allocate.
 type Section interface {
 	// At returns the geometry at a depth, 0 < depth <= Height(). At a depth where something jumps (a level bench)
-	// it is the value just below; at the height of a closed section it is the limit from below (a box's roof is dry).
+	// it is the value just below; at the height of a closed section it is the limit from below (a box's roof is dry,
+	// the rates of a round crown are infinite).
 	At(depth float64) Geometry
 
-	// Full returns the geometry of a closed section filled exactly: roof wetted, TopWidth 0.
+	// Full returns the geometry of a closed section filled exactly: roof wetted, TopWidth 0, rates 0.
 	// For open sections it returns At(Height()) where that is finite, else the zero Geometry.
 	Full() Geometry
 
@@ -55,8 +56,8 @@ const (
 	Irregular Form = iota
 	// Banded promises that on every piece the area is a quadratic and the perimeter a linear function of depth.
 	Banded
-	// Rising promises a single smooth piece without end on which the hydraulic radius and A^3/T rise with depth,
-	// so that there is exactly one normal and one critical depth (rectangle, trapezoid, triangle, parabola).
+	// Rising promises that the hydraulic radius and A^3/T rise continuously with depth without end, so that there is exactly
+	// one normal and one critical depth; derivatives may break at Breaks() (rectangle, trapezoid, triangle, parabola, u shape).
 	Rising
 	// Arched promises a closed smooth curve whose conveyance by Manning or Chezy rises to one maximum below the crown and then
 	// falls, whose A^3/T rises throughout and whose top width falls to zero at the crown (circle, ellipse, egg, horseshoe).

@@ -1,0 +1,100 @@
+package section
+
+import (
+	"math"
+
+	"leat/compute"
+)
+
+// Bounds of sizes in metres and of side slopes. They are far beyond any channel; within them no product that a
+// section or a solver forms can overflow or lose its digits to underflow.
+const (
+	leastSize       = 1e-9
+	greatestSize    = 1e9
+	greatestSlope   = 1e6
+	leastOrdinate   = 1e-100 // of levels and offsets, which may also be zero
+	notANumber      = "not_a_number"
+	notPositive     = "not_positive"
+	outOfRange      = "out_of_range"
+	sizeAccepted    = "from 1e-9 to 1e9 metres"
+	slopeAccepted   = "from 0 to 1e6"
+	ordinatesWanted = "0 or from 1e-100 to 1e9 metres in size"
+)
+
+// check collects the faults of one constructor.
+type check struct{ faults compute.Faults }
+
+func (c *check) add(member, code, detail string) {
+	c.faults = append(c.faults, compute.Fault{Member: member, Code: code, Detail: detail})
+}
+
+// err returns the faults as an error, nil if there are none.
+func (c *check) err() error {
+	if len(c.faults) == 0 {
+		return nil
+	}
+	return c.faults
+}
+
+// finite reports a member that is not a number or infinite, and returns false for it.
+func (c *check) finite(member string, value float64) bool {
+	if math.IsNaN(value) || math.IsInf(value, 0) {
+		c.add(member, notANumber, "This is not a finite number; give one.")
+		return false
+	}
+	return true
+}
+
+// size reports a length that is not positive or outside the bounds.
+func (c *check) size(member string, value float64) bool {
+	switch {
+	case !c.finite(member, value):
+	case value <= 0:
+		c.add(member, notPositive, "This must be greater than 0.")
+	case value < leastSize || value > greatestSize:
+		c.add(member, outOfRange, "This must be "+sizeAccepted+".")
+	default:
+		return true
+	}
+	return false
+}
+
+// sizeOrZero is size for a length that may be zero.
+func (c *check) sizeOrZero(member string, value float64) bool {
+	switch {
+	case value == 0:
+		return true
+	case value < 0:
+		c.add(member, "negative", "This must not be negative.")
+		return false
+	}
+	return c.size(member, value)
+}
+
+// slope reports a side slope that is negative or beyond the bounds.
+func (c *check) slope(member string, value float64) bool {
+	switch {
+	case !c.finite(member, value):
+	case value < 0:
+		c.add(member, "negative", "A side slope must not be negative: the side would lean over the water.")
+	case value > greatestSlope:
+		c.add(member, outOfRange, "A side slope must be "+slopeAccepted+" (horizontal per unit vertical).")
+	default:
+		return true
+	}
+	return false
+}
+
+// gradient reports a gradient (vertical per horizontal) that is not positive or so flat or steep that the side slope is beyond the bounds.
+func (c *check) gradient(member string, value float64) bool {
+	switch {
+	case !c.finite(member, value):
+	case value <= 0:
+		c.add(member, notPositive, "This must be greater than 0.")
+	case value < 1/greatestSlope || value > greatestSlope:
+		c.add(member, outOfRange, "This must be from 1e-6 to 1e6 (vertical per unit horizontal).")
+	default:
+		return true
+	}
+	return false
+}

@@ -1,0 +1,173 @@
+package section
+
+import (
+	"math"
+	"sort"
+	"strconv"
+
+	"leat/compute/solve"
+)
+
+// Tabulated is a section that is known by a table of depths.
+type Tabulated struct {
+	depths []float64
+	rows   []row
+	power  float64 // m of area = A1*(depth/d1)^m below the first row
+	breaks []float64
+}
+
+// row is one row and the span above it.
+type row struct {
+	area, perimeter, width, moment float64
+	height                         float64 // of the span above
+	middle                         float64 // second Bernstein coefficient of the width over the span: (width, middle, next width)
+	next                           float64
+	perimeterRate                  float64
+}
+
+// NewTabulated returns the section of rows [depth, area, wetted_perimeter, top_width] in m and m2, depths and areas rising. Between rows the area
+// is the cubic that has the widths as its slopes (Hermite), which must not fall anywhere. Faults name
+// rows, rows/INDEX and rows/INDEX/MEMBER, MEMBER from 0 to 3.
+func NewTabulated(rows [][4]float64) (Section, error) {
+	var c check
+	if len(rows) == 0 {
+		c.add("rows", "too_few", "A table needs at least one row.")
+	}
+	for i, r := range rows {
+		member := "rows/" + strconv.Itoa(i)
+		sound := true
+		for j, value := range r {
+			if j == 1 {
+				sound = c.area(member+"/1", value) && sound
+			} else {
+				sound = c.size(member+"/"+strconv.Itoa(j), value) && sound
+			}
+		}
+		if sound && r[2] < r[3] {
+			c.add(member+"/2", "perimeter_too_short", "The wetted perimeter cannot be shorter than the top width, which it underlies.")
+		}
+		if i == 0 {
+			if sound && !(r[3]*r[0]/r[1] <= greatestPower) {
+				c.add(member+"/1", "too_small", "This area is too small for its depth and width: no bed rises so steeply.")
+			}
+			continue
+		}
+		p := rows[i-1]
+		rising := true
+		if r[0] <= p[0] {
+			rising = false
+			c.add(member+"/0", "not_rising", "Depths must rise from row to row.")
+		}
+		if r[1] <= p[1] {
+			rising = false
+			c.add(member+"/1", "not_rising", "Areas must rise from row to row.")
+		}
+		if r[2] < p[2] {
+			c.add(member+"/2", "falling_perimeter", "The wetted perimeter cannot fall as the depth rises.")
+		}
+		if sound && rising && !(leastWidth(p[3], 3*((r[1]-p[1])/(r[0]-p[0]))-p[3]-r[3], r[3]) >= 0) {
+			c.add(member, "area_not_monotone", "Between the row before and this one, the cubic through the areas with the widths as its slopes would fall; areas, widths and depths do not agree.")
+		}
+	}
+	if err := c.err(); err != nil {
+		return nil, err
+	}
+
+	first := rows[0]
+	t := &Tabulated{power: first[3] * first[0] / first[1]}
+	moment := first[1] * first[0] / (t.power + 1)
+	for i, r := range rows {
+		w := row{area: r[1], perimeter: r[2], width: r[3], moment: moment}
+		if i+1 < len(rows) {
+			n := rows[i+1]
+			w.height = n[0] - r[0]
+			w.next = n[3]
+			w.middle = 3*((n[1]-r[1])/w.height) - r[3] - n[3]
+			w.perimeterRate = (n[2] - r[2]) / w.height
+			moment += w.height * (r[1] + w.height*(3*w.width+2*w.middle+w.next)*(1.0/12))
+			t.breaks = append(t.breaks, r[0])
+		}
+		t.depths = append(t.depths, r[0])
+		t.rows = append(t.rows, w)
+	}
+	return t, nil
+}
+
+// greatestPower bounds the power of depth with which the area below the first row rises: beyond it, its values underflow.
+const greatestPower = 1000
+
+// area reports an area that is not positive or outside the bounds of sizes squared.
+func (c *check) area(member string, value float64) bool {
+	switch {
+	case !c.finite(member, value):
+	case value <= 0:
+		c.add(member, notPositive, "This must be greater than 0.")
+	case value < leastSize*leastSize || value > greatestSize*greatestSize:
+		c.add(member, outOfRange, "This must be from 1e-18 to 1e18 square metres.")
+	default:
+		return true
+	}
+	return false
+}
+
+// leastWidth returns the least value on [0, 1] of the quadratic with Bernstein coefficients a > 0, b, c > 0, or something of its sign.
+func leastWidth(a, b, c float64) float64 {
+	if b >= 0 {
+		return 0
+	}
+	// The minimum lies inside and is (ac - b^2)/(a - 2b + c).
+	return math.Sqrt(a)*math.Sqrt(c) + b
+}
+
+// At implements Section.
+func (t *Tabulated) At(depth float64) Geometry {
+	if first := t.depths[0]; depth <= first {
+		x, r := depth/first, &t.rows[0]
+		share := solve.Power(x, t.power-1)
+		width := r.width * share
+		area := r.area * x * share
+		perimeter := r.perimeter * share
+		rate := (t.power - 1) / depth
+		return Geometry{
+			Depth: depth, Area: area, Perimeter: perimeter, TopWidth: width, Moment: area * depth / (t.power + 1),
+			PerimeterRate: perimeter * rate, TopWidthRate: width * rate,
+		}
+	}
+	r := &t.rows[0]
+	from := t.depths[0]
+	if i := sort.SearchFloat64s(t.depths, depth); i > 0 { // the first row not below depth
+		r, from = &t.rows[i-1], t.depths[i-1]
+	}
+	d := depth - from
+	u := d / r.height
+	v := ((from + r.height) - depth) / r.height
+	a, b, c := r.width, r.middle, r.next
+	return Geometry{
+		Depth:     depth,
+		Area:      r.area + d*(a*(1-u+u*u*(1.0/3))+u*(b*(1-u*(2.0/3))+c*u*(1.0/3))),
+		Perimeter: r.perimeter + r.perimeterRate*d,
+		TopWidth:  a*v*v + 2*b*u*v + c*u*u,
+		Moment: r.moment + d*(r.area+d*(a*(0.5+u*(-1.0/3+u*(1.0/12)))+
+			u*(b*(1.0/3-u*(1.0/6))+c*u*(1.0/12)))),
+		PerimeterRate: r.perimeterRate,
+		TopWidthRate:  2 * ((b-a)*v + (c-b)*u) / r.height,
+	}
+}
+
+// Full implements Section: what the last row says.
+func (t *Tabulated) Full() Geometry { return t.At(t.Height()) }
+
+// Height implements Section: the depth of the last row.
+func (t *Tabulated) Height() float64 { return t.depths[len(t.depths)-1] }
+
+// Closed implements Section.
+func (t *Tabulated) Closed() bool { return false }
+
+// Bank implements Section: the depth of the last row.
+func (t *Tabulated) Bank() (depth float64, known bool) { return t.Height(), true }
+
+// Breaks implements Section.
+func (t *Tabulated) Breaks() []float64 { return t.breaks }
+
+// Form implements Section.
+func (t *Tabulated) Form() Form { return Irregular }
