@@ -44,6 +44,3 @@ type DepthsGiven struct {
 	AlternateDepth, SequentDepth float64
 	Curve                        string // empty is written null
 }
-
-// AppendJSON appends the answer in a system of units; id stands in front where it is not nil.
-func (a *DepthsAnswer) AppendJSON(dst []byte, units System, id ID) []byte { return dst }

@@ -10,3 +10,5 @@ type DepthsRequest struct {
 	// Depth in m is one that occurs there.
 	Depth Number `json:"depth" quantity:"length" validate:"omitempty,gte=1e-18,lte=1e9"`
 }
+
+func (r *DepthsRequest) rules(w *walk) { r.Roughness.fits(w, &r.Section) }

@@ -8,3 +8,11 @@ type Limits struct {
 
 // DefaultLimits returns the limits that hold unless an operator sets others.
 func DefaultLimits() Limits { return Limits{ArrayItems: 10_000, Points: 10_000} }
+
+// named returns a limit by the name that callers know.
+func (l *Limits) named(name string) int {
+	if name == "points" {
+		return l.Points
+	}
+	return l.ArrayItems
+}

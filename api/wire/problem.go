@@ -1,5 +1,7 @@
 package wire
 
+import "strconv"
+
 // Problem is an RFC 9457 problem. Its JSON form is written by AppendJSON; Title never changes for a Type.
 type Problem struct {
 	Type     string // URI reference that resolves to the entry of this problem in the service's own documents
@@ -10,23 +12,26 @@ type Problem struct {
 	Errors   []Fault // all faults found, at most MaxFaults
 }
 
-// MaxFaults is the most faults that one problem lists.
-const MaxFaults = 100
-
-// Fault is one entry of a problem's errors. Exactly one of Pointer (which may be the empty pointer), Parameter and Column is meant.
-type Fault struct {
-	Pointer   string // RFC 6901, from the request's or record's top
-	Parameter string // name of a query parameter
-	Column    string // name of a column or property
-	Code      string // snake_case, stable
-	Detail    string // one sentence: what is wrong, where, what would be accepted
-}
-
-// Warning is something a caller should know about an answer; it is never an error.
-type Warning struct {
-	Code    string
-	Detail  string
-	Pointer string // of the request member concerned, or empty
-}
-
 func (p *Problem) Error() string { return p.Title + ": " + p.Detail }
+
+// AppendJSON appends the problem as an object. An empty instance and an empty list of errors are left out.
+func (p *Problem) AppendJSON(dst []byte) []byte {
+	dst = appendText(append(dst, `{"type":`...), p.Type)
+	dst = appendText(append(dst, `,"title":`...), p.Title)
+	dst = strconv.AppendInt(append(dst, `,"status":`...), int64(p.Status), 10)
+	dst = appendText(append(dst, `,"detail":`...), p.Detail)
+	if p.Instance != "" {
+		dst = appendText(append(dst, `,"instance":`...), p.Instance)
+	}
+	if len(p.Errors) > 0 {
+		dst = append(dst, `,"errors":[`...)
+		for i := range p.Errors {
+			if i > 0 {
+				dst = append(dst, ',')
+			}
+			dst = p.Errors[i].AppendJSON(dst)
+		}
+		dst = append(dst, ']')
+	}
+	return append(dst, '}')
+}

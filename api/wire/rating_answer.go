@@ -8,4 +8,9 @@ type RatingAnswer struct {
 }
 
 // AppendJSON appends the answer in a system of units; id stands in front where it is not nil.
-func (a *RatingAnswer) AppendJSON(dst []byte, units System, id ID) []byte { return dst }
+func (a *RatingAnswer) AppendJSON(dst []byte, system System, id ID) []byte {
+	dst = appendHead(dst, system, id, a.Fingerprint)
+	dst = appendStates(dst, `,"states":`, a.States, system)
+	dst = appendWarnings(dst, a.Warnings)
+	return append(dst, '}')
+}

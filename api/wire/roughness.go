@@ -38,17 +38,20 @@ type Roughness struct {
 	Strickler Number `json:"strickler" quantity:"strickler" in:"strickler" validate:"omitempty,gte=1e-3,lte=1e6"`
 	// Chezy is C in m^(1/2)/s.
 	Chezy Number `json:"chezy" quantity:"chezy" in:"chezy" validate:"omitempty,gte=1e-3,lte=1e6"`
-	// SandRoughness is the equivalent sand roughness in m; 0 is a smooth wall.
-	SandRoughness Number `json:"sand_roughness" quantity:"length" in:"sand_roughness" validate:"omitempty,gte=0,floor=1e-12,lte=1e9"`
+	// SandRoughness is the equivalent sand roughness in m.
+	SandRoughness Number `json:"sand_roughness" quantity:"length" in:"sand_roughness" validate:"omitempty,gte=1e-12,lte=1e4"`
 	// KinematicViscosity is in m2/s.
 	KinematicViscosity Number `json:"kinematic_viscosity" quantity:"kinematic_viscosity" in:"sand_roughness?" validate:"omitempty,gte=1e-9,lte=1"`
 	// Zones go from left to right; every one but the last has Until.
 	Zones []Zone `json:"zones" in:"zones" validate:"omitempty,min=1,dive"`
 	// ManningByDepth are pairs of depth in m and Manning's n.
-	ManningByDepth [][2]float64 `json:"manning_by_depth" quantity:"length manning" in:"manning_by_depth" validate:"omitempty,min=1,dive,dive,gte=0,lte=1e9"`
-	Bed            Lining       `json:"bed" in:"bed"`
-	Sides          Lining       `json:"sides" in:"bed"`
+	ManningByDepth [][2]float64 `json:"manning_by_depth" quantity:"length manning" in:"manning_by_depth" validate:"omitempty,min=1,dive,columns=0:1e9 1e-6:1e3"`
+	Bed            Lining       `json:"bed" in:"bed" validate:"omitempty"`
+	Sides          Lining       `json:"sides" in:"bed" validate:"omitempty"`
 	Combine        Combine      `json:"combine" in:"zones? bed?" validate:"omitempty,oneof=divided horton_einstein lotter pavlovskii"`
+
+	// Given reports whether the request has this object.
+	Given bool `json:"-"`
 }
 
 // Zone is a part of a section's width with one roughness.

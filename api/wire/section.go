@@ -53,9 +53,9 @@ type Section struct {
 	UpperSideSlope  Number `json:"upper_side_slope" in:"two_stage" validate:"omitempty,gte=0,floor=1e-9,lte=1e6"`
 
 	// Points are pairs of offset and level in m.
-	Points [][2]float64 `json:"points" quantity:"length length" in:"surveyed" limit:"points" validate:"omitempty,min=2,dive,dive,gte=-1e9,lte=1e9"`
+	Points [][2]float64 `json:"points" quantity:"length length" in:"surveyed" limit:"points" validate:"omitempty,min=2,dive,columns=-1e9:1e9 -1e9:1e9"`
 	// Rows are depth (m), area (m2), wetted perimeter (m) and top width (m).
-	Rows [][4]float64 `json:"rows" quantity:"length area length length" in:"tabulated" validate:"omitempty,min=1,dive,dive,gte=0,floor=1e-18,lte=1e18"`
+	Rows [][4]float64 `json:"rows" quantity:"length area length length" in:"tabulated" validate:"omitempty,min=1,dive,columns=1e-18:1e9 1e-36:1e18 1e-18:1e9 0:1e9"`
 
 	// BankHeight is the depth in m at which an open section overtops.
 	BankHeight Number `json:"bank_height" quantity:"length" in:"rectangular? trapezoidal? triangular? parabolic? u_shaped? gutter? two_stage? surveyed? tabulated?" validate:"omitempty,gte=1e-9,lte=1e9"`

@@ -17,16 +17,3 @@ func summary(faults []Fault) string {
 		return first + " (and " + strconv.Itoa(n) + " other faults)"
 	}
 }
-
-// Where returns the place of a fault as text that a sentence can follow: its pointer, parameter or column and a colon; empty for the top of a request.
-func (f Fault) Where() string {
-	switch {
-	case f.Parameter != "":
-		return f.Parameter + ": "
-	case f.Column != "":
-		return f.Column + ": "
-	case f.Pointer != "":
-		return f.Pointer + ": "
-	}
-	return ""
-}

@@ -1,0 +1,61 @@
+package wire
+
+import "strconv"
+
+// outOfRange is the fault of a number in SI that breaks its bounds, told in a system of units.
+func (f *field) outOfRange(at pointer, column int, value float64, system System) Fault {
+	b := &f.bounds[column]
+	code := codeOutOfRange
+	if value <= 0 && b.least > 0 {
+		code = codeNotPositive
+	}
+	q := f.quantity[column]
+	what := f.name
+	if len(f.bounds) > 1 {
+		what = "This number"
+	} else if f.shape == shapeNumbers {
+		what = "Every number of " + f.name
+	}
+	return Fault{
+		Pointer: string(at),
+		Code:    code,
+		Detail:  what + " must be " + b.text(q, system) + ", not " + inUnits(value, q, system) + ".",
+	}
+}
+
+// text tells what the bounds accept.
+func (b *bounds) text(q Quantity, system System) string {
+	least, greatest := inUnits(b.least, q, system), inUnits(b.greatest, q, system)
+	text := "from " + least + " to " + greatest
+	if b.open {
+		text = "greater than " + least + " and less than " + greatest
+	}
+	if b.floor != 0 {
+		text += " and, unless 0, at least " + inUnits(b.floor, q, system) + " in size"
+	}
+	return text
+}
+
+// inUnits tells a value in SI in a system of units, to the digits that people read.
+func inUnits(value float64, q Quantity, system System) string {
+	if q == Dimensionless && value == float64(int64(value)) {
+		return strconv.FormatFloat(value, 'f', -1, 64)
+	}
+	digits := 6
+	if system == SI {
+		digits = 12
+	}
+	text := string(trimExponent(strconv.AppendFloat(nil, system.FromSI(q, value), 'g', digits, 64)))
+	if unit := system.Unit(q); unit != "" {
+		text += " " + unit
+	}
+	return text
+}
+
+func tooFewText(f *field) string {
+	items := " items"
+	if f.least == 1 {
+		items = " item"
+	}
+	return f.name + " must have at least " + strconv.Itoa(f.least) + items + "."
+}

@@ -1,0 +1,63 @@
+package wire
+
+import "strings"
+
+// nearest returns the known name that a misspelt one most likely stands for: the one that is written alike but for case
+// and separators, or the one that the fewest changes of a letter lead to, or the only one that has it as a word.
+func nearest(name string, known []string) (string, bool) {
+	const longest = 64
+	if name == "" || len(name) > longest {
+		return "", false
+	}
+	plain := plainName(name)
+	best, fewest := "", 1+max(1, len(plain)/3)
+	for _, k := range known {
+		if d := distance(plain, plainName(k)); d < fewest {
+			best, fewest = k, d
+		}
+	}
+	if best != "" {
+		return best, true
+	}
+	word := "_" + strings.ToLower(name) + "_"
+	for _, k := range known {
+		if strings.Contains("_"+k+"_", word) {
+			if best != "" {
+				return "", false
+			}
+			best = k
+		}
+	}
+	return best, best != ""
+}
+
+// plainName is a name without what people vary: case, hyphens, underscores, spaces.
+func plainName(name string) string {
+	return strings.NewReplacer("_", "", "-", "", " ", "").Replace(strings.ToLower(name))
+}
+
+// distance is the number of bytes to insert, delete, replace or exchange with their neighbour that leads from a to b
+// (F. J. Damerau 1964, restricted to one change a place).
+func distance(a, b string) int {
+	before := make([]int, len(b)+1)
+	last := make([]int, len(b)+1)
+	row := make([]int, len(b)+1)
+	for j := range last {
+		last[j] = j
+	}
+	for i := 1; i <= len(a); i++ {
+		row[0] = i
+		for j := 1; j <= len(b); j++ {
+			cost := 1
+			if a[i-1] == b[j-1] {
+				cost = 0
+			}
+			row[j] = min(last[j]+1, row[j-1]+1, last[j-1]+cost)
+			if i > 1 && j > 1 && a[i-1] == b[j-2] && a[i-2] == b[j-1] {
+				row[j] = min(row[j], before[j-2]+1)
+			}
+		}
+		before, last, row = last, row, before
+	}
+	return last[len(b)]
+}

@@ -1,0 +1,201 @@
+package wire
+
+import (
+	"strconv"
+	"strings"
+	"unicode/utf8"
+
+	"github.com/go-json-experiment/json/jsontext"
+)
+
+// This file holds the sentences of faults in members: what is wrong, where, and what would be accepted.
+
+// wrongType notes a value of another type than the member wants, and passes over it.
+func (w *walk) wrongType(wanted string) {
+	kind := w.decoder.PeekKind()
+	var raw jsontext.Value
+	if kind == '"' {
+		raw = w.next()
+	} else {
+		w.skip()
+	}
+	w.fault(codeWrongType, func() string {
+		detail := "This must be " + wanted + ", not " + kindText(kind) + "."
+		if kind == '"' && strings.Contains(wanted, "number") {
+			detail += stringForNumberAdvice(raw)
+		}
+		if kind == 'n' {
+			detail = "This must be " + wanted + ": null stands for an absent member, but a list has no absent items."
+		}
+		return detail
+	})
+}
+
+// stringForNumberAdvice says what to do about a string that stands where a number is wanted.
+func stringForNumberAdvice(raw jsontext.Value) string {
+	text := strings.ToLower(strings.TrimSpace(string(raw[1 : len(raw)-1])))
+	switch {
+	case text == "" || strings.HasPrefix(strings.TrimLeft(text, "+-"), "nan") || strings.HasPrefix(strings.TrimLeft(text, "+-"), "inf"):
+		return " Leave an unknown number out or give null."
+	case jsontext.Value(text).IsValid():
+		return " Write the number without quotes."
+	}
+	return ""
+}
+
+func kindText(kind jsontext.Kind) string {
+	switch kind {
+	case '"':
+		return "a string"
+	case '0':
+		return "a number"
+	case 't', 'f':
+		return "true or false"
+	case '{':
+		return "an object"
+	case '[':
+		return "a list"
+	case 'n':
+		return "null"
+	}
+	return "anything else"
+}
+
+// notAnObject notes a value that stands where an object is wanted, and passes over it.
+func (w *walk) notAnObject() {
+	kind := w.decoder.PeekKind()
+	w.skip()
+	w.fault(codeNotAnObject, func() string { return "This must be an object, not " + kindText(kind) + "." })
+}
+
+// unknownMember notes a member that the object does not have.
+func (w *walk) unknownMember(p *plan, name string) {
+	w.failed = true
+	if !w.collect {
+		return
+	}
+	detail := "There is no member " + clip(name) + " here."
+	if near, ok := nearest(name, p.names); ok {
+		detail += " Did you mean " + near + "?"
+	} else {
+		detail += " Accepted are " + list(p.names, "and") + "."
+	}
+	if len(name) > longestShownName {
+		w.fault(codeUnknownMember, func() string { return detail })
+		return
+	}
+	w.faultAt(name, codeUnknownMember, func() string { return detail })
+}
+
+func missingText(f *field, variant string) string {
+	var detail string
+	if variant == "" {
+		detail = f.name + " is missing: give " + f.wanted() + "."
+	} else {
+		detail = f.name + " is missing: " + variantText(variant) + " needs " + f.wanted() + " there."
+	}
+	return detail
+}
+
+// wanted describes the values that a field accepts.
+func (f *field) wanted() string {
+	switch f.shape {
+	case shapeNumber:
+		if unit := SI.Unit(f.quantity[0]); unit != "" && f.quantity[0] != QuantityManning && f.quantity[0] != QuantityStrickler {
+			return "a number in " + unit + " (" + US.Unit(f.quantity[0]) + " in US units)"
+		}
+		return "a number"
+	case shapeWhole:
+		return "a whole number"
+	case shapeBool:
+		return "true or false"
+	case shapeName:
+		return "one of " + quotedList(f.enum)
+	case shapeID:
+		return "a string or a number"
+	case shapeObject:
+		return "an object"
+	}
+	return f.listType()
+}
+
+// listType describes a list that the field accepts.
+func (f *field) listType() string {
+	switch f.shape {
+	case shapePairs, shapeRows:
+		return "a list of " + f.tupleType()[len("a list of "):] + ", each a list itself"
+	case shapeObjects:
+		return "a list of objects"
+	}
+	return "a list of numbers"
+}
+
+// tupleType describes one item of a list of tuples.
+func (f *field) tupleType() string {
+	if f.shape == shapeRows {
+		return "a list of four numbers"
+	}
+	return "a list of two numbers"
+}
+
+func wrongLengthText(f *field, n int) string {
+	return "This must be " + f.tupleType() + ", not of " + strconv.Itoa(n) + "."
+}
+
+// variantText names a kind or law in a sentence.
+func variantText(variant string) string {
+	switch variant {
+	case string(BedAndSides):
+		return "roughness by bed and sides"
+	case string(Manning), string(Strickler), string(Chezy), string(SandRoughness), string(Zones), string(ManningByDepth):
+		return "roughness by " + variant
+	}
+	return "a section of kind " + variant
+}
+
+func foreignText(p *plan, f *field, chosen string) string {
+	var own []string
+	for i := range p.fields {
+		if p.fields[i].variants != nil && p.variants[chosen].allowed&(1<<i) != 0 {
+			own = append(own, p.fields[i].name)
+		}
+	}
+	return f.name + " does not belong to " + variantText(chosen) + ", whose members are " + list(own, "and") + "; leave it out or give null."
+}
+
+func unknownValueText(f *field, given string) string {
+	detail := f.name + " must be one of " + quotedList(f.enum) + ", not " + strconv.Quote(clip(given)) + "."
+	if near, ok := nearest(given, f.enum); ok {
+		detail += " Did you mean " + strconv.Quote(near) + "?"
+	}
+	return detail
+}
+
+func quotedList(names []string) string {
+	quoted := make([]string, len(names))
+	for i, name := range names {
+		quoted[i] = strconv.Quote(name)
+	}
+	return list(quoted, "and")
+}
+
+// list joins names as a sentence does.
+func list(names []string, last string) string {
+	switch len(names) {
+	case 0:
+		return "none"
+	case 1:
+		return names[0]
+	}
+	return strings.Join(names[:len(names)-1], ", ") + " " + last + " " + names[len(names)-1]
+}
+
+// clip shortens what a caller sent, for a sentence.
+func clip(text string) string {
+	const most = 60
+	if utf8.RuneCountInString(text) <= most {
+		return text
+	}
+	runes := []rune(text)
+	return string(runes[:most]) + "…"
+}
