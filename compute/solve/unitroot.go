@@ -22,6 +22,7 @@ func UnitRoot(f Ratio, lo, hi, guess float64, rising bool) (x float64, ok bool) 
 		x = middle(lo, hi)
 	}
 	best, bestError := x, math.Inf(1)
+	before := math.Inf(1) // the logarithmic step before
 	for step := range mostSteps {
 		ratio, power := f(x)
 		e := ratio - 1
@@ -47,8 +48,8 @@ func UnitRoot(f Ratio, lo, hi, guess float64, rising bool) (x float64, ok bool) 
 		switch {
 		case d == 0 || !(d > -1.5 && d < 1.5) || step > 8 && step%3 == 0 && !(math.Abs(d) < 1e-9):
 			next = middle(lo, hi)
-		case math.Abs(d) < 1e-11 && math.Abs(e) < 1e-9:
-			// The next error is of the order of d squared: below the last place.
+		case math.Abs(d) < 1e-7 && math.Abs(d)*d*d < 1e-17*before*before:
+			// Converging by squares, as the step before shows: the error of next is below the last place.
 			if next >= lo && next <= hi {
 				return next, true
 			}
@@ -59,7 +60,7 @@ func UnitRoot(f Ratio, lo, hi, guess float64, rising bool) (x float64, ok bool) 
 		if next == x || !(next > lo && next < hi) {
 			return best, true // the bracket or the step has shrunk below the last place
 		}
-		x = next
+		x, before = next, d
 	}
 	return best, false
 }
@@ -79,13 +80,19 @@ func middle(lo, hi float64) float64 {
 	return lo + (hi-lo)/2
 }
 
-// roughPower returns x^p within some percent, for x > 0, from the bits of x taken as its logarithm. Where the
-// result is no normal number it returns NaN.
+// roughPower returns x^p within about a percent, for x > 0 and moderate p, from the bits of x: its exponent, and a parabola for the logarithm
+// of its mantissa. Where the result is no normal number it returns NaN.
 func roughPower(x, p float64) float64 {
-	const one = 0x3FF << 52
-	exponent := p * float64(int64(math.Float64bits(x))-one)
-	if !(math.Abs(exponent) < 1000<<52) {
+	const one = 1 << 52
+	l := float64(int64(math.Float64bits(x)))/one - 1023
+	m := l - math.Floor(l)
+	l = p * (l + bulge*m*(1-m))
+	if !(math.Abs(l) < 1000) {
 		return math.NaN()
 	}
-	return math.Float64frombits(uint64(int64(exponent) + one))
+	m = l - math.Floor(l)
+	return math.Float64frombits(uint64((l - bulge*m*(1-m) + 1023) * one))
 }
+
+// bulge makes m + bulge*m*(1-m) the parabola nearest to log2(1+m).
+const bulge = 0.343

@@ -1,0 +1,116 @@
+package operation
+
+import (
+	"math"
+
+	"leat/api/wire"
+	"leat/compute/flow"
+)
+
+// Depths is the operation depths: the characteristic depths of one section.
+var Depths = Operation{Name: "depths", Answer: func(dst, body []byte, options Options) ([]byte, []byte, *wire.Problem) {
+	var request wire.DepthsRequest
+	return run(dst, body, options, &request, &request.ID, &request.System, func() (answer, *wire.Problem) {
+		return solveDepths(&request, options.Brief)
+	})
+}}
+
+func solveDepths(r *wire.DepthsRequest, brief bool) (answer, *wire.Problem) {
+	c, problem := inputs{&r.Common, &r.Section, &r.Roughness, r.BedSlope}.channel()
+	if problem != nil {
+		return nil, problem
+	}
+	if r.Depth.Given {
+		if fault, above := aboveSection(&c, r.Depth.Value, "/depth"); above {
+			return nil, wire.InvalidRequest(fault)
+		}
+	}
+	q := r.Discharge.Value
+	var room flow.Room
+	d := c.Depths(q, &room)
+	if d.NormalAbsent == flow.Unsolved || d.CriticalAbsent == flow.Unsolved {
+		return nil, wire.Internal("the solver did not converge on this request; nothing is given rather than a guess")
+	}
+	var w warnings
+	a := &wire.DepthsAnswer{
+		Brief:       brief,
+		NormalDepth: math.NaN(), CriticalDepth: math.NaN(),
+		NormalAbsent: d.NormalAbsent.String(), CriticalAbsent: d.CriticalAbsent.String(),
+		NormalVelocity: math.NaN(), NormalFroudeNumber: math.NaN(), NormalBedShearStress: math.NaN(),
+		Fill: d.Fill, SlopeClass: d.Class.String(), CriticalSlope: d.CriticalSlope,
+		Capacity: wire.Capacity{
+			Known: !math.IsNaN(d.Capacity.Discharge), Discharge: d.Capacity.Discharge, Depth: d.Capacity.Depth,
+			FullDischarge: d.FullDischarge, Ratio: d.Ratio,
+		},
+		Freeboard: d.Freeboard, Closed: c.Section.Closed(), Surcharged: d.Surcharged, FullFrictionSlope: d.FullFriction,
+	}
+	if len(d.Normal) > 0 {
+		s := c.State(d.Normal[0], q)
+		a.NormalDepth = s.Geometry.Depth
+		a.NormalVelocity, a.NormalFroudeNumber, a.NormalBedShearStress = s.Velocity, s.FroudeNumber, s.BedShearStress
+		w.state(&c, &s, "/section")
+	}
+	if len(d.Critical) > 0 {
+		a.CriticalDepth = d.Critical[0]
+	}
+	if !brief {
+		a.Normal, a.Critical = states(&c, d.Normal, q), states(&c, d.Critical, q)
+	}
+	w.depths(&c, &d)
+	if r.Depth.Given {
+		given, problem := given(&c, &d, r.Depth.Value, q, &w)
+		if problem != nil {
+			return nil, problem
+		}
+		a.Given = given
+	}
+	a.Warnings = w.done()
+	return a, nil
+}
+
+// depths adds what is to be said of the characteristic depths.
+func (w *warnings) depths(c *flow.Channel, d *flow.Depths) {
+	if len(d.Normal) > 0 && d.Normal[0] > d.Bank {
+		w.add("overtopped", "/section", "the normal depth lies above the bank: the section overtops at this discharge")
+	}
+	if d.Surcharged {
+		w.add("surcharged", "/discharge", "the discharge is more than the closed section carries with a free surface; under pressure its depth is governed from downstream")
+	}
+	if len(d.Normal) > 1 {
+		w.add("several_normal_depths", "/discharge", "the discharge flows uniformly at more than one depth; the lowest is meant by normal_depth")
+	}
+	if len(d.Critical) > 1 {
+		w.add("several_critical_depths", "/discharge", "the specific energy has more than one minimum; the lowest depth is meant by critical_depth")
+	}
+}
+
+// given describes the depth that a request says occurs there.
+func given(c *flow.Channel, d *flow.Depths, depth, q float64, w *warnings) (wire.DepthsGiven, *wire.Problem) {
+	s := c.State(depth, q)
+	w.state(c, &s, "/depth")
+	g := wire.DepthsGiven{
+		Present: true, State: state(&s, members(c, true)), AlternateDepth: math.NaN(), SequentDepth: math.NaN(),
+		Curve: c.CurveName(&s, d.Class, d.Normal),
+	}
+	if s.Regime == flow.FullFlow {
+		w.add("no_conjugate_depths", "/depth", "the section is full at the given depth: it has no alternate or sequent depth there")
+		return g, nil
+	}
+	alternate, absent := c.Alternate(q, depth)
+	if absent == flow.Unsolved {
+		return g, wire.Internal("the search for the alternate depth did not converge; nothing is given rather than a guess")
+	}
+	g.AlternateDepth = alternate
+	if math.IsNaN(alternate) {
+		w.add("alternate_depth_absent", "/depth", "no alternate depth: "+absent.String())
+	}
+	sequent, absent := c.Sequent(q, depth)
+	if absent == flow.Unsolved {
+		return g, wire.Internal("the search for the sequent depth did not converge; nothing is given rather than a guess")
+	}
+	g.SequentDepth = sequent
+	if math.IsNaN(sequent) {
+		w.add("sequent_depth_absent", "/depth", "no sequent depth: "+absent.String())
+	}
+	return g, nil
+}

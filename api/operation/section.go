@@ -1,0 +1,51 @@
+package operation
+
+import (
+	"strconv"
+
+	"leat/api/wire"
+)
+
+// Section is the operation section: geometry and hydraulics at given depths.
+var Section = Operation{Name: "section", Answer: func(dst, body []byte, options Options) ([]byte, []byte, *wire.Problem) {
+	var request wire.SectionRequest
+	return run(dst, body, options, &request, &request.ID, &request.System, func() (answer, *wire.Problem) {
+		return solveSection(&request)
+	})
+}}
+
+func solveSection(r *wire.SectionRequest) (answer, *wire.Problem) {
+	c, problem := inputs{&r.Common, &r.Section, &r.Roughness, r.BedSlope}.channel()
+	if problem != nil {
+		return nil, problem
+	}
+	depths, one := r.Depths, r.Depth.Given
+	if one {
+		depths = []float64{r.Depth.Value}
+	}
+	pointer := func(i int) string {
+		if one {
+			return "/depth"
+		}
+		return "/depths/" + strconv.Itoa(i)
+	}
+	var faults []wire.Fault
+	for i, depth := range depths {
+		if fault, above := aboveSection(&c, depth, pointer(i)); above {
+			faults = append(faults, fault)
+		}
+	}
+	if len(faults) > 0 {
+		return nil, wire.InvalidRequest(faults...)
+	}
+	var w warnings
+	m := members(&c, r.Discharge.Given)
+	a := &wire.SectionAnswer{States: make([]wire.State, len(depths))}
+	for i, depth := range depths {
+		s := c.State(depth, r.Discharge.Value)
+		a.States[i] = state(&s, m)
+		w.state(&c, &s, pointer(i))
+	}
+	a.Warnings = w.done()
+	return a, nil
+}

@@ -1,0 +1,210 @@
+package flow
+
+import (
+	"math"
+
+	"leat/compute/solve"
+)
+
+// samples is the number of stretches in which an irregular piece is searched. Sampling is closest at both ends of the piece, where a
+// zone begins to be wet or a crown closes.
+const samples = 24
+
+// knots are the most stretches of one piece.
+const knots = samples + 2
+
+// A branch is a stretch of depth on which a curve is smooth and monotone. Its lower end is exclusive (0 for the first; otherwise the
+// curve may jump there), its upper end inclusive (+Inf for the last of an open section).
+type branch struct {
+	lo, hi float64
+	rising bool
+	first  bool // the branch begins at the lower end of a smooth piece
+	last   bool // the branch ends at the upper end of a smooth piece
+}
+
+// inside returns a depth inside a branch to begin a search from.
+func (b branch) inside() float64 {
+	switch {
+	case math.IsInf(b.hi, 1) && b.lo == 0:
+		return 1
+	case math.IsInf(b.hi, 1):
+		return 2 * b.lo
+	case b.lo == 0:
+		return b.hi / 2
+	}
+	return b.lo + (b.hi-b.lo)/2
+}
+
+// branches visits the branches of a curve from the bed upward until visit returns false.
+func (c *Channel) branches(f *curve, visit func(b branch) bool) {
+	breaks := newBreaks(c)
+	lo := 0.0
+	for {
+		hi := breaks.next()
+		if !c.piece(f, lo, hi, visit) || hi >= c.Section.Height() {
+			return
+		}
+		lo = hi
+	}
+}
+
+// piece visits the branches of a curve on one smooth piece; it reports whether to go on.
+func (c *Channel) piece(f *curve, lo, hi float64, visit func(b branch) bool) bool {
+	var knot [knots + 1]float64
+	n := c.cut(f, lo, hi, &knot)
+	b := branch{lo: lo, rising: f.risesFromZero(), first: true}
+	if lo > 0 {
+		b.rising = f.rate(c.Section.At(above(lo))) >= 0
+	}
+	for i := 1; i <= n; i++ {
+		end := knot[i]
+		rising := true
+		if !math.IsInf(end, 1) {
+			rising = f.rate(c.Section.At(end)) >= 0
+		}
+		if rising != b.rising {
+			b.hi = c.turn(f, max(knot[i-1], lo), end, rising)
+			if b.hi > b.lo {
+				if !visit(b) {
+					return false
+				}
+				b.lo, b.first = b.hi, false
+			}
+			b.rising = rising
+		}
+	}
+	b.hi, b.last = hi, true
+	if b.hi > b.lo {
+		return visit(b)
+	}
+	return true
+}
+
+// cut writes the ends of the stretches of a piece on which the curve's rate changes its sign at most once, both ends of the
+// piece included, and returns how many stretches there are.
+func (c *Channel) cut(f *curve, lo, hi float64, knot *[knots + 1]float64) int {
+	knot[0] = lo
+	switch f.turning {
+	case parted:
+		reference := 2 * lo
+		if !math.IsInf(hi, 1) {
+			reference = hi
+		} else if lo == 0 {
+			reference = 1
+		}
+		a, b := f.parts(c.Section.At(reference))
+		if b < a {
+			a, b = b, a
+		}
+		n := 1
+		for _, depth := range [2]float64{a, b} {
+			if depth > knot[n-1] && depth < hi {
+				knot[n] = depth
+				n++
+			}
+		}
+		knot[n] = hi
+		return n
+	case searched:
+		return c.sample(f, lo, hi, knot)
+	}
+	knot[1] = hi
+	return 1
+}
+
+// sample cuts a piece of which nothing is known. Where the rate comes near zero between three samples without changing its sign, the
+// place where it is nearest becomes a knot, so that a pair of turns is not passed over.
+func (c *Channel) sample(f *curve, lo, hi float64, knot *[knots + 1]float64) int {
+	var rate [knots + 1]float64
+	for i := 1; i <= samples; i++ {
+		knot[i] = samplePoint(lo, hi, i)
+		rate[i] = f.rate(c.Section.At(min(knot[i], math.MaxFloat64)))
+	}
+	n := samples
+	if math.IsInf(hi, 1) {
+		n++
+		knot[n], rate[n] = hi, math.Inf(1)
+	} else {
+		knot[n] = hi
+	}
+	for i := 2; i < samples; i++ {
+		p, q, r := rate[i-1], rate[i], rate[i+1]
+		if p*q > 0 && q*r > 0 && math.Abs(q) <= math.Abs(p) && math.Abs(q) <= math.Abs(r) {
+			knot[i] = c.nearestZero(f, knot[i-1], knot[i], knot[i+1])
+		}
+	}
+	return n
+}
+
+// samplePoint returns the i-th of samples points of a piece.
+func samplePoint(lo, hi float64, i int) float64 {
+	switch {
+	case math.IsInf(hi, 1) && lo == 0:
+		return math.Ldexp(1, 3*(i-samples/2))
+	case math.IsInf(hi, 1):
+		return lo + math.Ldexp(lo, i-samples/2)
+	}
+	u := float64(i) / samples
+	return lo + (hi-lo)*(u*u*u*(10+u*(6*u-15)))
+}
+
+// nearestZero returns the depth between a and c at which the size of the rate is least, by golden sections, or the first depth met
+// at which the rate has the other sign.
+func (c *Channel) nearestZero(f *curve, a, b, d float64) float64 {
+	const golden = 0.3819660112501051
+	best := f.rate(c.Section.At(b))
+	positive := best > 0
+	best = math.Abs(best)
+	for range 40 {
+		x := b + golden*(d-b)
+		if b-a > d-b {
+			x = b - golden*(b-a)
+		}
+		rate := f.rate(c.Section.At(x))
+		if (rate > 0) != positive {
+			return x
+		}
+		rate = math.Abs(rate)
+		switch {
+		case rate < best && x > b:
+			a, b, best = b, x, rate
+		case rate < best:
+			d, b, best = b, x, rate
+		case x > b:
+			d = x
+		default:
+			a = x
+		}
+	}
+	return b
+}
+
+// turn returns the depth between lo and hi at which the rate of a curve changes its sign: to rising or from it.
+func (c *Channel) turn(f *curve, lo, hi float64, rising bool) float64 {
+	sign := 1.0
+	if !rising {
+		sign = -1
+	}
+	// A finite bracket: the signs at zero and without end are known.
+	if lo == 0 {
+		lo = min(hi, math.MaxFloat64) / 2
+		if math.IsInf(hi, 1) {
+			lo = 1
+		}
+		for ; lo > 0 && sign*f.rate(c.Section.At(lo)) > 0; lo /= 16 {
+			hi = lo
+		}
+	} else {
+		lo = above(lo)
+	}
+	if math.IsInf(hi, 1) {
+		for hi = 2 * lo; sign*f.rate(c.Section.At(hi)) <= 0; hi *= 16 {
+			lo = hi
+		}
+	}
+	depth, _, _ := solve.RootSlopeless(func(depth float64) float64 { return f.rate(c.Section.At(depth)) }, lo, hi)
+	return depth
+}
+
+// above returns the next depth above another.
+func above(depth float64) float64 { return math.Nextafter(depth, math.Inf(1)) }

@@ -1,0 +1,75 @@
+// Package flow computes what one section carries at one discharge: energy, force and Froude number, the normal, critical,
+// alternate and sequent depths, capacity and the class of the slope. Barrels are resolved here: discharges that
+// cross its face are totals, everything else describes one barrel.
+package flow
+
+import (
+	"math"
+
+	"leat/compute/friction"
+	"leat/compute/section"
+)
+
+// Channel is a section with what governs the flow in it. The zero values of the optional fields mean what their comments say.
+// It is a value: nothing in it changes, and its methods do not allocate.
+type Channel struct {
+	Section section.Section
+	Law     friction.Law // nil where no roughness is known
+	Slope   float64      // the sine of the bed's angle, -1 < Slope < 1, positive when it falls downstream
+	Gravity float64      // m/s2
+	Barrels int          // equal barrels that share the discharge; 0 counts as 1
+
+	EnergyCoefficient   float64 // alpha as given; 0 leaves it to the law (1 unless zones say otherwise)
+	MomentumCoefficient float64 // beta as given; likewise
+
+	Bank float64 // depth at which an open section overtops as given; 0 leaves it to the section
+}
+
+// Cosine returns the cosine of the bed's angle.
+func (c *Channel) Cosine() float64 { return cosine(c.Slope) }
+
+func cosine(sine float64) float64 { return math.Sqrt((1 - sine) * (1 + sine)) }
+
+// BankHeight returns the depth at which the section overtops, or the crown of a closed one, and whether it is known.
+func (c *Channel) BankHeight() (depth float64, known bool) {
+	if c.Bank > 0 && !c.Section.Closed() {
+		return c.Bank, true
+	}
+	return c.Section.Bank()
+}
+
+// barrels returns their number as a float64.
+func (c *Channel) barrels() float64 {
+	if c.Barrels < 1 {
+		return 1
+	}
+	return float64(c.Barrels)
+}
+
+// coefficients returns alpha and beta and their rates at a geometry: as given, else from the law, else 1.
+func (c *Channel) coefficients(g section.Geometry) friction.Coefficients {
+	k := friction.Coefficients{Energy: 1, Momentum: 1}
+	if c.Law != nil && (c.EnergyCoefficient == 0 || c.MomentumCoefficient == 0) {
+		k = c.Law.Coefficients(g)
+	}
+	if c.EnergyCoefficient != 0 {
+		k.Energy, k.EnergyRate = c.EnergyCoefficient, 0
+	}
+	if c.MomentumCoefficient != 0 {
+		k.Momentum, k.MomentumRate = c.MomentumCoefficient, 0
+	}
+	return k
+}
+
+// constantCoefficients reports whether alpha and beta do not vary with depth.
+func (c *Channel) constantCoefficients() bool {
+	return c.Law == nil || c.Law.Form() != friction.General || c.EnergyCoefficient != 0 && c.MomentumCoefficient != 0
+}
+
+// at returns the geometry at a depth; on a closed section's crown it is full.
+func (c *Channel) at(depth float64) section.Geometry {
+	if c.Section.Closed() && depth >= c.Section.Height() {
+		return c.Section.Full()
+	}
+	return c.Section.At(depth)
+}

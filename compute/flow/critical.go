@@ -1,0 +1,94 @@
+package flow
+
+import (
+	"math"
+
+	"leat/compute/section"
+	"leat/compute/solve"
+)
+
+// Critical appends to dst every critical depth of a discharge (total, m3/s), rising: the depths at which the specific energy has a smooth
+// minimum, F = 1. Maxima and kinks of the energy are none. Where there is none it returns the physical reason. It allocates only where
+// dst's capacity does not suffice.
+func (c *Channel) Critical(discharge float64, dst []float64) (depths []float64, absent Absence) {
+	m := c.motion(discharge)
+	return m.critical(dst)
+}
+
+func (m *motion) critical(dst []float64) (depths []float64, absent Absence) {
+	form := m.channel.Section.Form()
+	if m.channel.constantCoefficients() && (form == section.Rising || form == section.Arched) {
+		hi := m.channel.Section.Height()
+		depth, ok := m.criticalBetween(0, hi)
+		if !ok {
+			return dst, Unsolved
+		}
+		return append(dst, depth), Present
+	}
+	none := len(dst)
+	f := m.hollow(specificEnergy)
+	kinked, before := false, false
+	edge := 0.0 // dE/ddepth at the upper end of the branch before
+	m.channel.branches(&f, func(b branch) bool {
+		switch {
+		case !before: // the first branch: the energy falls from the bed
+		case !b.first && b.rising:
+			dst = append(dst, b.lo)
+		case b.first && b.rising && edge < 0:
+			// A minimum where two pieces meet: smooth if the derivative does not jump.
+			if m.energyRate(m.channel.Section.At(above(b.lo)))-edge <= seam*m.cosine {
+				dst = append(dst, b.lo)
+			} else {
+				kinked = true
+			}
+		}
+		before = true
+		if b.last && !math.IsInf(b.hi, 1) {
+			edge = m.energyRate(m.channel.Section.At(b.hi))
+		}
+		return true
+	})
+	switch {
+	case len(dst) > none:
+		return dst, Present
+	case kinked:
+		return dst, Kinked
+	}
+	return dst, FillsFirst
+}
+
+// criticalBetween returns the depth between two others at which F^2 falls through one, where alpha is constant.
+func (m *motion) criticalBetween(lo, hi float64) (depth float64, ok bool) {
+	guess := 1.0
+	if !math.IsInf(hi, 1) {
+		guess = lo + (hi-lo)/2
+	}
+	alpha := m.channel.coefficients(section.Geometry{}).Energy
+	c := alpha * m.head / m.cosine
+	return solve.UnitRoot(func(depth float64) (float64, float64) {
+		g := m.channel.Section.At(depth)
+		return g.Area * g.Area * g.Area / (c * g.TopWidth), depth * (3*g.TopWidth/g.Area - g.TopWidthRate/g.TopWidth)
+	}, lo, hi, guess, true)
+}
+
+// CriticalAt returns the discharge (total, m3/s) for which a depth is critical, or the reason why there is none: Filled for a section filled to its
+// crown, NoMinimum where the specific energy of the discharge for which F = 1 has a maximum there, or F is 1 for none.
+func (c *Channel) CriticalAt(depth float64) (discharge float64, absent Absence) {
+	if c.Full(depth) {
+		return 0, Filled
+	}
+	g := c.Section.At(depth)
+	unit := motion{channel: c, discharge: 1, head: 1 / c.Gravity, cosine: c.Cosine()}
+	term := unit.froudeTerm(g)
+	if !(term > 0) {
+		return 0, NoMinimum
+	}
+	q := math.Sqrt(unit.cosine / term)
+	m := motion{channel: c, discharge: q, head: q * q / c.Gravity, cosine: unit.cosine}
+	// The energy must rise above: a little below the depth its derivative is negative.
+	step := depth * 1e-6
+	if !(m.energyRate(c.Section.At(depth-step)) < 0) {
+		return 0, NoMinimum
+	}
+	return q * c.barrels(), Present
+}

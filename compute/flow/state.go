@@ -1,0 +1,118 @@
+package flow
+
+import (
+	"math"
+
+	"leat/compute"
+	"leat/compute/section"
+)
+
+// Regime is the kind of flow at a depth.
+type Regime uint8
+
+const (
+	Subcritical   Regime = iota + 1 // the energy rises with depth, F < 1: tranquil
+	CriticalFlow                    // |F - 1| <= 1e-6
+	Supercritical                   // F > 1: shooting
+	FullFlow                        // a closed section filled to its crown
+)
+
+var regimeNames = [...]string{"", "subcritical", "critical", "supercritical", "full"}
+
+func (r Regime) String() string { return regimeNames[r] }
+
+// State is everything that is said of one depth in a channel. A number that cannot be given is NaN.
+type State struct {
+	Geometry       section.Geometry
+	Radius         float64 // hydraulic radius, m
+	HydraulicDepth float64 // A/T, m; NaN where full
+	CentroidDepth  float64 // depth of the centroid of the wetted area below the surface, measured normal to the bed, m
+
+	// With a law:
+	Conveyance       float64 // of one barrel, m3/s: at the discharge where there is one, else at the channel's slope
+	UniformDischarge float64 // total, m3/s, where the slope is positive
+
+	// With a discharge:
+	Discharge      float64 // total, m3/s
+	Velocity       float64 // m/s
+	VelocityHead   float64 // alpha*V^2/2g, m
+	FroudeNumber   float64 // NaN where full, or where alpha rises so fast that F^2 is negative
+	SpecificEnergy float64 // m
+	SpecificForce  float64 // of one barrel, m3
+	Regime         Regime
+
+	// With both:
+	FrictionSlope  float64 // (Q/K)^2
+	BedShearStress float64 // rho*g*R*friction slope: the mean over the wetted perimeter, N/m2
+	StreamPower    float64 // bed shear stress times velocity, W/m2
+}
+
+// State describes a depth, 0 < depth <= the section's height. A discharge of 0 stands for none.
+func (c *Channel) State(depth, discharge float64) State {
+	g := c.at(depth)
+	s := State{Geometry: g, Radius: g.Radius(), HydraulicDepth: math.NaN(), CentroidDepth: g.Moment / g.Area,
+		Conveyance: math.NaN(), UniformDischarge: math.NaN(), FroudeNumber: math.NaN(), FrictionSlope: math.NaN(),
+		BedShearStress: math.NaN(), StreamPower: math.NaN()}
+	full := c.Full(depth)
+	if !full {
+		s.HydraulicDepth = g.Area / g.TopWidth
+	}
+	if c.Law != nil && c.Slope > 0 {
+		s.UniformDischarge = c.UniformDischarge(g)
+		s.Conveyance = c.Law.AtSlope(g, c.Slope).K
+	}
+	if discharge > 0 {
+		c.move(&s, discharge, full)
+	} else if c.Law != nil && !(c.Slope > 0) {
+		s.Conveyance = c.restingConveyance(g)
+	}
+	return s
+}
+
+// restingConveyance returns the conveyance where there is neither a discharge nor a positive slope: known for laws
+// that need none, else NaN.
+func (c *Channel) restingConveyance(g section.Geometry) float64 {
+	if gentle, steep := c.Law.AtSlope(g, 1e-6).K, c.Law.AtSlope(g, 1e-3).K; gentle == steep {
+		return gentle
+	}
+	return math.NaN()
+}
+
+// move fills in what a discharge adds to a state.
+func (c *Channel) move(s *State, discharge float64, full bool) {
+	g := s.Geometry
+	m := c.motion(discharge)
+	s.Discharge = discharge
+	s.Velocity = m.discharge / g.Area
+	s.VelocityHead = c.coefficients(g).Energy * m.head / (2 * g.Area * g.Area)
+	s.SpecificEnergy = g.Depth*m.cosine + s.VelocityHead
+	s.SpecificForce = m.force(g)
+	if full {
+		s.Regime = FullFlow
+	} else {
+		square := m.froudeTerm(g) / m.cosine
+		if square >= 0 {
+			s.FroudeNumber = math.Sqrt(square)
+		}
+		switch {
+		case math.Abs(s.FroudeNumber-1) <= same:
+			s.Regime = CriticalFlow
+		case square > 1:
+			s.Regime = Supercritical
+		default:
+			s.Regime = Subcritical
+		}
+	}
+	if c.Law == nil {
+		return
+	}
+	s.Conveyance = c.Law.AtDischarge(g, m.discharge).K
+	if !(s.Conveyance > 0) {
+		s.Conveyance = math.NaN()
+		return
+	}
+	ratio := m.discharge / s.Conveyance
+	s.FrictionSlope = ratio * ratio
+	s.BedShearStress = compute.WaterDensity * c.Gravity * s.Radius * s.FrictionSlope
+	s.StreamPower = s.BedShearStress * s.Velocity
+}
