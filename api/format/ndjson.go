@@ -88,7 +88,7 @@ func appendHead(dst, id []byte, line int64) []byte {
 
 func appendTail(dst []byte, problem *wire.Problem) []byte {
 	dst = append(dst, `"problem":`...)
-	dst = appendProblem(dst, problem)
+	dst = problem.AppendJSON(dst)
 	return append(dst, '}')
 }
 
