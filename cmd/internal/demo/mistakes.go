@@ -7,7 +7,7 @@ type Mistake struct {
 	Told     string // what happened in the office
 	Text     string
 	Status   int      // of the problem that its caller gets; 200 where the row is lawful all the same and is answered
-	Pointers []string // of the faults in that problem, in order; nil where the place is a matter of syntax
+	Pointers []string // the places of the faults in that problem; nil where the place is a matter of syntax
 }
 
 // Mistakes are the rows that are wrong on purpose, by line.
@@ -88,8 +88,8 @@ var Mistakes = []Mistake{
 		Text: `{"id":"MAR-LC-0428","section":{"kind":"rectangular","bottom_width":1,"bank_height":0,6},"roughness":{"manning":0.015},"bed_slope":0.02,"discharge":0.75}`,
 	},
 	{
-		Line: 457, ID: `"QUE-MD-0457"`, Status: 422, Pointers: []string{"/section/rows/3/0"},
-		Told: "a row of an old table was copied twice",
+		Line: 457, ID: `"QUE-MD-0457"`, Status: 422, Pointers: []string{"/section/rows/3/0", "/section/rows/3/1"},
+		Told: "a row of an old table was copied twice, so that neither depth nor area rises",
 		Text: `{"id":"QUE-MD-0457","section":{"kind":"tabulated","rows":[[0.5,1.625,4.802,4],[1,4,6.606,5.5],[1.5,7.125,8.408,7],[1.5,7.125,8.408,7],[2,11,10.211,8.5]]},"roughness":{"manning":0.03},"bed_slope":0.0003,"discharge":4.4}`,
 	},
 	{

@@ -36,7 +36,10 @@ func row(r *rand.Rand, id string, p parish, c class) string {
 
 	share := pen.between(0.08, 0.9)
 	if pen.chance(9) { // too small for its flow, as some are
-		share = pen.between(1, 1.45)
+		share = pen.between(1.05, 1.5)
+		if !d.closed {
+			share *= 1.8 // to the bank it carries about so much more than at the depth it was designed for
+		}
 	}
 	barrels := ""
 	if d.barrels > 1 {
