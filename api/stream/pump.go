@@ -37,7 +37,7 @@ type Pump struct {
 	// Draining, once closed, ends the run after the records already read. nil never does.
 	Draining <-chan struct{}
 	// Stall is how long nothing may move in either direction, while nothing is being solved, before the run is
-	// ended with the reason Idle or, where the client owes us its reading, broken off with ErrStalled. 0 means DefaultStall.
+	// ended with the reason Idle or, where the client owes us its reading, broken off with ErrStalled. 0 means DefaultStall, less than 0 never.
 	Stall time.Duration
 	// Activity, where given, is shared with what else sees bytes move: its Reader around the body lets a line
 	// that arrives byte by byte count as movement.
@@ -45,13 +45,16 @@ type Pump struct {
 
 	// StopReading must make a blocked Reader.Next (and Discard) return soon, with any error. It is called at most
 	// once: when the run is broken off, or ends early while the client is silent. nil where reading never blocks for long.
+	// A server of net/http does it with a read deadline in the past; that also cancels the request's context, so Run
+	// must be given one that is cancelled by the request's only until StopReading is called.
 	StopReading func()
 	// StopWriting must make a blocked write to Output return soon, with any error. It is called at most once, when
 	// the run is broken off. nil where writing never blocks for long.
 	StopWriting func()
 	// Discard is called once, from the goroutine that reads, when the run ends early while the client may still be
-	// sending: it should read and throw away what comes until the body ends, an error, or a bound of its own; a client
-	// that sends everything before it reads gets its answers that way. nil leaves the rest unread.
+	// sending: it should read and throw away what comes (through Activity, so that it counts as movement) until the
+	// body ends, an error, or a bound of its own; a client that sends everything before it reads gets its answers
+	// that way. nil leaves the rest unread.
 	Discard func()
 
 	// Answered is told of records answered, after each batch and in order; nil is not.

@@ -3,6 +3,7 @@ package stream
 import (
 	"context"
 	"fmt"
+	"math"
 	"runtime"
 	"runtime/debug"
 	"sync"
@@ -63,8 +64,11 @@ func newRun(p *Pump) *run {
 	if r.Store == nil {
 		r.Store = NewStore("", 0, 0, 0)
 	}
-	if r.Stall <= 0 {
+	switch {
+	case r.Stall == 0:
 		r.Stall = DefaultStall
+	case r.Stall < 0:
+		r.Stall = math.MaxInt64
 	}
 	if r.Activity == nil {
 		r.Activity = NewActivity()

@@ -18,7 +18,7 @@ const (
 func (r *run) watch(over <-chan struct{}) {
 	draining, asked, delivered := r.Draining, r.stop.asked, r.delivered
 	var askedAt, deliveredAt time.Time
-	ticker := time.NewTicker(min(max(r.Stall/8, time.Millisecond), time.Second))
+	ticker := time.NewTicker(r.tick(time.Second))
 	defer ticker.Stop()
 	for {
 		select {
@@ -33,10 +33,10 @@ func (r *run) watch(over <-chan struct{}) {
 			r.stop.ask(Draining)
 		case <-asked:
 			asked, askedAt = nil, time.Now()
-			ticker.Reset(min(stopTick, r.Stall/8))
+			ticker.Reset(r.tick(stopTick))
 		case <-delivered:
 			delivered, deliveredAt = nil, time.Now()
-			ticker.Reset(min(stopTick, r.Stall/8))
+			ticker.Reset(r.tick(stopTick))
 		case <-ticker.C:
 			r.watchStall()
 			if !askedAt.IsZero() {
@@ -47,6 +47,11 @@ func (r *run) watch(over <-chan struct{}) {
 			}
 		}
 	}
+}
+
+// tick is how long the watch waits between looks: longest, or less where the stall limit is short.
+func (r *run) tick(longest time.Duration) time.Duration {
+	return max(time.Millisecond, min(longest, r.Stall/8))
 }
 
 // watchStop ends the wait of a reader that was asked to stop so long ago. While bytes come in it will soon stop by
