@@ -110,8 +110,9 @@ func (a *arc) at(depth, height float64) Geometry {
 	}
 }
 
-// At implements Section. At the crown the rates are infinite.
+// At implements Section. At the crown, and for a depth beyond it, the rates are infinite.
 func (s *Arcs) At(depth float64) Geometry {
+	depth = min(depth, s.height)
 	switch {
 	case depth <= s.upper[0].from:
 		return disc(s.invert, depth, 2*s.invert-depth)

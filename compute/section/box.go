@@ -26,7 +26,7 @@ func NewBox(width, height, haunch float64) (Section, error) {
 	}
 	s := &Box{width: width, height: height, haunch: haunch, shoulder: height - haunch}
 	s.below = s.straight(s.shoulder)
-	if haunch > 0 && s.shoulder > 0 {
+	if s.shoulder > 0 && s.shoulder < height {
 		s.breaks = []float64{s.shoulder}
 	}
 	return s, nil
@@ -40,8 +40,9 @@ func (s *Box) straight(depth float64) Geometry {
 	}
 }
 
-// At implements Section.
+// At implements Section; a depth beyond the height counts as the height.
 func (s *Box) At(depth float64) Geometry {
+	depth = min(depth, s.height)
 	if depth <= s.shoulder {
 		return s.straight(depth)
 	}

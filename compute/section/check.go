@@ -59,16 +59,18 @@ func (c *check) size(member string, value float64) bool {
 	return false
 }
 
-// sizeOrZero is size for a length that may be zero.
+// sizeOrZero reports a length that is negative or beyond the bounds; it may be zero or as small as it likes.
 func (c *check) sizeOrZero(member string, value float64) bool {
 	switch {
-	case value == 0:
-		return true
+	case !c.finite(member, value):
 	case value < 0:
 		c.add(member, "negative", "This must not be negative.")
-		return false
+	case value > greatestSize:
+		c.add(member, outOfRange, "This must be from 0 to 1e9 metres.")
+	default:
+		return true
 	}
-	return c.size(member, value)
+	return false
 }
 
 // slope reports a side slope that is negative or beyond the bounds.

@@ -77,8 +77,9 @@ func NewCircular(diameter float64) (Section, error) {
 	return &Circular{diameter}, nil
 }
 
-// At implements Section. At the crown the rates are infinite.
+// At implements Section. At the crown, and for a depth beyond it, the rates are infinite.
 func (s *Circular) At(depth float64) Geometry {
+	depth = min(depth, s.diameter)
 	return disc(0.5*s.diameter, depth, s.diameter-depth)
 }
 

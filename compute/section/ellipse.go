@@ -26,8 +26,9 @@ func NewElliptical(width, height float64) (Section, error) {
 }
 
 // At implements Section. Area, width and moment are those of a circle stretched sideways; the perimeter is width times Legendre's
-// integral of the second kind from the lowest point, whose parameter is 1 - (height/width)^2. At the crown the rates are infinite.
+// integral of the second kind from the lowest point, whose parameter is 1 - (height/width)^2. At the crown, and for a depth beyond it, the rates are infinite.
 func (s *Elliptical) At(depth float64) Geometry {
+	depth = min(depth, s.height)
 	above := s.height - depth
 	c := newSegment(depth/s.height, above/s.height)
 	a, b := 0.5*s.width, 0.5*s.height

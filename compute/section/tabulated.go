@@ -119,9 +119,10 @@ func leastWidth(a, b, c float64) float64 {
 	return math.Sqrt(a)*math.Sqrt(c) + b
 }
 
-// At implements Section.
+// At implements Section. Above the last row it returns what that says.
 func (t *Tabulated) At(depth float64) Geometry {
-	if first := t.depths[0]; depth <= first {
+	if first := t.depths[0]; depth <= first || len(t.depths) == 1 {
+		depth = math.Min(depth, first)
 		x, r := depth/first, &t.rows[0]
 		share := solve.Power(x, t.power-1)
 		width := r.width * share
@@ -133,11 +134,10 @@ func (t *Tabulated) At(depth float64) Geometry {
 			PerimeterRate: perimeter * rate, TopWidthRate: width * rate,
 		}
 	}
-	r := &t.rows[0]
-	from := t.depths[0]
-	if i := sort.SearchFloat64s(t.depths, depth); i > 0 { // the first row not below depth
-		r, from = &t.rows[i-1], t.depths[i-1]
-	}
+	last := len(t.depths) - 1
+	depth = math.Min(depth, t.depths[last])
+	i := sort.SearchFloat64s(t.depths, depth) // the first row not below depth, of a higher index than 0
+	r, from := &t.rows[i-1], t.depths[i-1]
 	d := depth - from
 	u := d / r.height
 	v := ((from + r.height) - depth) / r.height
