@@ -19,7 +19,7 @@ func (f *field) outOfRange(at pointer, column int, value float64, system System)
 	return Fault{
 		Pointer: string(at),
 		Code:    code,
-		Detail:  what + " must be " + b.text(q, system) + ", not " + inUnits(value, q, system) + ".",
+		Detail:  what + " must be " + b.text(q, system) + withUnit(q, system) + ", not " + inUnits(value, q, system) + ".",
 	}
 }
 
@@ -31,9 +31,16 @@ func (b *bounds) text(q Quantity, system System) string {
 		text = "greater than " + least + " and less than " + greatest
 	}
 	if b.floor != 0 {
-		text += " and, unless 0, at least " + inUnits(b.floor, q, system) + " in size"
+		text += " (0, or at least " + inUnits(b.floor, q, system) + " in size)"
 	}
 	return text
+}
+
+func withUnit(q Quantity, system System) string {
+	if unit := system.Unit(q); unit != "" {
+		return " " + unit
+	}
+	return ""
 }
 
 // inUnits tells a value in SI in a system of units, to the digits that people read.
@@ -45,11 +52,7 @@ func inUnits(value float64, q Quantity, system System) string {
 	if system == SI {
 		digits = 12
 	}
-	text := string(trimExponent(strconv.AppendFloat(nil, system.FromSI(q, value), 'g', digits, 64)))
-	if unit := system.Unit(q); unit != "" {
-		text += " " + unit
-	}
-	return text
+	return string(trimExponent(strconv.AppendFloat(nil, system.FromSI(q, value), 'g', digits, 64)))
 }
 
 func tooFewText(f *field) string {

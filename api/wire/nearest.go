@@ -2,17 +2,23 @@ package wire
 
 import "strings"
 
+// longestMisspelt is the length of the longest name that is compared with known ones, which are shorter.
+const longestMisspelt = 64
+
 // nearest returns the known name that a misspelt one most likely stands for: the one that is written alike but for case
 // and separators, or the one that the fewest changes of a letter lead to, or the only one that has it as a word.
 func nearest(name string, known []string) (string, bool) {
-	const longest = 64
-	if name == "" || len(name) > longest {
+	if name == "" || len(name) > longestMisspelt {
 		return "", false
 	}
 	plain := plainName(name)
 	best, fewest := "", 1+max(1, len(plain)/3)
 	for _, k := range known {
-		if d := distance(plain, plainName(k)); d < fewest {
+		other := plainName(k)
+		if len(other)-len(plain) >= fewest || len(plain)-len(other) >= fewest {
+			continue
+		}
+		if d := distance(plain, other); d < fewest {
 			best, fewest = k, d
 		}
 	}
@@ -33,16 +39,25 @@ func nearest(name string, known []string) (string, bool) {
 
 // plainName is a name without what people vary: case, hyphens, underscores, spaces.
 func plainName(name string) string {
-	return strings.NewReplacer("_", "", "-", "", " ", "").Replace(strings.ToLower(name))
+	plain := make([]byte, 0, len(name))
+	for i := range len(name) {
+		switch c := name[i]; {
+		case c == '_', c == '-', c == ' ':
+		case 'A' <= c && c <= 'Z':
+			plain = append(plain, c+'a'-'A')
+		default:
+			plain = append(plain, c)
+		}
+	}
+	return string(plain)
 }
 
 // distance is the number of bytes to insert, delete, replace or exchange with their neighbour that leads from a to b
-// (F. J. Damerau 1964, restricted to one change a place).
+// (F. J. Damerau 1964, restricted to one change a place). Neither is longer than longestMisspelt.
 func distance(a, b string) int {
-	before := make([]int, len(b)+1)
-	last := make([]int, len(b)+1)
-	row := make([]int, len(b)+1)
-	for j := range last {
+	var rows [3][longestMisspelt + 1]int
+	before, last, row := &rows[0], &rows[1], &rows[2]
+	for j := range len(b) + 1 {
 		last[j] = j
 	}
 	for i := 1; i <= len(a); i++ {

@@ -2,11 +2,22 @@ package wire
 
 import "unicode/utf8"
 
+// plainCharacter tells the bytes of strings that need no look: ASCII but for control characters, quote and backslash.
+var plainCharacter = func() (plain [256]bool) {
+	for c := ' '; c < utf8.RuneSelf; c++ {
+		plain[c] = c != '"' && c != '\\'
+	}
+	return plain
+}()
+
 // text reads a string and returns what stands between its quotes, and whether that holds escapes.
 func (s *scanner) text() (raw []byte, escaped, ok bool) {
 	start := s.at + 1
 	i := start
 	for {
+		for i < len(s.data) && plainCharacter[s.data[i]] {
+			i++
+		}
 		if i == len(s.data) {
 			return nil, false, s.fail(i, codeSyntaxError, "the JSON ends inside a string")
 		}
@@ -23,8 +34,6 @@ func (s *scanner) text() (raw []byte, escaped, ok bool) {
 			i += n
 		case c < ' ':
 			return nil, false, s.fail(i, codeSyntaxError, "a control character stands in a string; escape it")
-		case c < utf8.RuneSelf:
-			i++
 		default:
 			r, n := utf8.DecodeRune(s.data[i:])
 			if r == utf8.RuneError && n <= 1 {

@@ -123,7 +123,7 @@ func (w *walk) broken() {
 // object reads an object into the struct v.
 func (w *walk) object(p *plan, v reflect.Value) {
 	if p.given != nil {
-		v.FieldByIndex(p.given).SetBool(true)
+		v.Field(p.given[0]).SetBool(true)
 	}
 	if w.decoder.PeekKind() != '{' {
 		w.notAnObject()
@@ -149,7 +149,11 @@ func (w *walk) object(p *plan, v reflect.Value) {
 			present |= 1 << i
 			f := &p.fields[i]
 			at := w.enter(f.name)
-			w.value(f, v.FieldByIndex(f.at))
+			if len(f.at) == 1 {
+				w.value(f, v.Field(f.at[0]))
+			} else {
+				w.value(f, v.FieldByIndex(f.at))
+			}
 			w.leave(at)
 		}
 	}
