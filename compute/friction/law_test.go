@@ -419,3 +419,45 @@ func BenchmarkLaw(b *testing.B) {
 		}
 	}
 }
+
+// TestEveryLawIsFiniteEverywhere walks far beyond what occurs: no answer is NaN or infinite, and no conveyance negative.
+func TestEveryLawIsFiniteEverywhere(t *testing.T) {
+	random := rand.New(rand.NewPCG(3, 1))
+	spread := func(low, high float64) float64 {
+		return math.Exp(math.Ln10 * (low + (high-low)*random.Float64()))
+	}
+	for range 20000 {
+		n := []float64{spread(-6, 3), spread(-6, 3), spread(-6, 3)}
+		size := spread(-40, 40)
+		var parts []section.Section
+		for range n {
+			parts = append(parts, still{section.Geometry{Depth: size, Area: size * size * spread(-20, 3), Perimeter: size * spread(-3, 3), TopWidth: size * spread(-9, 3), PerimeterRate: spread(-3, 9)}})
+		}
+		w := whole{parts: parts}
+		g := w.At(size)
+		laws := []friction.Law{
+			must(friction.NewManning(n[0])), must(friction.NewChezy(spread(-3, 6))),
+			must(friction.NewSandRoughness(spread(-12, 4), spread(-9, 0), spread(-3, 4))),
+			must(friction.NewManningByDepth([][2]float64{{size / 2, n[0]}, {size * 1.5, n[1]}})),
+			must(friction.NewBedAndSides(bedded{still{g}, g.Perimeter * random.Float64()}, n[0], n[1], friction.HortonEinstein)),
+			must(friction.NewBedAndSides(bedded{still{g}, g.Perimeter * random.Float64()}, n[0], n[1], friction.Pavlovskii)),
+			must(friction.NewZones(w, []float64{-1, 1}, n, friction.Divided)),
+			must(friction.NewZones(w, []float64{-1, 1}, n, friction.HortonEinstein)),
+			must(friction.NewZones(w, []float64{-1, 1}, n, friction.Pavlovskii)),
+		}
+		for _, law := range laws {
+			slope, discharge := spread(-100, -0.001), spread(-100, 100)
+			for _, k := range []friction.Conveyance{law.AtSlope(g, slope), law.AtDischarge(g, discharge)} {
+				if !(k.K >= 0) || math.IsInf(k.K, 0) || math.IsNaN(k.Rate) || math.IsInf(k.Rate, 0) {
+					t.Fatalf("%T: %v at %+v, slope %g, discharge %g", law, k, g, slope, discharge)
+				}
+			}
+			c := law.Coefficients(g)
+			for _, x := range []float64{c.Energy, c.EnergyRate, c.Momentum, c.MomentumRate} {
+				if math.IsNaN(x) || math.IsInf(x, 0) {
+					t.Fatalf("%T: %v at %+v", law, c, g)
+				}
+			}
+		}
+	}
+}
