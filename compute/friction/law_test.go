@@ -356,6 +356,9 @@ func TestForms(t *testing.T) {
 		if s.law.Form() != want[s.name] {
 			t.Errorf("%s: form %v", s.name, s.law.Form())
 		}
+		if divided := s.name == "zones_divided" || s.name == "zones_lotter"; friction.UnitCoefficients(s.law) == divided {
+			t.Errorf("%s: unit coefficients %v", s.name, !divided)
+		}
 		power, isPower := s.law.(friction.Power)
 		if isPower != (s.law.Form() == friction.Manning || s.law.Form() == friction.Chezy) {
 			t.Errorf("%s: Power %v", s.name, isPower)
