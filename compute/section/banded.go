@@ -12,10 +12,11 @@ import (
 type stretch struct {
 	left, right           float64    // offsets, m; -Inf and +Inf where the line goes on for ever
 	leftLevel, rightLevel solve.Pair // levels of its two ends, m; +Inf where it goes on for ever
-	run, length           float64    // top width and perimeter that it gives per unit depth, where it is not level
+	run                   solve.Pair // top width that it gives per unit depth, where it is not level
+	length                float64    // perimeter that it gives per unit depth
 }
 
-// newStretch returns the stretch between two points whose levels have the differences drop and rise from the datum.
+// newStretch returns the stretch between two points, their levels and that of the datum being above one and the same zero.
 func newStretch(left, leftLevel, right, rightLevel, datum float64) stretch {
 	s := stretch{
 		left: left, right: right,
@@ -23,7 +24,8 @@ func newStretch(left, leftLevel, right, rightLevel, datum float64) stretch {
 	}
 	if fall := math.Abs(rightLevel - leftLevel); fall > 0 {
 		run := right - left
-		s.run, s.length = run/fall, math.Sqrt(run*run+fall*fall)/fall
+		s.run = solve.Difference(right, left).Divide(solve.Difference(math.Max(leftLevel, rightLevel), math.Min(leftLevel, rightLevel)))
+		s.length = math.Sqrt(run*run+fall*fall) / fall
 	}
 	return s
 }
@@ -54,11 +56,11 @@ func (s stretch) cut(offset float64) (left, right stretch) {
 	switch {
 	case s.level():
 	case math.IsInf(s.left, -1):
-		at = s.rightLevel.Add(solve.Difference(s.right, offset).Over(s.run))
+		at = s.rightLevel.Add(solve.Difference(s.right, offset).Divide(s.run))
 	case math.IsInf(s.right, 1):
-		at = s.leftLevel.Add(solve.Difference(offset, s.left).Over(s.run))
+		at = s.leftLevel.Add(solve.Difference(offset, s.left).Divide(s.run))
 	default:
-		rise := solve.Difference(offset, s.left).Over(s.run)
+		rise := solve.Difference(offset, s.left).Divide(s.run)
 		if s.rightLevel.Less(s.leftLevel) {
 			rise = solve.Pair{High: -rise.High, Low: -rise.Low}
 		}
@@ -74,16 +76,16 @@ func part(line []stretch, offsets []float64) [][]stretch {
 	zones := make([][]stretch, len(offsets)+1)
 	zone := 0
 	for _, s := range line {
-		for zone < len(offsets) && s.right > offsets[zone] && s.left < offsets[zone] {
-			var left stretch
-			left, s = s.cut(offsets[zone])
-			zones[zone] = append(zones[zone], left)
-			zone++
-		}
 		for zone < len(offsets) && s.left >= offsets[zone] {
 			if s.left == s.right && s.left == offsets[zone] && s.leftLevel.Less(s.rightLevel) {
 				break // a wall that rises to the right, wetted from the left
 			}
+			zone++
+		}
+		for zone < len(offsets) && s.right > offsets[zone] && s.left < offsets[zone] {
+			var left stretch
+			left, s = s.cut(offsets[zone])
+			zones[zone] = append(zones[zone], left)
 			zone++
 		}
 		zones[zone] = append(zones[zone], s)
@@ -151,13 +153,13 @@ func compile(line []stretch) bands {
 		from, to := at(s.lower()), at(s.upper())
 		for l, r := from+n, to+n; l < r; l, r = l>>1, r>>1 {
 			if l&1 == 1 {
-				rates[l].width += s.run
+				rates[l].width += s.run.High
 				rates[l].perimeter += s.length
 				l++
 			}
 			if r&1 == 1 {
 				r--
-				rates[r].width += s.run
+				rates[r].width += s.run.High
 				rates[r].perimeter += s.length
 			}
 		}

@@ -21,7 +21,7 @@ func newLine(offset, level float64) *line {
 // add appends a stretch from where the line stands to a point. slope is its run per unit of level.
 func (l *line) add(offset float64, level solve.Pair, slope float64) *line {
 	l.stretches = append(l.stretches, stretch{
-		left: l.offset, right: offset, leftLevel: l.level, rightLevel: level, run: slope, length: math.Sqrt(1 + slope*slope),
+		left: l.offset, right: offset, leftLevel: l.level, rightLevel: level, run: solve.Pair{High: slope}, length: math.Sqrt(1 + slope*slope),
 	})
 	l.offset, l.level = offset, level
 	return l

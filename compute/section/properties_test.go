@@ -42,8 +42,8 @@ func TestDerivatives(t *testing.T) {
 		s := anySection(t)
 		depth := reach(s) * rapid.Float64Range(0.01, 0.99).Draw(t, "depth")
 		lo, hi := piece(s, depth)
-		step := 0.02 * math.Min(depth-lo, math.Min(hi-depth, depth))
-		if step < 1e-4*depth {
+		step := 0.004 * math.Min(depth-lo, math.Min(hi-depth, depth))
+		if step < 1e-5*depth {
 			return
 		}
 		g := s.At(depth)

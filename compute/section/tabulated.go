@@ -12,7 +12,8 @@ import (
 type Tabulated struct {
 	depths []float64
 	rows   []row
-	power  float64 // m of area = A1*(depth/d1)^m below the first row
+	power  float64    // m of area = A1*(depth/d1)^m below the first row
+	less   solve.Pair // m - 1
 	breaks []float64
 }
 
@@ -74,7 +75,8 @@ func NewTabulated(rows [][4]float64) (Section, error) {
 	}
 
 	first := rows[0]
-	t := &Tabulated{power: first[3] * first[0] / first[1]}
+	less := solve.Product(first[3], first[0]).Plus(-first[1]).Divide(solve.Pair{High: first[1]})
+	t := &Tabulated{power: less.Plus(1).Value(), less: less}
 	moment := first[1] * first[0] / (t.power + 1)
 	for i, r := range rows {
 		w := row{area: r[1], perimeter: r[2], width: r[3], moment: moment}
@@ -124,11 +126,11 @@ func (t *Tabulated) At(depth float64) Geometry {
 	if first := t.depths[0]; depth <= first || len(t.depths) == 1 {
 		depth = math.Min(depth, first)
 		x, r := depth/first, &t.rows[0]
-		share := solve.Power(x, t.power-1)
+		share := solve.PairedPower(x, t.less)
 		width := r.width * share
 		area := r.area * x * share
 		perimeter := r.perimeter * share
-		rate := (t.power - 1) / depth
+		rate := t.less.High / depth
 		return Geometry{
 			Depth: depth, Area: area, Perimeter: perimeter, TopWidth: width, Moment: area * depth / (t.power + 1),
 			PerimeterRate: perimeter * rate, TopWidthRate: width * rate,

@@ -54,12 +54,12 @@ func (p Pair) Times(x float64) Pair {
 	return fast(m.High, m.Low+p.Low*x)
 }
 
-// Over returns p / x.
-func (p Pair) Over(x float64) Pair {
-	q := p.High / x
-	m := Product(q, x)
+// Divide returns p / q.
+func (p Pair) Divide(q Pair) Pair {
+	c := p.High / q.High
+	m := q.Times(c)
 	rest := ((p.High - m.High) - m.Low) + p.Low
-	return fast(q, rest/x)
+	return fast(c, rest/q.High)
 }
 
 // Less reports p < q.

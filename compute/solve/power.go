@@ -21,21 +21,25 @@ const (
 // overflows, NaN for other x. The logarithm is taken in pairs from a table of 1/64 steps and the series of the
 // inverse hyperbolic tangent, the exponential by its Taylor series after reduction by ln 2 (the method of P. T. P. Tang,
 // Table-driven implementation of the logarithm function, ACM TOMS 16, 1990, in paired precision).
-func Power(x, y float64) float64 {
-	if !(x > 0 && x <= math.MaxFloat64) || y != y {
+func Power(x, y float64) float64 { return PairedPower(x, Pair{High: y}) }
+
+// PairedPower is Power for an exponent in paired precision, for powers that are themselves quotients: x^y has a relative
+// error of ln(x) times the error of y.
+func PairedPower(x float64, y Pair) float64 {
+	if !(x > 0 && x <= math.MaxFloat64) || y.High != y.High {
 		return math.NaN()
 	}
-	if y == 0 || x == 1 {
+	if y.High == 0 || x == 1 {
 		return 1
 	}
 	l := logarithm(x)
-	if size := math.Abs(y) * math.Abs(l.High); size > 800 {
-		if (y > 0) == (l.High > 0) {
+	if size := math.Abs(y.High) * math.Abs(l.High); size > 800 {
+		if (y.High > 0) == (l.High > 0) {
 			return math.Inf(1)
 		}
 		return 0
 	}
-	return exponential(l.Times(y))
+	return exponential(l.Times(y.High).Plus(l.High * y.Low))
 }
 
 // logarithm returns ln x in a pair with a relative error below 1e-19.
@@ -48,7 +52,7 @@ func logarithm(x float64) Pair {
 	i := int(math.Floor(mantissa*64+0.5)) - 64 // -20 <= i <= 27
 	centre := 1 + float64(i)/64
 	// ln(mantissa/centre) = 2 atanh(s), s = (mantissa - centre)/(mantissa + centre); the difference is exact.
-	s := Pair{High: mantissa - centre}.over(Sum(mantissa, centre))
+	s := Pair{High: mantissa - centre}.Divide(Sum(mantissa, centre))
 	q := s.High * s.High
 	tail := s.High * q * (2.0/3 + q*(2.0/5+q*(2.0/7+q*(2.0/9+q*(2.0/11)))))
 	l := Pair{2 * s.High, 2 * s.Low}.Plus(tail).Add(logTable[i+20])
@@ -57,14 +61,6 @@ func logarithm(x float64) Pair {
 	}
 	e := float64(exponent)
 	return fast(e*lnTwoHigh, 0).Add(Product(e, lnTwoLow)).Add(l)
-}
-
-// over returns p / q.
-func (p Pair) over(q Pair) Pair {
-	c := p.High / q.High
-	m := q.Times(c)
-	rest := ((p.High - m.High) - m.Low) + p.Low
-	return fast(c, rest/q.High)
 }
 
 // exponential returns e^p, with a p of less than 800 in size.
