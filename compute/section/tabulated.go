@@ -66,7 +66,7 @@ func NewTabulated(rows [][4]float64) (Section, error) {
 		if r[2] < p[2] {
 			c.add(member+"/2", "falling_perimeter", "The wetted perimeter cannot fall as the depth rises.")
 		}
-		if sound && rising && !(leastWidth(p[3], 3*((r[1]-p[1])/(r[0]-p[0]))-p[3]-r[3], r[3]) >= 0) {
+		if sound && rising && !neverNegative(p[3], 3*((r[1]-p[1])/(r[0]-p[0]))-p[3]-r[3], r[3]) {
 			c.add(member, "area_not_monotone", "Between the row before and this one, the cubic through the areas with the widths as its slopes would fall; areas, widths and depths do not agree.")
 		}
 	}
@@ -112,14 +112,9 @@ func (c *check) area(member string, value float64) bool {
 	return false
 }
 
-// leastWidth returns the least value on [0, 1] of the quadratic with Bernstein coefficients a > 0, b, c > 0, or something of its sign.
-func leastWidth(a, b, c float64) float64 {
-	if b >= 0 {
-		return 0
-	}
-	// The minimum lies inside and is (ac - b^2)/(a - 2b + c).
-	return math.Sqrt(a)*math.Sqrt(c) + b
-}
+// neverNegative reports whether a*(1-u)^2 + 2*b*u*(1-u) + c*u^2, with a and c greater than 0, stays at or above 0 for u from 0 to 1.
+// With b below 0 its least value there is (ac - b^2)/(a - 2b + c).
+func neverNegative(a, b, c float64) bool { return b >= 0 || b*b <= a*c }
 
 // At implements Section. Above the last row it returns what that says.
 func (t *Tabulated) At(depth float64) Geometry {
