@@ -11,20 +11,26 @@ import (
 // checker applies the validate tags of the types.
 var checker = newChecker()
 
+// What the validator takes for absent.
+var (
+	noNumber *float64
+	noWhole  *int
+)
+
 func newChecker() *validator.Validate {
 	v := validator.New(validator.WithRequiredStructEnabled())
 	v.RegisterTagNameFunc(func(f reflect.StructField) string { return f.Tag.Get("json") })
 	v.RegisterCustomTypeFunc(func(field reflect.Value) any {
 		n := field.Interface().(Number)
 		if !n.Given {
-			return (*float64)(nil)
+			return noNumber
 		}
 		return &n.Value
 	}, Number{})
 	v.RegisterCustomTypeFunc(func(field reflect.Value) any {
 		n := field.Interface().(Whole)
 		if !n.Given {
-			return (*int)(nil)
+			return noWhole
 		}
 		return &n.Value
 	}, Whole{})

@@ -6,7 +6,8 @@ import "strings"
 const longestMisspelt = 64
 
 // nearest returns the known name that a misspelt one most likely stands for: the one that is written alike but for case
-// and separators, or the one that the fewest changes of a letter lead to, or the only one that has it as a word.
+// and separators, or the one that the fewest changes of a letter lead to, or the one that begins like it, or the only one
+// that has it as a word.
 func nearest(name string, known []string) (string, bool) {
 	if name == "" || len(name) > longestMisspelt {
 		return "", false
@@ -25,6 +26,18 @@ func nearest(name string, known []string) (string, bool) {
 	if best != "" {
 		return best, true
 	}
+	longest := 3
+	for _, k := range known {
+		switch n := commonPrefix(plain, plainName(k)); {
+		case n > longest:
+			best, longest = k, n
+		case n == longest:
+			best = "" // not the only one
+		}
+	}
+	if best != "" {
+		return best, true
+	}
 	word := "_" + strings.ToLower(name) + "_"
 	for _, k := range known {
 		if strings.Contains("_"+k+"_", word) {
@@ -35,6 +48,14 @@ func nearest(name string, known []string) (string, bool) {
 		}
 	}
 	return best, best != ""
+}
+
+func commonPrefix(a, b string) int {
+	n := 0
+	for n < len(a) && n < len(b) && a[n] == b[n] {
+		n++
+	}
+	return n
 }
 
 // plainName is a name without what people vary: case, hyphens, underscores, spaces.
