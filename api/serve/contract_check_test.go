@@ -11,6 +11,7 @@ import (
 	"mime"
 	"net/http"
 	"net/url"
+	"slices"
 	"strconv"
 	"strings"
 	"sync"
@@ -18,15 +19,20 @@ import (
 
 	"github.com/getkin/kin-openapi/openapi3"
 	"github.com/goccy/go-yaml"
+	"github.com/santhosh-tekuri/jsonschema/v6"
 
 	"leat/openapi"
 )
 
-// A Contract judges by the OpenAPI document what the service says and what it is sent. kin-openapi reads the schemas; what belongs to a route,
-// a status and a media type is compared here, so that the judge shares no code with what it judges.
+// A Contract judges by the OpenAPI document what the service says and what it is sent. kin-openapi reads the document; its schemas, which
+// are JSON Schema 2020-12 in OpenAPI 3.1, are compiled once by santhosh-tekuri/jsonschema (which kin-openapi uses too, but afresh for
+// every value and not for all keywords). What belongs to a route, a status and a media type is compared here, so that the
+// judge shares no code with what it judges.
 type Contract struct {
 	Document *openapi3.T
-	options  []openapi3.SchemaValidationOption
+	mutex    sync.Mutex
+	compiler *jsonschema.Compiler
+	compiled map[string]*jsonschema.Schema
 }
 
 // LoadContract loads the document once.
@@ -35,8 +41,45 @@ var LoadContract = sync.OnceValues(func() (*Contract, error) {
 	if err != nil {
 		return nil, err
 	}
-	return &Contract{document, document.GetSchemaValidationOptions()}, nil
+	var plain any
+	if err := yaml.Unmarshal(openapi.YAML, &plain); err != nil {
+		return nil, err
+	}
+	text, err := json.Marshal(plain)
+	if err != nil {
+		return nil, err
+	}
+	resource, err := jsonschema.UnmarshalJSON(bytes.NewReader(text))
+	if err != nil {
+		return nil, err
+	}
+	compiler := jsonschema.NewCompiler()
+	compiler.DefaultDraft(jsonschema.Draft2020)
+	compiler.AssertFormat()
+	if err := compiler.AddResource("contract:", resource); err != nil {
+		return nil, err
+	}
+	return &Contract{Document: document, compiler: compiler, compiled: map[string]*jsonschema.Schema{}}, nil
 })
+
+// judge says what keeps a JSON value from the schema at a place of the document, a JSON Pointer in parts.
+func (c *Contract) judge(value any, place ...string) error {
+	c.mutex.Lock()
+	defer c.mutex.Unlock()
+	pointer := "contract:#"
+	for _, part := range place {
+		pointer += "/" + url.PathEscape(strings.NewReplacer("~", "~0", "/", "~1").Replace(part))
+	}
+	schema := c.compiled[pointer]
+	if schema == nil {
+		var err error
+		if schema, err = c.compiler.Compile(pointer); err != nil {
+			return err
+		}
+		c.compiled[pointer] = schema
+	}
+	return schema.Validate(value)
+}
 
 // RouteTable lists the routes of a server as METHOD path.
 func (s *Server) RouteTable() []string {
@@ -49,11 +92,7 @@ func (s *Server) RouteTable() []string {
 
 // Schema says what keeps a JSON value from a schema of the document, by the schema's name.
 func (c *Contract) Schema(name string, value any) error {
-	ref := c.Document.Components.Schemas[name]
-	if ref == nil {
-		return fmt.Errorf("the contract has no schema %s", name)
-	}
-	return ref.Value.VisitJSON(value, c.options...)
+	return c.judge(value, "components", "schemas", name)
 }
 
 // Answer says what in an answer the contract does not have: to a method and target (path and query) with a status, header and body.
@@ -121,10 +160,10 @@ func (c *Contract) Answer(method, target string, status int, header http.Header,
 	if charset := parameters["charset"]; charset != "" && !strings.EqualFold(charset, "utf-8") {
 		return fmt.Errorf("charset %s", charset)
 	}
-	media := response.Value.Content[kind]
-	if media == nil {
+	if response.Value.Content[kind] == nil {
 		return fmt.Errorf("%s %s: the contract has no %s for %d", method, address.Path, kind, status)
 	}
+	place := []string{"paths", address.Path, strings.ToLower(method), "responses", strconv.Itoa(status), "content", kind, "schema"}
 	var value any
 	switch kind {
 	case "application/json":
@@ -132,14 +171,14 @@ func (c *Contract) Answer(method, target string, status int, header http.Header,
 	case "application/yaml":
 		err = yaml.Unmarshal(body, &value)
 	case "application/x-ndjson":
-		return c.stream(media.Schema.Value, body)
+		return c.stream(place, body)
 	default:
 		value = string(body)
 	}
 	if err != nil {
 		return err
 	}
-	if err := media.Schema.Value.VisitJSON(value, c.options...); err != nil {
+	if err := c.judge(value, place...); err != nil {
 		return fmt.Errorf("%s %s, %d: %w", method, address.Path, status, err)
 	}
 	return nil
@@ -182,11 +221,9 @@ func faults(problem map[string]any) error {
 }
 
 // stream judges a bulk answer: every line by its schema, the numbers of the lines rising, the end line's counts and hash.
-func (c *Contract) stream(schema *openapi3.Schema, body []byte) error {
-	if schema.ContentSchema == nil || len(schema.ContentSchema.Value.OneOf) != 2 {
-		return errors.New("the contract does not say what the lines are")
-	}
-	answer, end := schema.ContentSchema.Value.OneOf[0].Value, schema.ContentSchema.Value.OneOf[1].Value
+func (c *Contract) stream(place []string, body []byte) error {
+	answer := slices.Concat(place, []string{"contentSchema", "oneOf", "0"})
+	end := slices.Concat(place, []string{"contentSchema", "oneOf", "1"})
 	if !bytes.HasSuffix(body, []byte("\n")) {
 		return errors.New("the last line has no end")
 	}
@@ -199,7 +236,7 @@ func (c *Contract) stream(schema *openapi3.Schema, body []byte) error {
 		if err != nil {
 			return fmt.Errorf("%s: %w", text, err)
 		}
-		if err := answer.VisitJSON(value, c.options...); err != nil {
+		if err := c.judge(value, answer...); err != nil {
 			return fmt.Errorf("%s: %w", text, err)
 		}
 		object := value.(map[string]any)
@@ -227,7 +264,7 @@ func (c *Contract) stream(schema *openapi3.Schema, body []byte) error {
 	if err != nil {
 		return fmt.Errorf("%s: %w", last, err)
 	}
-	if err := end.VisitJSON(value, c.options...); err != nil {
+	if err := c.judge(value, end...); err != nil {
 		return fmt.Errorf("%s: %w", last, err)
 	}
 	sum := sha256.Sum256(body[:len(body)-len(last)])
