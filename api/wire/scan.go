@@ -61,12 +61,18 @@ func (s *scanner) scan(data []byte, limits *Limits) bool {
 	return true
 }
 
+// keptRoom is how much room for names a scanner at rest keeps.
+const keptRoom = 64 << 10
+
 // release forgets the data, so that a scanner at rest keeps no body alive.
 func (s *scanner) release() {
 	s.data, s.limits, s.fault = nil, nil, nil
 	clear(s.frames[:])
 	clear(s.names[:cap(s.names)])
 	s.names = s.names[:0]
+	if cap(s.room) > keptRoom {
+		s.room = nil
+	}
 }
 
 func (s *scanner) space() {
