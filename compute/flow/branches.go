@@ -63,7 +63,8 @@ func (c *Channel) piece(f *curve, lo, hi float64, visit func(b branch) bool) boo
 			rising = f.rate(c.Section.At(end)) >= 0
 		}
 		if rising != b.rising {
-			b.hi = c.turn(f, max(knot[i-1], lo), end, rising)
+			// A turn that rounds to the end of the piece, the crown perhaps, stays just inside it.
+			b.hi = min(c.turn(f, max(knot[i-1], lo), end, rising), math.Nextafter(end, 0))
 			if b.hi > b.lo {
 				if !visit(b) {
 					return false

@@ -63,7 +63,7 @@ func (c *Channel) coefficients(g section.Geometry) friction.Coefficients {
 
 // constantCoefficients reports whether alpha and beta do not vary with depth.
 func (c *Channel) constantCoefficients() bool {
-	return c.Law == nil || c.Law.Form() != friction.General || c.EnergyCoefficient != 0 && c.MomentumCoefficient != 0
+	return c.EnergyCoefficient != 0 && c.MomentumCoefficient != 0 || c.Law == nil || friction.UnitCoefficients(c.Law)
 }
 
 // at returns the geometry at a depth; on a closed section's crown it is full.

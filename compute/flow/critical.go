@@ -65,10 +65,11 @@ func (m *motion) criticalBetween(lo, hi float64) (depth float64, ok bool) {
 	}
 	alpha := m.channel.coefficients(section.Geometry{}).Energy
 	c := alpha * m.head / m.cosine
-	return solve.UnitRoot(func(depth float64) (float64, float64) {
+	depth, ok = solve.UnitRoot(func(depth float64) (float64, float64) {
 		g := m.channel.Section.At(depth)
 		return g.Area * g.Area * g.Area / (c * g.TopWidth), depth * (3*g.TopWidth/g.Area - g.TopWidthRate/g.TopWidth)
 	}, lo, hi, guess, true)
+	return min(depth, math.Nextafter(hi, 0)), ok // a depth that rounds to the crown still has a surface
 }
 
 // CriticalAt returns the discharge (total, m3/s) for which a depth is critical, or the reason why there is none: Filled for a section filled to its

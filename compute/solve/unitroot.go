@@ -22,7 +22,7 @@ func UnitRoot(f Ratio, lo, hi, guess float64, rising bool) (x float64, ok bool) 
 		x = middle(lo, hi)
 	}
 	best, bestError := x, math.Inf(1)
-	before := math.Inf(1) // the logarithmic step before
+	before := math.Inf(1) // e of the step before
 	for step := range mostSteps {
 		ratio, power := f(x)
 		e := ratio - 1
@@ -48,8 +48,8 @@ func UnitRoot(f Ratio, lo, hi, guess float64, rising bool) (x float64, ok bool) 
 		switch {
 		case d == 0 || !(d > -1.5 && d < 1.5) || step > 8 && step%3 == 0 && !(math.Abs(d) < 1e-9):
 			next = middle(lo, hi)
-		case math.Abs(d) < 1e-7 && math.Abs(d)*d*d < 1e-17*before*before:
-			// Converging by squares, as the step before shows: the error of next is below the last place.
+		case math.Abs(e) < 1e-6 && e*e*max(0.02, math.Abs(e)/(before*before)) < 1e-17:
+			// Converging by squares, at the pace of the step before: what is left at next is below the last place.
 			if next >= lo && next <= hi {
 				return next, true
 			}
@@ -60,7 +60,7 @@ func UnitRoot(f Ratio, lo, hi, guess float64, rising bool) (x float64, ok bool) 
 		if next == x || !(next > lo && next < hi) {
 			return best, true // the bracket or the step has shrunk below the last place
 		}
-		x, before = next, d
+		x, before = next, e
 	}
 	return best, false
 }
