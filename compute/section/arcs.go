@@ -6,8 +6,8 @@ import "math"
 // side arcs about centres beyond the middle, and a crown arc.
 type Arcs struct {
 	height float64
-	invert float64 // radius of the lowest arc
-	upper  [2]arc  // the side arc, the crown arc
+	invert circle // of the lowest arc
+	upper  [2]arc // the side arc, the crown arc
 	breaks []float64
 }
 
@@ -56,14 +56,14 @@ func NewHorseshoe(height float64) (Section, error) {
 }
 
 func newArcs(height, invert float64, side, crown arc) *Arcs {
-	s := &Arcs{height: height, invert: invert, breaks: []float64{side.from, crown.from}}
-	side.below = disc(invert, side.from, 2*invert-side.from)
-	crown.below = side.at(crown.from, height)
+	s := &Arcs{height: height, invert: newCircle(invert), breaks: []float64{side.from, crown.from}}
+	s.invert.put(&side.below, side.from, 2*invert-side.from)
+	side.put(&crown.below, crown.from, height-crown.from)
 	s.upper = [2]arc{side, crown}
 	return s
 }
 
-// at returns the geometry at a depth on the arc, in a section of that height. With v the level above the arc's centre, w = sqrt(radius^2 - v^2),
+// put writes the geometry at a depth on the arc that stays a distance above below the crown of the section. With v the level above the arc's centre, w = sqrt(radius^2 - v^2),
 // and h half the angle between the arc's beginning and the surface about m, the middle between them, the
 // part under the arc that lies above its beginning, measured from the arc's own vertical axis, has
 //
@@ -72,12 +72,11 @@ func newArcs(height, invert float64, side, crown arc) *Arcs {
 //	                      - sin(m)*(sin(h) - h*cos(h) + cos(2m)/3*sin(h)^3))
 //
 // the latter from the integral of radius^3*(sin(m+h) - sin(t))*cos(t)^2 over t from m-h to m+h. Nothing in it cancels near the beginning.
-func (a *arc) at(depth, height float64) Geometry {
+func (a *arc) put(g *Geometry, depth, above float64) {
 	rise := depth - a.from
 	v, first := depth-a.centre, a.from-a.centre
 	var w float64
 	if a.inset == 0 { // a crown arc, whose highest point is that of the section
-		above := height - depth
 		w = math.Sqrt(above * (2*a.radius - above))
 	} else {
 		w = math.Sqrt((a.radius - v) * (a.radius + v))
@@ -99,27 +98,30 @@ func (a *arc) at(depth, height float64) Geometry {
 	area := a.radius * a.radius * (h + cos2M*sinH*cosH)
 	moment := a.radius * a.radius * a.radius *
 		(cosM*(sinH*(h+cos2M*sinH*cosH)+2.0/3*sin2M*cubeH) - sinM*(lag+cos2M*(1.0/3)*cubeH))
-	return Geometry{
-		Depth:         depth,
-		Area:          a.below.Area + 2*(area-a.inset*rise),
-		Perimeter:     a.below.Perimeter + 4*a.radius*h,
-		TopWidth:      2 * (w - a.inset),
-		Moment:        a.below.Moment + rise*a.below.Area + (2*moment - a.inset*rise*rise),
-		PerimeterRate: 2 * a.radius / w,
-		TopWidthRate:  -2 * v / w,
-	}
+	g.Depth = depth
+	g.Area = a.below.Area + 2*(area-a.inset*rise)
+	g.Perimeter = a.below.Perimeter + 4*a.radius*h
+	g.TopWidth = 2 * (w - a.inset)
+	g.Moment = a.below.Moment + rise*a.below.Area + (2*moment - a.inset*rise*rise)
+	g.PerimeterRate = 2 * a.radius / w
+	g.TopWidthRate = -2 * v / w
 }
 
 // At implements Section. At the crown, and for a depth beyond it, the rates are infinite.
-func (s *Arcs) At(depth float64) Geometry {
-	depth = min(depth, s.height)
+func (s *Arcs) At(depth float64) (g Geometry) {
+	if depth > s.height {
+		depth = s.height
+	}
+	above := s.height - depth
 	switch {
 	case depth <= s.upper[0].from:
-		return disc(s.invert, depth, 2*s.invert-depth)
+		s.invert.put(&g, depth, 2*s.invert.radius-depth)
 	case depth <= s.upper[1].from:
-		return s.upper[0].at(depth, s.height)
+		s.upper[0].put(&g, depth, above)
+	default:
+		s.upper[1].put(&g, depth, above)
 	}
-	return s.upper[1].at(depth, s.height)
+	return g
 }
 
 // Full implements Section.

@@ -224,23 +224,22 @@ func (b *bands) find(depth float64) int {
 }
 
 // At implements Section; below the lowest level of a zone it returns the zero Geometry.
-func (b *bands) At(depth float64) Geometry {
+func (b *bands) At(depth float64) (g Geometry) {
 	i := b.find(depth)
 	if i < 0 {
-		return Geometry{}
+		return g
 	}
 	w := &b.all[i]
 	d := (depth - w.level.High) - w.level.Low
 	run := w.widthRate * d
-	return Geometry{
-		Depth:         depth,
-		Area:          w.area + d*(w.width+0.5*run),
-		Perimeter:     w.perimeter + w.perimeterRate*d,
-		TopWidth:      w.width + run,
-		Moment:        w.moment + d*(w.area+d*(0.5*w.width+run*(1.0/6))),
-		PerimeterRate: w.perimeterRate,
-		TopWidthRate:  w.widthRate,
-	}
+	g.Depth = depth
+	g.Area = w.area + d*(w.width+0.5*run)
+	g.Perimeter = w.perimeter + w.perimeterRate*d
+	g.TopWidth = w.width + run
+	g.Moment = w.moment + d*(w.area+d*(0.5*w.width+run*(1.0/6)))
+	g.PerimeterRate = w.perimeterRate
+	g.TopWidthRate = w.widthRate
+	return g
 }
 
 // Full implements Section.

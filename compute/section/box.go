@@ -25,39 +25,37 @@ func NewBox(width, height, haunch float64) (Section, error) {
 		return nil, err
 	}
 	s := &Box{width: width, height: height, haunch: haunch, shoulder: height - haunch}
-	s.below = s.straight(s.shoulder)
+	s.below = s.At(s.shoulder)
 	if s.shoulder > 0 && s.shoulder < height {
 		s.breaks = []float64{s.shoulder}
 	}
 	return s, nil
 }
 
-// straight is the geometry between vertical walls.
-func (s *Box) straight(depth float64) Geometry {
-	return Geometry{
-		Depth: depth, Area: s.width * depth, Perimeter: s.width + 2*depth, TopWidth: s.width,
-		Moment: 0.5 * s.width * depth * depth, PerimeterRate: 2,
-	}
-}
-
 // At implements Section; a depth beyond the height counts as the height.
-func (s *Box) At(depth float64) Geometry {
-	depth = min(depth, s.height)
+func (s *Box) At(depth float64) (g Geometry) {
+	if depth > s.height {
+		depth = s.height
+	}
+	g.Depth = depth
 	if depth <= s.shoulder {
-		return s.straight(depth)
+		g.Area = s.width * depth
+		g.Perimeter = s.width + 2*depth
+		g.TopWidth = s.width
+		g.Moment = 0.5 * s.width * depth * depth
+		g.PerimeterRate = 2
+		return g
 	}
 	const rate = 2 * 1.41421356237309504880168872420969807856967187537694807317667974
 	d := depth - s.shoulder
 	top := (s.width - 2*s.haunch) + 2*(s.height-depth)
-	return Geometry{
-		Depth:         depth,
-		Area:          s.below.Area + d*0.5*(s.width+top),
-		Perimeter:     s.below.Perimeter + rate*d,
-		TopWidth:      top,
-		Moment:        s.below.Moment + d*(s.below.Area+d*(0.5*s.width-d*(1.0/3))),
-		PerimeterRate: rate,
-		TopWidthRate:  -2,
-	}
+	g.Area = s.below.Area + d*0.5*(s.width+top)
+	g.Perimeter = s.below.Perimeter + rate*d
+	g.TopWidth = top
+	g.Moment = s.below.Moment + d*(s.below.Area+d*(0.5*s.width-d*(1.0/3)))
+	g.PerimeterRate = rate
+	g.TopWidthRate = -2
+	return g
 }
 
 // Full implements Section: the roof is wetted.

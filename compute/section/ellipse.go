@@ -27,24 +27,26 @@ func NewElliptical(width, height float64) (Section, error) {
 
 // At implements Section. Area, width and moment are those of a circle stretched sideways; the perimeter is width times Legendre's
 // integral of the second kind from the lowest point, whose parameter is 1 - (height/width)^2. At the crown, and for a depth beyond it, the rates are infinite.
-func (s *Elliptical) At(depth float64) Geometry {
-	depth = min(depth, s.height)
+func (s *Elliptical) At(depth float64) (g Geometry) {
+	if depth > s.height {
+		depth = s.height
+	}
 	above := s.height - depth
-	c := newSegment(depth/s.height, above/s.height)
 	a, b := 0.5*s.width, 0.5*s.height
-	arc := s.width * solve.SecondKind(c.sine, math.Abs(c.cosine), s.shape)
-	if c.cosine < 0 {
+	sine, cosine := math.Sqrt(depth*above)/b, (above-depth)/s.height
+	_, area, moment := segment(depth/above, sine, cosine)
+	arc := s.width * solve.SecondKind(sine, math.Abs(cosine), s.shape)
+	if cosine < 0 {
 		arc = s.half - arc
 	}
-	return Geometry{
-		Depth:         depth,
-		Area:          a * b * c.area,
-		Perimeter:     arc,
-		TopWidth:      s.width * c.sine,
-		Moment:        a * b * b * c.moment,
-		PerimeterRate: 2 * math.Sqrt(c.cosine*c.cosine/s.shape+c.sine*c.sine) / c.sine,
-		TopWidthRate:  2 * a * c.cosine / (b * c.sine),
-	}
+	g.Depth = depth
+	g.Area = a * b * area
+	g.Perimeter = arc
+	g.TopWidth = s.width * sine
+	g.Moment = a * b * b * moment
+	g.PerimeterRate = 2 * math.Sqrt(cosine*cosine/s.shape+sine*sine) / sine
+	g.TopWidthRate = 2 * a * cosine / (b * sine)
+	return g
 }
 
 // Full implements Section.

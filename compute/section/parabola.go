@@ -18,19 +18,18 @@ func NewParabolic(topWidth, height float64) (Section, error) {
 
 // At implements Section. The perimeter is the arc length of the parabola, with s the slope of the bank at the surface:
 // T/2 * (sqrt(1 + s^2) + asinh(s)/s), s = 4*depth/T.
-func (s *Parabolic) At(depth float64) Geometry {
+func (s *Parabolic) At(depth float64) (g Geometry) {
 	width := s.scale * math.Sqrt(depth)
 	slope := 4 * depth / width
 	root := math.Sqrt(1 + slope*slope)
-	return Geometry{
-		Depth:         depth,
-		Area:          width * depth * (2.0 / 3),
-		Perimeter:     0.5 * width * (root + math.Asinh(slope)/slope),
-		TopWidth:      width,
-		Moment:        width * depth * depth * (4.0 / 15),
-		PerimeterRate: 2 * root / slope,
-		TopWidthRate:  0.5 * width / depth,
-	}
+	g.Depth = depth
+	g.Area = width * depth * (2.0 / 3)
+	g.Perimeter = 0.5 * width * (root + math.Asinh(slope)/slope)
+	g.TopWidth = width
+	g.Moment = width * depth * depth * (4.0 / 15)
+	g.PerimeterRate = 2 * root / slope
+	g.TopWidthRate = 0.5 * width / depth
+	return g
 }
 
 // Full implements Section.

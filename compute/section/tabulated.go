@@ -1,8 +1,6 @@
 package section
 
 import (
-	"math"
-	"sort"
 	"strconv"
 
 	"leat/compute/solve"
@@ -117,38 +115,43 @@ func (c *check) area(member string, value float64) bool {
 func neverNegative(a, b, c float64) bool { return b >= 0 || b*b <= a*c }
 
 // At implements Section. Above the last row it returns what that says.
-func (t *Tabulated) At(depth float64) Geometry {
-	if first := t.depths[0]; depth <= first || len(t.depths) == 1 {
-		depth = math.Min(depth, first)
+func (t *Tabulated) At(depth float64) (g Geometry) {
+	last := len(t.depths) - 1
+	if depth > t.depths[last] {
+		depth = t.depths[last]
+	}
+	g.Depth = depth
+	if first := t.depths[0]; depth <= first {
 		x, r := depth/first, &t.rows[0]
 		share := solve.PairedPower(x, t.less)
-		width := r.width * share
-		area := r.area * x * share
-		perimeter := r.perimeter * share
 		rate := t.less.High / depth
-		return Geometry{
-			Depth: depth, Area: area, Perimeter: perimeter, TopWidth: width, Moment: area * depth / (t.power + 1),
-			PerimeterRate: perimeter * rate, TopWidthRate: width * rate,
+		g.Area = r.area * x * share
+		g.Perimeter = r.perimeter * share
+		g.TopWidth = r.width * share
+		g.Moment = r.area * x * share * depth / (t.power + 1)
+		g.PerimeterRate = r.perimeter * share * rate
+		g.TopWidthRate = r.width * share * rate
+		return g
+	}
+	lo, hi := 0, last // the first row not below the depth, of a higher index than 0
+	for lo < hi {
+		if mid := int(uint(lo+hi) >> 1); t.depths[mid] < depth {
+			lo = mid + 1
+		} else {
+			hi = mid
 		}
 	}
-	last := len(t.depths) - 1
-	depth = math.Min(depth, t.depths[last])
-	i := sort.SearchFloat64s(t.depths, depth) // the first row not below depth, of a higher index than 0
-	r, from := &t.rows[i-1], t.depths[i-1]
+	r, from := &t.rows[lo-1], t.depths[lo-1]
 	d := depth - from
-	u := d / r.height
-	v := ((from + r.height) - depth) / r.height
+	u, v := d/r.height, (t.depths[lo]-depth)/r.height
 	a, b, c := r.width, r.middle, r.next
-	return Geometry{
-		Depth:     depth,
-		Area:      r.area + d*(a*(1-u+u*u*(1.0/3))+u*(b*(1-u*(2.0/3))+c*u*(1.0/3))),
-		Perimeter: r.perimeter + r.perimeterRate*d,
-		TopWidth:  a*v*v + 2*b*u*v + c*u*u,
-		Moment: r.moment + d*(r.area+d*(a*(0.5+u*(-1.0/3+u*(1.0/12)))+
-			u*(b*(1.0/3-u*(1.0/6))+c*u*(1.0/12)))),
-		PerimeterRate: r.perimeterRate,
-		TopWidthRate:  2 * ((b-a)*v + (c-b)*u) / r.height,
-	}
+	g.Area = r.area + d*(a*(1-u+u*u*(1.0/3))+u*(b*(1-u*(2.0/3))+c*u*(1.0/3)))
+	g.Perimeter = r.perimeter + r.perimeterRate*d
+	g.TopWidth = a*v*v + 2*b*u*v + c*u*u
+	g.Moment = r.moment + d*(r.area+d*(a*(0.5+u*(-1.0/3+u*(1.0/12)))+u*(b*(1.0/3-u*(1.0/6))+c*u*(1.0/12))))
+	g.PerimeterRate = r.perimeterRate
+	g.TopWidthRate = 2 * ((b-a)*v + (c-b)*u) / r.height
+	return g
 }
 
 // Full implements Section: what the last row says.

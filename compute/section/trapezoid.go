@@ -14,18 +14,17 @@ func newSides(bottom, left, right float64) sides {
 	return sides{bottom, left, right, left + right, math.Sqrt(1+left*left) + math.Sqrt(1+right*right)}
 }
 
-// At implements Section.
-func (s *sides) At(depth float64) Geometry {
+// put writes the geometry at a depth. It is written member by member into its place, since the copies that a returned literal
+// makes cost more than the arithmetic.
+func (s *sides) put(g *Geometry, depth float64) {
 	run := s.spread * depth
-	return Geometry{
-		Depth:         depth,
-		Area:          depth * (s.bottom + 0.5*run),
-		Perimeter:     s.bottom + s.wall*depth,
-		TopWidth:      s.bottom + run,
-		Moment:        depth * depth * (0.5*s.bottom + run*(1.0/6)),
-		PerimeterRate: s.wall,
-		TopWidthRate:  s.spread,
-	}
+	g.Depth = depth
+	g.Area = depth * (s.bottom + 0.5*run)
+	g.Perimeter = s.bottom + s.wall*depth
+	g.TopWidth = s.bottom + run
+	g.Moment = depth * depth * (0.5*s.bottom + run*(1.0/6))
+	g.PerimeterRate = s.wall
+	g.TopWidthRate = s.spread
 }
 
 // Full implements Section.
@@ -52,11 +51,23 @@ func (s *sides) Slopes() (left, right float64) { return s.left, s.right }
 // Trapezoidal is a trapezoid, or with vertical sides a rectangle.
 type Trapezoidal struct{ sides }
 
+// At implements Section.
+func (s *Trapezoidal) At(depth float64) (g Geometry) {
+	s.put(&g, depth)
+	return g
+}
+
 // BedWidth implements Bedded.
 func (s *Trapezoidal) BedWidth() float64 { return s.bottom }
 
 // Triangular is a V of two sides, of which one may be vertical.
 type Triangular struct{ sides }
+
+// At implements Section.
+func (s *Triangular) At(depth float64) (g Geometry) {
+	s.put(&g, depth)
+	return g
+}
 
 // NewRectangular returns a rectangle open at the top, its bottom_width in m.
 func NewRectangular(bottomWidth float64) (Section, error) { return NewTrapezoidal(bottomWidth, 0, 0) }
