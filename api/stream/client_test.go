@@ -138,12 +138,13 @@ func TestEverythingSentBeforeAnythingIsRead(t *testing.T) {
 	out, sink := io.Pipe()
 	p := newPump(in, sink)
 	p.Store = NewStore(t.TempDir(), 64<<10, 0, 0)
+	const n = 200_000 / share
 	var s Summary
 	var err error
 	var run sync.WaitGroup
 	run.Go(func() { s, err = p.Run(t.Context()); sink.Close() })
 	within(t, 20*time.Second, func() {
-		io.WriteString(feed, numbered(200_000))
+		io.WriteString(feed, numbered(n))
 		feed.Close()
 	})
 	if p.Store.Used() == 0 {
@@ -151,7 +152,7 @@ func TestEverythingSentBeforeAnythingIsRead(t *testing.T) {
 	}
 	all, _ := io.ReadAll(out)
 	run.Wait()
-	if err != nil || !s.Complete || s.Lines != 200_000 {
+	if err != nil || !s.Complete || s.Lines != n {
 		t.Fatalf("summary %+v, error %v", s, err)
 	}
 	numberedAnswers(t, check(t, all, s).lines)
@@ -162,7 +163,7 @@ func TestEverythingSentBeforeAnythingIsRead(t *testing.T) {
 
 // At the spool's bound the run ends; the rest of the body is thrown away, so that the client comes to read, and is told where to resume.
 func TestAFullSpoolSaysWhereToResume(t *testing.T) {
-	const n = 300_000
+	const n = 150_000
 	in, feed := io.Pipe()
 	out, sink := io.Pipe()
 	p := newPump(in, sink)

@@ -2,17 +2,18 @@ package stream
 
 import (
 	"bytes"
+	"context"
 	"errors"
 	"fmt"
 	"io"
-	"math/rand/v2"
+	"sync/atomic"
 	"testing"
 	"time"
 )
 
 // Whenever the drain comes, the lines before resume_at are answered and no others.
 func TestADrainAnswersWhatWasRead(t *testing.T) {
-	for range 20 {
+	for range 5 {
 		in, feed := io.Pipe()
 		draining := make(chan struct{})
 		var out bytes.Buffer
@@ -49,11 +50,13 @@ func TestADrainEndsASilentClient(t *testing.T) {
 	p.Draining = draining
 	p.StopReading = func() { in.CloseWithError(errors.New("read cut")) }
 	p.Discard = func() { t.Error("discards after reading was cut") }
-	go func() {
-		fmt.Fprint(feed, "text 1\ntext 2\nhalf a li")
-		time.Sleep(time.Duration(rand.IntN(20)) * time.Millisecond)
-		close(draining)
-	}()
+	var answered atomic.Int64
+	p.Answered = func(n, _ int) {
+		if answered.Add(int64(n)) == 2 {
+			time.AfterFunc(50*time.Millisecond, func() { close(draining) }) // the reader waits by then
+		}
+	}
+	go fmt.Fprint(feed, "text 1\ntext 2\nhalf a li")
 	within(t, 2*time.Second, func() {
 		s, err := p.Run(t.Context())
 		if err != nil || s.Complete || s.Reason != Draining || s.ResumeAt != 3 || s.Lines != 2 {
@@ -61,6 +64,23 @@ func TestADrainEndsASilentClient(t *testing.T) {
 		}
 		numberedAnswers(t, check(t, out.Bytes(), s).lines)
 	})
+}
+
+// A server of net/http cancels the context when the read that StopReading ends fails: the end is told all the same.
+func TestTheEndIsToldThoughStopReadingCancels(t *testing.T) {
+	in, feed := io.Pipe()
+	ctx, cancel := context.WithCancel(t.Context())
+	defer cancel()
+	var out bytes.Buffer
+	p := newPump(in, &out)
+	p.Stall = 50 * time.Millisecond
+	p.StopReading = func() { cancel(); in.CloseWithError(errors.New("read cut")) }
+	go fmt.Fprint(feed, "text 1\n")
+	s, err := p.Run(ctx)
+	if err != nil || s.Complete || s.Reason != Idle || s.ResumeAt != 2 {
+		t.Fatalf("summary %+v, error %v", s, err)
+	}
+	numberedAnswers(t, check(t, out.Bytes(), s).lines)
 }
 
 // A body that has ended is answered whole, drain or not.

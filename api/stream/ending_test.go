@@ -16,18 +16,18 @@ import (
 func TestEveryEndIsToldRightly(t *testing.T) {
 	folder := t.TempDir()
 	reasons := map[Reason]int{}
-	for round := range 100 {
+	for round := range 80 {
 		r := rand.New(rand.NewPCG(7, uint64(round)))
 		in, feed := io.Pipe()
 		out, sink := io.Pipe()
 		draining := make(chan struct{})
-		n, drainAt := 1+r.IntN(20_000), -1
+		n, drainAt := 1+r.IntN(10_000), -1
 		if r.IntN(3) == 0 {
 			drainAt = r.IntN(n)
 		}
 		p := newPump(in, sink)
 		p.Workers = 1 + r.IntN(5)
-		p.Store = NewStore(folder, 1+r.Int64N(128<<10), 1+r.Int64N(512<<10), 0)
+		p.Store = NewStore(folder, 1+r.Int64N(128<<10), 1+r.Int64N(256<<10), 0)
 		p.Draining = draining
 		p.Stall = 10 * time.Second
 		p.StopReading = func() { in.CloseWithError(errors.New("read cut")) }

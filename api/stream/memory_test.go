@@ -71,15 +71,16 @@ func TestMemoryIsFlatWhileNobodyReads(t *testing.T) {
 	stop := heap()
 	run.Go(func() { s, err = p.Run(t.Context()); sink.Close() })
 	line := append(bytes.Repeat([]byte("x"), 599), '\n')
-	io.Copy(feed, &repeated{line: line, n: 200_000})
+	const n = 200_000 / share
+	io.Copy(feed, &repeated{line: line, n: n})
 	feed.Close()
-	if p.Store.Used() < 100<<20 {
+	if p.Store.Used() < 100<<20/share {
 		t.Errorf("only %d bytes in the file", p.Store.Used())
 	}
 	taken, _ := io.Copy(io.Discard, out)
 	run.Wait()
 	grown := stop()
-	if err != nil || s.Lines != 200_000 || taken < 120_000_000 {
+	if err != nil || s.Lines != n || taken < 600*n {
 		t.Fatalf("summary %+v, %d bytes, error %v", s, taken, err)
 	}
 	t.Logf("heap grew by %.1f MiB at most", float64(grown)/(1<<20))
@@ -90,7 +91,7 @@ func TestMemoryIsFlatWhileNobodyReads(t *testing.T) {
 
 // The same when all is read at once, and when records and answers are large.
 func TestMemoryIsFlatWhateverTheLines(t *testing.T) {
-	for _, c := range []struct{ bytes, n int }{{20, 1_000_000}, {500_000, 400}} {
+	for _, c := range []struct{ bytes, n int }{{20, 1_000_000 / share}, {500_000, 400 / share}} {
 		stop := heap()
 		line := append(bytes.Repeat([]byte("x"), c.bytes-1), '\n')
 		p := newPump(nil, io.Discard)

@@ -45,8 +45,9 @@ type Pump struct {
 
 	// StopReading must make a blocked Reader.Next (and Discard) return soon, with any error. It is called at most
 	// once: when the run is broken off, or ends early while the client is silent. nil where reading never blocks for long.
-	// A server of net/http does it with a read deadline in the past; that also cancels the request's context, so Run
-	// must be given one that is cancelled by the request's only until StopReading is called.
+	// A server of net/http does it with a read deadline in the past, and that cancels the request's context; therefore
+	// a context that is cancelled later than StopReading is called no longer breaks the run off: what is owed is sent,
+	// and a client that has gone shows by the write that fails.
 	StopReading func()
 	// StopWriting must make a blocked write to Output return soon, with any error. It is called at most once, when
 	// the run is broken off. nil where writing never blocks for long.

@@ -7,13 +7,10 @@ import (
 
 // readAll is the reader: it fills batches until the body ends, a stop is asked for, or no next record can be found.
 func (r *run) readAll() {
-	// In a deferred call, so that a panic of the Reader leaves nobody waiting.
-	defer close(r.read)
-	func() {
-		defer close(r.ordered)
-		defer close(r.work)
-		r.fillAll()
-	}()
+	// Guarded by itself: after a panic the run must be broken off before the writer sees that nothing more comes.
+	r.guard("reader", r.fillAll)
+	close(r.work)
+	close(r.ordered)
 	if r.early.early && r.Discard != nil && r.ctx.Err() == nil && !r.readingEnded.Load() {
 		r.Discard()
 	}

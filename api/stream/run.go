@@ -33,10 +33,10 @@ type run struct {
 	summary Summary      // the writer's
 	whole   atomic.Bool  // the end is sent
 
-	read      chan struct{} // closed when no record will be read any more; Discard may follow
 	delivered chan struct{} // closed when nothing will be sent any more
 
-	readingEnded atomic.Bool // StopReading was called
+	readingEnded atomic.Bool // nothing more is to be read
+	readingCut   atomic.Bool // and StopReading was called for it
 	writingEnded atomic.Bool
 }
 
@@ -82,14 +82,18 @@ func newRun(p *Pump) *run {
 	}
 	r.spool = newSpool(r.Store)
 	r.stop.asked = make(chan struct{})
-	r.read = make(chan struct{})
 	r.delivered = make(chan struct{})
 	return r
 }
 
 func (r *run) run(ctx context.Context) (Summary, error) {
-	r.ctx, r.abort = context.WithCancelCause(ctx)
+	r.ctx, r.abort = context.WithCancelCause(context.WithoutCancel(ctx))
 	defer r.abort(nil)
+	defer context.AfterFunc(ctx, func() {
+		if !r.readingCut.Load() {
+			r.abort(context.Cause(ctx))
+		}
+	})()
 	r.Activity.Received()
 
 	over := make(chan struct{})

@@ -81,6 +81,7 @@ func (r *run) watchStall() {
 // endReading makes a blocked read return.
 func (r *run) endReading() {
 	if !r.readingEnded.Swap(true) && r.StopReading != nil {
+		r.readingCut.Store(true)
 		r.StopReading()
 	}
 }
