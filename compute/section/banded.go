@@ -176,7 +176,7 @@ func compile(line []stretch) bands {
 		falling[at(line[0].leftLevel)]++ // water above the left end begins there
 	}
 
-	b := bands{tops: make([]float64, n), all: make([]band, n)}
+	b := bands{tops: make([]float64, n), all: make([]band, n), breaks: make([]float64, 0, n)}
 	var area, perimeter, width, moment solve.Pair
 	troughs := 0
 	for i := range n {

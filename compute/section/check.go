@@ -59,6 +59,19 @@ func (c *check) size(member string, value float64) bool {
 	return false
 }
 
+// isSize, isArea and isOrdinate say what the reports of the same name would find no fault in, for long lists, of which most members are sound
+// and need no name.
+func isSize(value float64) bool { return value >= leastSize && value <= greatestSize }
+
+func isArea(value float64) bool {
+	return value >= leastSize*leastSize && value <= greatestSize*greatestSize
+}
+
+func isOrdinate(value float64) bool {
+	size := math.Abs(value)
+	return size == 0 || size >= leastOrdinate && size <= greatestSize
+}
+
 // sizeOrZero reports a length that is negative or beyond the bounds; it may be zero or as small as it likes.
 func (c *check) sizeOrZero(member string, value float64) bool {
 	switch {
@@ -99,4 +112,28 @@ func (c *check) gradient(member string, value float64) bool {
 		return true
 	}
 	return false
+}
+
+// area reports an area that is not positive or outside the bounds of sizes squared.
+func (c *check) area(member string, value float64) bool {
+	switch {
+	case !c.finite(member, value):
+	case value <= 0:
+		c.add(member, notPositive, "This must be greater than 0.")
+	case value < leastSize*leastSize || value > greatestSize*greatestSize:
+		c.add(member, outOfRange, "This must be from 1e-18 to 1e18 square metres.")
+	default:
+		return true
+	}
+	return false
+}
+
+// ordinate reports an offset or level that is not finite or so large or small that lengths would lose their digits.
+func (c *check) ordinate(member string, value float64) {
+	if !c.finite(member, value) {
+		return
+	}
+	if size := math.Abs(value); size > greatestSize || size != 0 && size < leastOrdinate {
+		c.add(member, outOfRange, "This must be "+ordinatesWanted+".")
+	}
 }

@@ -148,3 +148,27 @@ func BenchmarkAt(b *testing.B) {
 		})
 	}
 }
+
+// A line that goes up and down between all its levels crosses every band with every stretch; compiling it must not take
+// time in proportion to their product.
+func BenchmarkCompileSawtooth(b *testing.B) {
+	points := make([][2]float64, 20001)
+	for i := range points {
+		points[i] = [2]float64{float64(i), float64(i%2)*100 + float64(i)*1e-4}
+	}
+	for b.Loop() {
+		if _, err := NewSurveyed(points); err != nil {
+			b.Fatal(err)
+		}
+	}
+}
+
+func BenchmarkCompileSurvey(b *testing.B) {
+	points := [][2]float64{{0, 3.2}, {2.5, 2.1}, {4, 0.4}, {5.1, 0.4}, {7.3, 2.3}, {9, 1.1}, {11, 2.35}, {11, 4}, {12.6, 4}}
+	b.ReportAllocs()
+	for b.Loop() {
+		if _, err := NewSurveyed(points); err != nil {
+			b.Fatal(err)
+		}
+	}
+}

@@ -23,18 +23,20 @@ func NewSurveyed(points [][2]float64) (Section, error) {
 	var c check
 	wall := 0.0 // direction of the vertical wall that leads here
 	for i, p := range points {
-		member := "points/" + strconv.Itoa(i)
-		c.ordinate(member+"/0", p[0])
-		c.ordinate(member+"/1", p[1])
+		for j, value := range p {
+			if !isOrdinate(value) {
+				c.ordinate(pointMember(i)+"/"+strconv.Itoa(j), value)
+			}
+		}
 		if i > 0 && p[0] < points[i-1][0] {
-			c.add(member+"/0", "falling_offset", "Offsets must not fall from one point to the next; put the points in order from left to right.")
+			c.add(pointMember(i)+"/0", "falling_offset", "Offsets must not fall from one point to the next; put the points in order from left to right.")
 		}
 		// A vertical wall must not turn.
 		switch {
 		case i == 0 || p[0] != points[i-1][0]:
 			wall = 0
 		case (p[1]-points[i-1][1])*wall < 0:
-			c.add(member, "lines_overlap", "This vertical wall folds back over itself; the levels at one offset must run one way only.")
+			c.add(pointMember(i), "lines_overlap", "This vertical wall folds back over itself; the levels at one offset must run one way only.")
 		case p[1] != points[i-1][1]:
 			wall = math.Copysign(1, p[1]-points[i-1][1])
 		}
@@ -57,7 +59,7 @@ func NewSurveyed(points [][2]float64) (Section, error) {
 		return nil, err
 	}
 
-	s := &SurveyedLine{invert: math.Inf(1)}
+	s := &SurveyedLine{invert: math.Inf(1), line: make([]stretch, 0, len(points)-1)}
 	for _, p := range points {
 		s.invert = math.Min(s.invert, p[1])
 	}
@@ -74,15 +76,8 @@ func NewSurveyed(points [][2]float64) (Section, error) {
 	return s, nil
 }
 
-// ordinate reports an offset or level that is not finite or so large or small that lengths would lose their digits.
-func (c *check) ordinate(member string, value float64) {
-	if !c.finite(member, value) {
-		return
-	}
-	if size := math.Abs(value); size > greatestSize || size != 0 && size < leastOrdinate {
-		c.add(member, outOfRange, "This must be "+ordinatesWanted+".")
-	}
-}
+// pointMember names a point.
+func pointMember(i int) string { return "points/" + strconv.Itoa(i) }
 
 // Invert returns the level of the lowest point in m, from which depths are measured.
 func (s *SurveyedLine) Invert() float64 { return s.invert }

@@ -33,39 +33,36 @@ func NewTabulated(rows [][4]float64) (Section, error) {
 		c.add("rows", "too_few", "A table needs at least one row.")
 	}
 	for i, r := range rows {
-		member := "rows/" + strconv.Itoa(i)
-		sound := true
 		for j, value := range r {
-			if j == 1 {
-				sound = c.area(member+"/1", value) && sound
-			} else {
-				sound = c.size(member+"/"+strconv.Itoa(j), value) && sound
+			if j == 1 && !isArea(value) {
+				c.area(rowMember(i, j), value)
+			} else if j != 1 && !isSize(value) {
+				c.size(rowMember(i, j), value)
 			}
 		}
+		sound := isSize(r[0]) && isArea(r[1]) && isSize(r[2]) && isSize(r[3])
 		if sound && r[2] < r[3] {
-			c.add(member+"/2", "perimeter_too_short", "The wetted perimeter cannot be shorter than the top width, which it underlies.")
+			c.add(rowMember(i, 2), "perimeter_too_short", "The wetted perimeter cannot be shorter than the top width, which it underlies.")
 		}
 		if i == 0 {
 			if sound && !(r[3]*r[0]/r[1] <= greatestPower) {
-				c.add(member+"/1", "too_small", "This area is too small for its depth and width: no bed rises so steeply.")
+				c.add(rowMember(i, 1), "too_small", "This area is too small for its depth and width: no bed rises so steeply.")
 			}
 			continue
 		}
 		p := rows[i-1]
-		rising := true
 		if r[0] <= p[0] {
-			rising = false
-			c.add(member+"/0", "not_rising", "Depths must rise from row to row.")
+			c.add(rowMember(i, 0), "not_rising", "Depths must rise from row to row.")
 		}
 		if r[1] <= p[1] {
-			rising = false
-			c.add(member+"/1", "not_rising", "Areas must rise from row to row.")
+			c.add(rowMember(i, 1), "not_rising", "Areas must rise from row to row.")
 		}
 		if r[2] < p[2] {
-			c.add(member+"/2", "falling_perimeter", "The wetted perimeter cannot fall as the depth rises.")
+			c.add(rowMember(i, 2), "falling_perimeter", "The wetted perimeter cannot fall as the depth rises.")
 		}
-		if sound && rising && !neverNegative(p[3], 3*((r[1]-p[1])/(r[0]-p[0]))-p[3]-r[3], r[3]) {
-			c.add(member, "area_not_monotone", "Between the row before and this one, the cubic through the areas with the widths as its slopes would fall; areas, widths and depths do not agree.")
+		if sound && r[0] > p[0] && r[1] > p[1] && p[3] > 0 && !neverNegative(p[3], middleWidth(p, r), r[3]) {
+			c.add("rows/"+strconv.Itoa(i), "area_not_monotone",
+				"Between the row before and this one, the cubic through the areas with the widths as its slopes would fall; areas, widths and depths do not agree.")
 		}
 	}
 	if err := c.err(); err != nil {
@@ -75,6 +72,7 @@ func NewTabulated(rows [][4]float64) (Section, error) {
 	first := rows[0]
 	less := solve.Product(first[3], first[0]).Plus(-first[1]).Divide(solve.Pair{High: first[1]})
 	t := &Tabulated{power: less.Plus(1).Value(), less: less}
+	t.depths, t.rows, t.breaks = make([]float64, 0, len(rows)), make([]row, 0, len(rows)), make([]float64, 0, len(rows)-1)
 	moment := first[1] * first[0] / (t.power + 1)
 	for i, r := range rows {
 		w := row{area: r[1], perimeter: r[2], width: r[3], moment: moment}
@@ -82,7 +80,7 @@ func NewTabulated(rows [][4]float64) (Section, error) {
 			n := rows[i+1]
 			w.height = n[0] - r[0]
 			w.next = n[3]
-			w.middle = 3*((n[1]-r[1])/w.height) - r[3] - n[3]
+			w.middle = middleWidth(r, n)
 			w.perimeterRate = (n[2] - r[2]) / w.height
 			moment += w.height * (r[1] + w.height*(3*w.width+2*w.middle+w.next)*(1.0/12))
 			t.breaks = append(t.breaks, r[0])
@@ -93,22 +91,16 @@ func NewTabulated(rows [][4]float64) (Section, error) {
 	return t, nil
 }
 
+// rowMember names a member of a row.
+func rowMember(row, member int) string {
+	return "rows/" + strconv.Itoa(row) + "/" + strconv.Itoa(member)
+}
+
+// middleWidth returns the second Bernstein coefficient of the width between two rows.
+func middleWidth(p, r [4]float64) float64 { return 3*((r[1]-p[1])/(r[0]-p[0])) - p[3] - r[3] }
+
 // greatestPower bounds the power of depth with which the area below the first row rises: beyond it, its values underflow.
 const greatestPower = 1000
-
-// area reports an area that is not positive or outside the bounds of sizes squared.
-func (c *check) area(member string, value float64) bool {
-	switch {
-	case !c.finite(member, value):
-	case value <= 0:
-		c.add(member, notPositive, "This must be greater than 0.")
-	case value < leastSize*leastSize || value > greatestSize*greatestSize:
-		c.add(member, outOfRange, "This must be from 1e-18 to 1e18 square metres.")
-	default:
-		return true
-	}
-	return false
-}
 
 // neverNegative reports whether a*(1-u)^2 + 2*b*u*(1-u) + c*u^2, with a and c greater than 0, stays at or above 0 for u from 0 to 1.
 // With b below 0 its least value there is (ac - b^2)/(a - 2b + c).
