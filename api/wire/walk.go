@@ -22,6 +22,7 @@ type walk struct {
 	rows    [][4]float64
 
 	failed  bool
+	dead    bool // the decoder cannot go on
 	collect bool
 	faults  []Fault
 	at      pointer // of the value being read; kept only when collecting
@@ -36,7 +37,7 @@ func (w *walk) start(data []byte, system System, limits *Limits, collect bool) {
 	w.buffer = *bytes.NewBuffer(data)
 	w.decoder.Reset(&w.buffer, readOptions)
 	w.system, w.limits = system, limits
-	w.failed, w.collect, w.faults, w.at, w.size = false, collect, nil, "", false
+	w.failed, w.dead, w.collect, w.faults, w.at, w.size = false, false, collect, nil, "", false
 }
 
 // release forgets the data, so that a walk at rest keeps no body alive.
@@ -47,7 +48,7 @@ func (w *walk) release() {
 }
 
 // stop reports whether the walk is over.
-func (w *walk) stop() bool { return w.failed && !w.collect || len(w.faults) >= MaxFaults }
+func (w *walk) stop() bool { return w.failed && !w.collect || w.dead || len(w.faults) >= MaxFaults }
 
 // fault notes a fault at the value being read. detail is called only when faults are collected.
 func (w *walk) fault(code string, detail func() string) {
@@ -101,23 +102,20 @@ func (w *walk) next() []byte {
 	return v
 }
 
-// open and close_ read the delimiters of an array or object.
-func (w *walk) open() { w.token() }
-
-func (w *walk) close_() { w.token() }
-
-func (w *walk) token() {
+// delimiter reads the bracket or brace that begins or ends an array or object.
+func (w *walk) delimiter() {
 	if _, err := w.decoder.ReadToken(); err != nil {
 		w.broken()
 	}
 }
 
-// broken notes that the decoder refused what the scanner let through. It ends the walk: there is nothing to go on with.
+// broken notes that the decoder refused what the scanner let through, which ends the walk: there is nothing to go on with.
+// No input is known that does so.
 func (w *walk) broken() {
-	w.failed = true
-	for len(w.faults) < MaxFaults && w.collect {
-		w.faults = append(w.faults, Fault{Pointer: string(w.at), Code: codeSyntaxError, Detail: "The body cannot be read as JSON."})
+	if !w.dead {
+		w.fault(codeSyntaxError, func() string { return "The body cannot be read as JSON." })
 	}
+	w.dead = true
 }
 
 // object reads an object into the struct v.
@@ -129,7 +127,7 @@ func (w *walk) object(p *plan, v reflect.Value) {
 		w.notAnObject()
 		return
 	}
-	w.open()
+	w.delimiter()
 	var present uint64
 	for !w.stop() {
 		kind := w.decoder.PeekKind()
@@ -160,7 +158,7 @@ func (w *walk) object(p *plan, v reflect.Value) {
 	if w.stop() {
 		return
 	}
-	w.close_()
+	w.delimiter()
 	w.complete(p, v, present)
 }
 

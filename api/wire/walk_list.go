@@ -6,7 +6,7 @@ func (w *walk) openList(f *field) bool {
 		w.wrongType(f.listType())
 		return false
 	}
-	w.open()
+	w.delimiter()
 	return true
 }
 
@@ -15,7 +15,7 @@ func (w *walk) closeList(f *field, n int) {
 	if w.stop() {
 		return
 	}
-	w.close_()
+	w.delimiter()
 	if n < f.least && !w.collect {
 		w.failed = true
 	}
@@ -76,7 +76,7 @@ func (w *walk) tuple(f *field, into []float64) {
 		w.wrongType(f.tupleType())
 		return
 	}
-	w.open()
+	w.delimiter()
 	n := 0
 	for ; !w.stop() && w.decoder.PeekKind() != ']'; n++ {
 		if n >= len(into) {
@@ -90,7 +90,7 @@ func (w *walk) tuple(f *field, into []float64) {
 	if w.stop() {
 		return
 	}
-	w.close_()
+	w.delimiter()
 	if n != len(into) {
 		w.fault(codeWrongLength, func() string { return wrongLengthText(f, n) })
 	}

@@ -161,17 +161,18 @@ func characters(quoted []byte) int {
 	return utf8.RuneCount(plain)
 }
 
-// objects reads a list of objects.
+// objects reads a list of objects into an empty one.
 func (w *walk) objects(f *field, v reflect.Value) {
-	v.Set(reflect.MakeSlice(v.Type(), 0, 0))
+	v.Grow(4) // no nil, even if empty
 	if !w.openList(f) {
 		return
 	}
 	for i := 0; !w.stop() && w.decoder.PeekKind() != ']'; i++ {
 		at := w.enterItem(i)
-		v.Grow(1)
+		if i == v.Cap() {
+			v.Grow(i)
+		}
 		v.SetLen(i + 1)
-		v.Index(i).SetZero()
 		w.object(f.sub, v.Index(i))
 		w.leave(at)
 	}
