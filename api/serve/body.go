@@ -1,7 +1,6 @@
 package serve
 
 import (
-	"context"
 	"errors"
 	"io"
 	"net/http"
@@ -53,24 +52,21 @@ func (b *body) release() {
 	}
 }
 
-// errGone is the error of a client that is no longer there to be answered.
-var errGone = errors.New("client gone")
-
-// read reads a request's body of at most limit bytes; one of exactly the limit passes. It returns a problem, or errGone.
-// On failure nothing is held.
-func (l *larder) read(r *http.Request, limit int64) (b body, problem *wire.Problem, err error) {
+// read reads a request's body of at most limit bytes; one of exactly the limit passes. With a problem nothing is held. A client
+// that has gone gets its problem too: it may have closed its own direction only.
+func (l *larder) read(r *http.Request, limit int64) (b body, problem *wire.Problem) {
 	if r.ContentLength > limit {
 		skip(r, limit)
-		return body{}, tooLarge(limit), nil
+		return body{}, tooLarge(limit)
 	}
 	b = body{larder: l}
 	defer func() {
-		if problem != nil || err != nil {
+		if problem != nil {
 			b.release()
 		}
 	}()
 	if !l.take(keptBuffer) {
-		return b, fullHouse(), nil
+		return b, fullHouse()
 	}
 	b.held = keptBuffer
 	b.pooled = l.buffers.Get().(*[keptBuffer]byte)
@@ -80,7 +76,7 @@ func (l *larder) read(r *http.Request, limit int64) (b body, problem *wire.Probl
 			size := min(2*int64(cap(b.bytes)), limit+1) // the byte beyond the limit tells exactly full from too much
 			if size > int64(cap(b.bytes)) {
 				if !l.take(size - b.held) {
-					return b, fullHouse(), nil
+					return b, fullHouse()
 				}
 				b.held = size
 				grown := make([]byte, len(b.bytes), size)
@@ -88,31 +84,31 @@ func (l *larder) read(r *http.Request, limit int64) (b body, problem *wire.Probl
 				b.bytes = grown
 			}
 		}
-		n, readErr := r.Body.Read(b.bytes[len(b.bytes):cap(b.bytes)])
+		n, err := r.Body.Read(b.bytes[len(b.bytes):cap(b.bytes)])
 		b.bytes = b.bytes[:len(b.bytes)+n]
 		if int64(len(b.bytes)) > limit {
 			skip(r, limit)
-			return b, tooLarge(limit), nil
+			return b, tooLarge(limit)
 		}
 		switch {
-		case readErr == nil:
-		case readErr == io.EOF:
-			return b, nil, nil
-		case errors.Is(readErr, os.ErrDeadlineExceeded):
-			return b, slowBody(), nil
-		case errors.Is(readErr, context.Canceled), r.Context().Err() != nil:
-			return b, nil, errGone
+		case err == nil:
+		case err == io.EOF:
+			return b, nil
+		case errors.Is(err, os.ErrDeadlineExceeded):
+			return b, slowBody()
 		default:
-			return b, brokenBody(), nil
+			return b, brokenBody()
 		}
 	}
 }
 
 // skip reads and drops what is left of a body that is too large, up to a bound, so that a client that sends first and reads
-// afterwards finds its answer instead of a broken connection. One that waits for leave to send is not given it.
-func skip(r *http.Request, limit int64) {
+// afterwards finds its answer instead of a broken connection. One that waits for leave to send is not given it. It reports whether the
+// body was read to its end.
+func skip(r *http.Request, limit int64) bool {
 	if r.Header.Get("Expect") != "" {
-		return
+		return false
 	}
-	io.CopyN(io.Discard, r.Body, 8*limit)
+	_, err := io.CopyN(io.Discard, r.Body, 8*limit)
+	return err == io.EOF
 }

@@ -39,8 +39,8 @@ func Default() Config {
 		IdleLimit:   30 * time.Second,
 		SpoolDir:    os.TempDir(),
 		MemoryBytes: 4 << 20,
-		SpoolBytes:  2 << 30,
-		SpoolTotal:  8 << 30,
+		SpoolBytes:  4 << 30,
+		SpoolTotal:  16 << 30,
 		DrainDelay:  0,
 		DrainLimit:  25 * time.Second,
 	}

@@ -13,6 +13,7 @@ import (
 	"github.com/go-json-experiment/json/jsontext"
 
 	"leat/api/site"
+	"leat/api/wire"
 )
 
 // A document is one representation of a GET route, made at the start and never changed.
@@ -41,12 +42,12 @@ func (s *Server) documents(contract []byte) ([]route, error) {
 	if err != nil {
 		return nil, fmt.Errorf("the contract cannot be turned into JSON: %w", err)
 	}
-	limits, err := encode(s.limits())
+	limits, err := encode(s.limitsDocument())
 	if err != nil {
 		return nil, err
 	}
-	units, err := encode(unitsDocument())
-	if err != nil {
+	units := jsontext.Value(wire.AppendUnits(nil))
+	if err := units.Indent(jsontext.WithIndent("  ")); err != nil {
 		return nil, err
 	}
 	version, err := encode(s.build.document())
@@ -57,7 +58,7 @@ func (s *Server) documents(contract []byte) ([]route, error) {
 	page.rules = site.ContentSecurityPolicy()
 	return []route{
 		s.get("/v1/limits", newDocument(mediaJSON, keepAndAsk, limits)),
-		s.get("/v1/units", newDocument(mediaJSON, keepAWhile, units)),
+		s.get("/v1/units", newDocument(mediaJSON, keepAWhile, append(units, '\n'))),
 		s.get("/version", newDocument(mediaJSON, keepAndAsk, version)),
 		s.get("/openapi.yaml", newDocument(mediaYAML, keepAWhile, contract)),
 		s.get("/openapi.json", newDocument(mediaJSON, keepAWhile, contractJSON)),

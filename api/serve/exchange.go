@@ -2,6 +2,7 @@ package serve
 
 import (
 	"io"
+	"sync/atomic"
 
 	"github.com/gin-gonic/gin"
 )
@@ -13,6 +14,7 @@ type exchange struct {
 	bytesIn   countingBody
 	lines     int64  // bulk lines answered
 	problems  int64  // bulk lines answered by a problem, or 1 for a refused request
+	early     string // why a bulk stream ended before its body, where it did
 	cut       string // why the answer broke off, where it did
 }
 
@@ -25,11 +27,15 @@ func exchangeOf(c *gin.Context) *exchange {
 // countingBody counts the bytes of a request body as they are read.
 type countingBody struct {
 	io.ReadCloser
-	n int64
+	n     int64
+	ended atomic.Bool // read to its end
 }
 
 func (b *countingBody) Read(p []byte) (int, error) {
 	n, err := b.ReadCloser.Read(p)
 	b.n += int64(n)
+	if err == io.EOF {
+		b.ended.Store(true)
+	}
 	return n, err
 }

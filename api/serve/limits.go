@@ -12,7 +12,7 @@ type limitsDocument struct {
 	SpoolBytes       int64   `json:"spool_bytes"`
 }
 
-func (s *Server) limits() limitsDocument {
+func (s *Server) limitsDocument() limitsDocument {
 	return limitsDocument{
 		BodyBytes:        s.config.BodyBytes,
 		LineBytes:        s.config.LineBytes,

@@ -104,8 +104,9 @@ func (m *metrics) prepare(routes []route, operations []string) {
 	for _, name := range operations {
 		for _, outcome := range []string{outcomeResult, outcomeProblem, outcomePanic} {
 			m.solves.WithLabelValues(name, outcome)
-			m.lines.WithLabelValues(name, outcome)
 		}
+		m.lines.WithLabelValues(name, outcomeResult)
+		m.lines.WithLabelValues(name, outcomeProblem)
 	}
 }
 

@@ -3,7 +3,6 @@ package serve
 import (
 	"context"
 	"errors"
-	"fmt"
 	"log/slog"
 	"net"
 	"net/http"
@@ -31,6 +30,8 @@ func (s *Server) observe(silent map[string]bool) gin.HandlerFunc {
 		if c.Request.Body != nil && c.Request.Body != http.NoBody {
 			e.bytesIn.ReadCloser = c.Request.Body
 			c.Request.Body = &e.bytesIn
+		} else {
+			e.bytesIn.ended.Store(true)
 		}
 		h := c.Writer.Header()
 		h["Request-Id"] = []string{e.requestID}
@@ -65,8 +66,11 @@ func (s *Server) logAccess(c *gin.Context, e *exchange, route string, elapsed ti
 		level = slog.LevelWarn
 	}
 	message := "request answered"
-	if e.cut != "" {
+	switch {
+	case e.cut != "":
 		message = "answer broken off: " + e.cut
+	case e.early != "":
+		message = "stream ended early: " + e.early
 	}
 	caller, _, _ := net.SplitHostPort(c.Request.RemoteAddr)
 	s.log.LogAttrs(context.Background(), level, message,
@@ -97,11 +101,7 @@ func (s *Server) recover(c *gin.Context) {
 			abort = errors.Is(err, http.ErrAbortHandler)
 		}
 		if !abort {
-			s.log.LogAttrs(context.Background(), slog.LevelError, "panic",
-				slog.String("request_id", e.requestID),
-				slog.String("cause", fmt.Sprint(cause)),
-				slog.String("stack", string(debug.Stack())),
-			)
+			s.logPanic(e, cause, debug.Stack())
 			if !c.Writer.Written() {
 				s.writeProblem(c, internalFault())
 				return

@@ -1,37 +1,36 @@
 package serve
 
 import (
-	"github.com/prometheus/client_golang/prometheus"
-
 	"leat/api/operation"
 	"leat/api/wire"
 )
 
-// outcomes are the counters of one operation, looked up once.
-type outcomes struct {
-	result, problem, panicked          prometheus.Counter // solves
-	lineResult, lineProblem, linePanic prometheus.Counter // bulk lines
-}
-
-func (s *Server) outcomes(name string) outcomes {
-	return outcomes{
-		s.metrics.solves.WithLabelValues(name, outcomeResult),
-		s.metrics.solves.WithLabelValues(name, outcomeProblem),
-		s.metrics.solves.WithLabelValues(name, outcomePanic),
-		s.metrics.lines.WithLabelValues(name, outcomeResult),
-		s.metrics.lines.WithLabelValues(name, outcomeProblem),
-		s.metrics.lines.WithLabelValues(name, outcomePanic),
+// counted returns an operation that counts how its solves end, panics included. Unary and bulk share it.
+func (s *Server) counted(op *operation.Operation) *operation.Operation {
+	result := s.metrics.solves.WithLabelValues(op.Name, outcomeResult)
+	refused := s.metrics.solves.WithLabelValues(op.Name, outcomeProblem)
+	panicked := s.metrics.solves.WithLabelValues(op.Name, outcomePanic)
+	return &operation.Operation{
+		Name: op.Name,
+		Answer: func(dst, body []byte, options operation.Options) ([]byte, []byte, *wire.Problem) {
+			counter := panicked
+			defer func() { counter.Inc() }()
+			answer, id, problem := op.Answer(dst, body, options)
+			counter = result
+			if problem != nil {
+				counter = refused
+			}
+			return answer, id, problem
+		},
 	}
 }
 
-// answer calls an operation and counts how it ended, a panic included.
-func (o *outcomes) answer(op *operation.Operation, dst, body []byte, options operation.Options) (answer []byte, problem *wire.Problem) {
-	counter := o.panicked
-	defer func() { counter.Inc() }()
-	answer, _, problem = op.Answer(dst, body, options)
-	counter = o.result
-	if problem != nil {
-		counter = o.problem
+// lineCounter returns what counts the answered lines of an operation's streams.
+func (s *Server) lineCounter(name string) func(lines, problems int) {
+	result := s.metrics.lines.WithLabelValues(name, outcomeResult)
+	problem := s.metrics.lines.WithLabelValues(name, outcomeProblem)
+	return func(lines, problems int) {
+		result.Add(float64(lines - problems))
+		problem.Add(float64(problems))
 	}
-	return answer, problem
 }

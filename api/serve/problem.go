@@ -110,7 +110,7 @@ func (s *Server) writeProblem(c *gin.Context, p *wire.Problem) {
 	e.problems++
 	answer := *p
 	answer.Instance = "urn:request:" + e.requestID
-	body := appendProblem(nil, &answer)
+	body := answer.AppendJSON(nil)
 	h := c.Writer.Header()
 	h["Content-Type"] = []string{"application/problem+json"}
 	h["Cache-Control"] = noStore

@@ -19,7 +19,8 @@ type route struct {
 // plan lays out all routes.
 func (s *Server) plan(documents []route) []route {
 	var routes []route
-	for _, op := range s.operations {
+	for _, plain := range s.operations {
+		op := s.counted(plain)
 		routes = append(routes,
 			route{method: http.MethodPost, path: "/v1/" + op.Name, handle: s.unary(op)},
 			route{method: http.MethodPost, path: "/v1/bulk/" + op.Name, handle: s.bulk(op)},

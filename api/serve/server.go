@@ -12,6 +12,7 @@ import (
 
 	"leat/api/operation"
 	"leat/api/stream"
+	"leat/api/wire"
 )
 
 // Times that no operator needs to change.
@@ -43,6 +44,7 @@ type Server struct {
 	metrics    *metrics
 	bodies     *larder
 	answers    answers
+	limits     wire.Limits
 	store      *stream.Store
 	routes     []route
 	http       *http.Server
@@ -62,6 +64,7 @@ func New(config Config, operations []*operation.Operation, around Surroundings) 
 		build:      around.Build,
 		known:      around.Ready,
 		bodies:     newLarder(config.HeldBytes),
+		limits:     wire.Limits{ArrayItems: config.ArrayItems, Points: config.Points},
 		store:      stream.NewStore(config.SpoolDir, config.MemoryBytes, config.SpoolBytes, config.SpoolTotal),
 		draining:   make(chan struct{}),
 		served:     make(chan error, 1),

@@ -35,7 +35,6 @@ func (a *answers) put(b *[]byte) {
 
 // unary is the handler of one operation on one request object.
 func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
-	outcomes := s.outcomes(op.Name)
 	return func(c *gin.Context) {
 		began := time.Now()
 		options, problem := s.admit(c, mediaJSON)
@@ -44,11 +43,12 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 			return
 		}
 		options.Inside = true
-		body, problem, err := s.bodies.read(c.Request, s.config.BodyBytes)
-		if err != nil {
-			exchangeOf(c).cut = err.Error()
-			panic(http.ErrAbortHandler)
+		if len(c.Request.TransferEncoding) > 0 {
+			// net/http hides a Content-Length beside chunks. A proxy that went by it would see other requests on
+			// this connection than we do, so there must be no further ones (RFC 9112, 6.3).
+			closeConnection(c)
 		}
+		body, problem := s.bodies.read(c.Request, s.config.BodyBytes)
 		if problem != nil {
 			closeConnection(c) // what is left of the body is not worth reading
 			s.writeProblem(c, problem)
@@ -57,7 +57,7 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 		defer body.release()
 		buffer := s.answers.get()
 		defer s.answers.put(buffer)
-		answer, problem := outcomes.answer(op, (*buffer)[:0], body.bytes, options)
+		answer, _, problem := op.Answer((*buffer)[:0], body.bytes, options)
 		*buffer = answer
 		if problem == nil && time.Since(began) > s.config.TimeLimit {
 			problem = lateAnswer(s.config.TimeLimit)
@@ -79,6 +79,7 @@ var jsonType = []string{mediaJSON}
 // admit checks all that a POST says before its body: query, media type, what it accepts.
 func (s *Server) admit(c *gin.Context, media string) (operation.Options, *wire.Problem) {
 	options, problem := readQuery(c.Request.URL.RawQuery)
+	options.Limits = &s.limits
 	if problem == nil {
 		problem = checkMedia(c.Request.Header, c.Writer.Header(), media)
 	}
@@ -93,7 +94,9 @@ func (s *Server) admit(c *gin.Context, media string) (operation.Options, *wire.P
 // refuse answers with a problem before the body was read. It drops what the client is sending all the same, up to a bound, so
 // that one that sends first and reads afterwards finds the problem and no broken connection.
 func (s *Server) refuse(c *gin.Context, problem *wire.Problem) {
-	skip(c.Request, s.config.BodyBytes)
+	if !skip(c.Request, s.config.BodyBytes) {
+		closeConnection(c)
+	}
 	s.writeProblem(c, problem)
 }
 

@@ -1,0 +1,136 @@
+package serve
+
+import (
+	"bytes"
+	"strings"
+	"testing"
+
+	"github.com/go-json-experiment/json"
+	"github.com/go-json-experiment/json/jsontext"
+
+	"leat/api/site"
+)
+
+func TestDocuments(t *testing.T) {
+	r := start(t, nil)
+	for path, media := range map[string]string{
+		"/": "text/html; charset=utf-8", "/v1/limits": "application/json", "/v1/units": "application/json",
+		"/version": "application/json", "/openapi.yaml": "application/yaml", "/openapi.json": "application/json",
+	} {
+		got := r.send("GET", path, "")
+		if got.status != 200 || got.header.Get("Content-Type") != media || len(got.body) == 0 {
+			t.Fatalf("%s: %d %v", path, got.status, got.header)
+		}
+		if media == "application/json" && !jsontext.Value(got.body).IsValid() {
+			t.Errorf("%s is no JSON: %s", path, got.body)
+		}
+		tag := got.header.Get("Etag")
+		if tag == "" || got.header.Get("Cache-Control") == "" {
+			t.Errorf("%s: header %v", path, got.header)
+		}
+		if head := r.send("HEAD", path, ""); head.status != 200 || len(head.body) != 0 || head.header.Get("Content-Length") != got.header.Get("Content-Length") {
+			t.Errorf("HEAD %s: %d %v", path, head.status, head.header)
+		}
+		for _, known := range []string{tag, "W/" + tag, `"other", ` + tag, "*"} {
+			if again := r.send("GET", path, "", "If-None-Match", known); again.status != 304 || len(again.body) != 0 || again.header.Get("Etag") != tag {
+				t.Errorf("%s If-None-Match %s: %d", path, known, again.status)
+			}
+		}
+		if again := r.send("GET", path, "", "If-None-Match", `"other"`); again.status != 200 {
+			t.Errorf("%s with another tag: %d", path, again.status)
+		}
+		if again := r.send("GET", path+"?campaign=1", ""); again.status != 200 {
+			t.Errorf("%s with a query: %d", path, again.status)
+		}
+	}
+}
+
+func TestPageByAccept(t *testing.T) {
+	r := start(t, nil)
+	for accept, media := range map[string]string{
+		"": "text/html; charset=utf-8", "*/*": "text/html; charset=utf-8",
+		"application/json": "application/json", "application/json, text/html;q=0.9": "application/json",
+		"text/html,application/xhtml+xml,application/xml;q=0.9,*/*;q=0.8": "text/html; charset=utf-8",
+	} {
+		got := r.send("GET", "/", "", "Accept", accept)
+		if got.header.Get("Content-Type") != media || got.header.Get("Vary") != "Accept" {
+			t.Errorf("Accept %q: %v", accept, got.header)
+		}
+	}
+}
+
+// The links of the page and of its JSON form all lead somewhere.
+func TestLinksLeadSomewhere(t *testing.T) {
+	r := start(t, nil)
+	var links struct {
+		Links []struct{ Href, Method string }
+	}
+	if err := json.Unmarshal(site.Links(), &links, json.MatchCaseInsensitiveNames(true)); err != nil {
+		t.Fatal(err)
+	}
+	if len(links.Links) < 10 {
+		t.Fatalf("%d links", len(links.Links))
+	}
+	for _, link := range links.Links {
+		method, wrong := link.Method, 405
+		if method == "" {
+			method, wrong = "GET", 404
+		}
+		got := r.send(method, link.Href, "")
+		if got.status == 404 || got.status == wrong {
+			t.Errorf("%s %s: %d", method, link.Href, got.status)
+		}
+	}
+	for _, piece := range bytes.Split(site.Page(), []byte(`href="`))[1:] {
+		href, _, _ := bytes.Cut(piece, []byte(`"`))
+		if got := r.send("GET", string(href), ""); got.status != 200 {
+			t.Errorf("%s: %d", href, got.status)
+		}
+	}
+}
+
+func TestPageNeedsNothingFromOutside(t *testing.T) {
+	page := string(site.Page())
+	for _, forbidden := range []string{"<script", "src=", "@import", "url(", "https://", "style=", "<link"} {
+		if strings.Contains(page, forbidden) {
+			t.Errorf("the page holds %q", forbidden)
+		}
+	}
+	for _, needed := range []string{"curl", "/v1/depths", "local codes", "licensed engineer", "barrel", "/v1/limits", "/v1/units", "/openapi.yaml"} {
+		if !strings.Contains(page, needed) {
+			t.Errorf("the page does not say %q", needed)
+		}
+	}
+	r := start(t, nil)
+	if got := r.send("GET", "/", "").header.Get("Content-Security-Policy"); got != site.ContentSecurityPolicy() || !strings.Contains(got, "style-src 'sha256-") {
+		t.Errorf("policy %q", got)
+	}
+}
+
+func TestLimitsAreThoseOfTheConfig(t *testing.T) {
+	r := start(t, func(c *Config, _ *Surroundings) { c.BodyBytes, c.LineBytes, c.ArrayItems, c.Points = 4096, 2048, 7, 9 })
+	var got map[string]float64
+	if err := json.Unmarshal(r.send("GET", "/v1/limits", "").body, &got); err != nil {
+		t.Fatal(err)
+	}
+	for name, want := range map[string]float64{"body_bytes": 4096, "line_bytes": 2048, "array_items": 7, "points": 9, "time_limit_seconds": 10} {
+		if got[name] != want {
+			t.Errorf("%s = %v, want %v", name, got[name], want)
+		}
+	}
+}
+
+func TestYAMLToJSONKeepsOrderAndKinds(t *testing.T) {
+	got, err := yamlToJSON([]byte("b: 1\na: [x, 1.5, true, null, '200', 1e-100]\n200:\n  z: >\n    folded\n    text\n  y: 0.5\n"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	value := jsontext.Value(got)
+	if err := value.Compact(); err != nil {
+		t.Fatal(err)
+	}
+	const want = `{"b":1,"a":["x",1.5,true,null,"200",1e-100],"200":{"z":"folded text\n","y":0.5}}`
+	if string(value) != want {
+		t.Errorf("got  %s\nwant %s", value, want)
+	}
+}
