@@ -1,5 +1,8 @@
 // Package section answers the geometry of cross-sections at a depth, exactly and without allocation.
 //
+// The geometric elements of the simple shapes are those of every textbook (V. T. Chow, Open-Channel Hydraulics, 1959, tables 2-1 and
+// 2-2, from memory); where a shape has a source or a derivation of its own, it stands beside it.
+//
 // Depths are in metres above the lowest point of the section, measured normal to the bed.
 package section
 
