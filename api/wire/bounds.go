@@ -56,7 +56,7 @@ func (f *field) rules(tag string) (required bool) {
 			}
 		case "floor":
 			b.floor = within(parameter)
-		case "columns":
+		case "columns", "named":
 			f.bounds = columnBounds(parameter)
 		default:
 			panic(fmt.Sprintf("wire: %s: unknown rule %q in a validate tag", f.name, rule))
@@ -72,10 +72,13 @@ func (f *field) rules(tag string) (required bool) {
 	if f.bounds == nil {
 		f.bounds = []bounds{b}
 	}
+	if columns := f.columns(); f.shape != shapeObject && f.shape != shapeObjects && (len(f.bounds) != columns || len(f.quantity) != columns) {
+		panic("wire: " + f.name + ": quantity or bounds do not fit its columns")
+	}
 	return required
 }
 
-// columnBounds reads the parameter of the rule columns: least:greatest for each column.
+// columnBounds reads the parameter of the rules columns and named: least:greatest, for each column.
 func columnBounds(parameter string) []bounds {
 	var out []bounds
 	for _, column := range strings.Fields(parameter) {

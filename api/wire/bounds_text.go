@@ -13,7 +13,7 @@ func (f *field) outOfRange(at pointer, column int, value float64, system System)
 	what := f.name
 	if len(f.bounds) > 1 {
 		what = "This number"
-	} else if f.shape == shapeNumbers {
+	} else if f.shape == shapeNumbers || f.shape == shapeNamed {
 		what = "Every number of " + f.name
 	}
 	return Fault{

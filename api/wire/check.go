@@ -15,6 +15,7 @@ var checker = newChecker()
 var (
 	noNumber *float64
 	noWhole  *int
+	noPair   *[2]float64
 )
 
 func newChecker() *validator.Validate {
@@ -34,6 +35,17 @@ func newChecker() *validator.Validate {
 		}
 		return &n.Value
 	}, Whole{})
+	v.RegisterCustomTypeFunc(func(field reflect.Value) any {
+		p := field.Interface().(Pair)
+		if !p.Given {
+			return noPair
+		}
+		return &p.Values
+	}, Pair{})
+	must(v.RegisterValidation("named", func(field validator.FieldLevel) bool {
+		b := columnBounds(field.Param())[0]
+		return b.holds(field.Field().FieldByName("Value").Float())
+	}))
 	must(v.RegisterValidation("floor", func(field validator.FieldLevel) bool {
 		least, err := strconv.ParseFloat(field.Param(), 64)
 		value := field.Field().Float()
@@ -98,6 +110,11 @@ func (p *plan) translate(faults []Fault, e validator.FieldError, system System) 
 		return append(faults, Fault{Pointer: string(at), Code: codeUnknownValue, Detail: unknownValueText(f, given)})
 	case "min":
 		return append(faults, Fault{Pointer: string(at), Code: codeTooFewItems, Detail: tooFewText(f)})
+	case "named":
+		n, _ := e.Value().(NamedNumber)
+		last := segments[len(segments)-1]
+		at = at[:len(at)-len("/")-len(last)].member(n.Name)
+		return append(faults, f.outOfRange(at, 0, n.Value, system))
 	case "columns":
 		row := reflect.ValueOf(e.Value())
 		for i := range f.bounds {

@@ -30,6 +30,12 @@ func TestBoundsAreTheValidators(t *testing.T) {
 							continue
 						}
 						value = Whole{int(v), true}
+					case shapePair:
+						row := [2]float64{sound(f, 0), sound(f, 1)}
+						row[column] = v
+						value = Pair{row, true}
+					case shapeNamed:
+						value = []NamedNumber{{"a", v}}
 					case shapeNumbers:
 						value = []float64{v}
 					case shapePairs:
@@ -89,7 +95,7 @@ func TestListLengthsAreTheValidators(t *testing.T) {
 						t.Errorf("%v.%s = %q: compiled %v, validator %v", typ, f.name, name, known, err)
 					}
 				}
-			case shapeNumbers, shapePairs, shapeRows, shapeObjects:
+			case shapeNumbers, shapePairs, shapeRows, shapeObjects, shapeNamed, shapeTexts:
 				// Only the length is judged here: take the tag up to where it goes into the items.
 				tag, _, _ := strings.Cut(sf.Tag.Get("validate"), ",dive")
 				for n := range 4 {

@@ -53,6 +53,10 @@ const (
 	shapeNumbers // a list
 	shapePairs   // a list of [2]float64
 	shapeRows    // a list of [4]float64
+	shapePair    // a list of exactly two numbers
+	shapeNamed   // an object of numbers under names of the caller's
+	shapeTexts   // a list of strings
+	shapeRaw     // any value
 	shapeObject
 	shapeObjects // a list
 )
@@ -103,6 +107,9 @@ func compilePlan(t reflect.Type, known map[reflect.Type]*plan) *plan {
 	p.ruled = reflect.PointerTo(t).Implements(reflect.TypeFor[ruled]())
 	if len(p.fields) > 64 {
 		panic(fmt.Sprintf("wire: %v has more than 64 members", t))
+	}
+	if p.variants != nil && !reflect.PointerTo(t).Implements(reflect.TypeFor[varied]()) {
+		panic(fmt.Sprintf("wire: %v has members of variants, but does not tell its variant", t))
 	}
 	return p
 }
@@ -155,6 +162,14 @@ func shapeOf(t reflect.Type) shape {
 		return shapeWhole
 	case reflect.TypeFor[ID]():
 		return shapeID
+	case reflect.TypeFor[Pair]():
+		return shapePair
+	case reflect.TypeFor[[]NamedNumber]():
+		return shapeNamed
+	case reflect.TypeFor[[]string]():
+		return shapeTexts
+	case reflect.TypeFor[Raw]():
+		return shapeRaw
 	case reflect.TypeFor[[]float64]():
 		return shapeNumbers
 	case reflect.TypeFor[[][2]float64]():
@@ -177,10 +192,13 @@ func shapeOf(t reflect.Type) shape {
 	panic(fmt.Sprintf("wire: no JSON form for %v", t))
 }
 
-// columns is the number of columns of a list of tuples.
+// columns is the number of columns that have a quantity and bounds of their own: more than one in tuples only.
 func (f *field) columns() int {
-	if f.shape == shapeRows {
+	switch f.shape {
+	case shapePairs, shapePair:
+		return 2
+	case shapeRows:
 		return 4
 	}
-	return 2
+	return 1
 }

@@ -115,6 +115,12 @@ func (f *field) wanted() string {
 		return "a string or a number"
 	case shapeObject:
 		return "an object"
+	case shapePair:
+		return f.tupleType()
+	case shapeNamed:
+		return "an object of numbers"
+	case shapeRaw:
+		return "a value"
 	}
 	return f.listType()
 }
@@ -126,6 +132,8 @@ func (f *field) listType() string {
 		return "a list of " + f.tupleType()[len("a list of "):] + ", each a list itself"
 	case shapeObjects:
 		return "a list of objects"
+	case shapeTexts:
+		return "a list of strings"
 	}
 	return "a list of numbers"
 }

@@ -23,9 +23,9 @@ func collectMemberUnits() []MemberUnit {
 	for _, p := range plans {
 		for i := range p.fields {
 			switch f := &p.fields[i]; f.shape {
-			case shapeNumber, shapeNumbers, shapeWhole:
+			case shapeNumber, shapeNumbers, shapeWhole, shapeNamed:
 				all = append(all, MemberUnit{f.name, -1, f.quantity[0]})
-			case shapePairs, shapeRows:
+			case shapePairs, shapePair, shapeRows:
 				for column, q := range f.quantity {
 					all = append(all, MemberUnit{f.name, column, q})
 				}

@@ -41,6 +41,14 @@ func (w *walk) value(f *field, v reflect.Value) {
 		*v.Addr().Interface().(*[][2]float64) = w.pairList(f)
 	case shapeRows:
 		*v.Addr().Interface().(*[][4]float64) = w.rowList(f)
+	case shapePair:
+		w.pair(f, v.Addr().Interface().(*Pair))
+	case shapeNamed:
+		*v.Addr().Interface().(*[]NamedNumber) = w.named(f)
+	case shapeTexts:
+		*v.Addr().Interface().(*[]string) = w.texts(f)
+	case shapeRaw:
+		*v.Addr().Interface().(*Raw) = w.next()
 	case shapeObject:
 		w.object(f.sub, v)
 	case shapeObjects:
