@@ -10,7 +10,7 @@ type ReadError struct {
 	Err error
 	// Line is where the reader stood.
 	Line int64
-	// Sent is the number of bytes given to Output by then: with 0, a caller can still answer otherwise.
+	// Sent is the number of bytes that Output took: with 0, a caller can still answer otherwise.
 	Sent int64
 }
 

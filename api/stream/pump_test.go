@@ -99,6 +99,9 @@ func TestAFatalReadBreaksOff(t *testing.T) {
 	if !errors.As(err, &read) || !errors.Is(err, broken) || read.Line != 3 {
 		t.Fatalf("error %v", err)
 	}
+	if read.Sent != int64(out.Len()) {
+		t.Errorf("%d bytes sent, the error says %d", out.Len(), read.Sent)
+	}
 	if s.Complete || bytes.Contains(out.Bytes(), []byte("end")) {
 		t.Fatalf("an end after a break: %q", out.Bytes())
 	}

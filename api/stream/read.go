@@ -74,7 +74,7 @@ func (r *run) readFault(err error) (cause error) {
 		// The error is that of StopReading, or as good as it.
 		r.endEarly()
 	default:
-		r.abort(&ReadError{Err: err, Line: r.Reader.Position(), Sent: r.sent.Load()})
+		r.abort(&ReadError{Err: err, Line: r.Reader.Position()})
 	}
 	return nil
 }

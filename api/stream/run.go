@@ -114,7 +114,11 @@ func (r *run) run(ctx context.Context) (Summary, error) {
 	if r.whole.Load() {
 		return r.summary, nil
 	}
-	return r.summary, context.Cause(r.ctx)
+	err := context.Cause(r.ctx)
+	if read, found := err.(*ReadError); found {
+		read.Sent = r.sent.Load()
+	}
+	return r.summary, err
 }
 
 // guard runs a part; a panic in it breaks the run off.
