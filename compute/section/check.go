@@ -9,16 +9,18 @@ import (
 // Bounds of sizes in metres and of side slopes. They are far beyond any channel; within them no product that a
 // section or a solver forms can overflow or lose its digits to underflow.
 const (
-	leastSize       = 1e-9
-	greatestSize    = 1e9
-	greatestSlope   = 1e6
-	leastOrdinate   = 1e-100 // of levels and offsets, which may also be zero
-	notANumber      = "not_a_number"
-	notPositive     = "not_positive"
-	outOfRange      = "out_of_range"
-	sizeAccepted    = "from 1e-9 to 1e9 metres"
-	slopeAccepted   = "from 0 to 1e6"
-	ordinatesWanted = "0 or from 1e-100 to 1e9 metres in size"
+	leastSize     = 1e-9
+	greatestSize  = 1e9
+	greatestSlope = 1e6
+	leastOrdinate = 1e-100 // of levels and offsets, which may also be zero
+)
+
+// Codes that several rules share.
+const (
+	notANumber  = "not_a_number"
+	notPositive = "not_positive"
+	negative    = "negative"
+	outOfRange  = "out_of_range"
 )
 
 // check collects the faults of one constructor.
@@ -52,7 +54,7 @@ func (c *check) size(member string, value float64) bool {
 	case value <= 0:
 		c.add(member, notPositive, "This must be greater than 0.")
 	case value < leastSize || value > greatestSize:
-		c.add(member, outOfRange, "This must be "+sizeAccepted+".")
+		c.add(member, outOfRange, "This is out of range; lengths from a nanometre to a million kilometres are accepted.")
 	default:
 		return true
 	}
@@ -77,9 +79,9 @@ func (c *check) sizeOrZero(member string, value float64) bool {
 	switch {
 	case !c.finite(member, value):
 	case value < 0:
-		c.add(member, "negative", "This must not be negative.")
+		c.add(member, negative, "This must not be negative.")
 	case value > greatestSize:
-		c.add(member, outOfRange, "This must be from 0 to 1e9 metres.")
+		c.add(member, outOfRange, "This is out of range; 0 and lengths up to a million kilometres are accepted.")
 	default:
 		return true
 	}
@@ -91,9 +93,9 @@ func (c *check) slope(member string, value float64) bool {
 	switch {
 	case !c.finite(member, value):
 	case value < 0:
-		c.add(member, "negative", "A side slope must not be negative: the side would lean over the water.")
+		c.add(member, negative, "A side slope must not be negative: the side would lean over the water.")
 	case value > greatestSlope:
-		c.add(member, outOfRange, "A side slope must be "+slopeAccepted+" (horizontal per unit vertical).")
+		c.add(member, outOfRange, "This is out of range; side slopes from 0 to 1e6 (horizontal per unit vertical) are accepted.")
 	default:
 		return true
 	}
@@ -107,7 +109,7 @@ func (c *check) gradient(member string, value float64) bool {
 	case value <= 0:
 		c.add(member, notPositive, "This must be greater than 0.")
 	case value < 1/greatestSlope || value > greatestSlope:
-		c.add(member, outOfRange, "This must be from 1e-6 to 1e6 (vertical per unit horizontal).")
+		c.add(member, outOfRange, "This is out of range; slopes from 1e-6 to 1e6 (vertical per unit horizontal) are accepted.")
 	default:
 		return true
 	}
@@ -121,7 +123,7 @@ func (c *check) area(member string, value float64) bool {
 	case value <= 0:
 		c.add(member, notPositive, "This must be greater than 0.")
 	case value < leastSize*leastSize || value > greatestSize*greatestSize:
-		c.add(member, outOfRange, "This must be from 1e-18 to 1e18 square metres.")
+		c.add(member, outOfRange, "This is out of range; areas from a square nanometre to that of a square with sides of a million kilometres are accepted.")
 	default:
 		return true
 	}
@@ -134,6 +136,6 @@ func (c *check) ordinate(member string, value float64) {
 		return
 	}
 	if size := math.Abs(value); size > greatestSize || size != 0 && size < leastOrdinate {
-		c.add(member, outOfRange, "This must be "+ordinatesWanted+".")
+		c.add(member, outOfRange, "This is out of range; 0 and values up to a million kilometres in size, but none below 1e-100, are accepted.")
 	}
 }
