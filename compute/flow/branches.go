@@ -13,30 +13,30 @@ const samples = 24
 // knots are the most stretches of one piece.
 const knots = samples + 2
 
-// A branch is a stretch of depth on which a curve is smooth and monotone. Its lower end is exclusive (0 for the first; otherwise the
+// A Branch is a stretch of depth on which a curve is smooth and monotone. Its lower end is exclusive (0 for the first; otherwise the
 // curve may jump there), its upper end inclusive (+Inf for the last of an open section).
-type branch struct {
-	lo, hi float64
-	rising bool
-	first  bool // the branch begins at the lower end of a smooth piece
-	last   bool // the branch ends at the upper end of a smooth piece
+type Branch struct {
+	Lo, Hi float64
+	Rising bool
+	First  bool // the branch begins at the lower end of a smooth piece
+	Last   bool // the branch ends at the upper end of a smooth piece
 }
 
 // inside returns a depth inside a branch to begin a search from.
-func (b branch) inside() float64 {
+func (b Branch) inside() float64 {
 	switch {
-	case math.IsInf(b.hi, 1) && b.lo == 0:
+	case math.IsInf(b.Hi, 1) && b.Lo == 0:
 		return 1
-	case math.IsInf(b.hi, 1):
-		return 2 * b.lo
-	case b.lo == 0:
-		return b.hi / 2
+	case math.IsInf(b.Hi, 1):
+		return 2 * b.Lo
+	case b.Lo == 0:
+		return b.Hi / 2
 	}
-	return b.lo + (b.hi-b.lo)/2
+	return b.Lo + (b.Hi-b.Lo)/2
 }
 
 // branches visits the branches of a curve from the bed upward until visit returns false.
-func (c *Channel) branches(f *curve, visit func(b branch) bool) {
+func (c *Channel) branches(f *curve, visit func(b Branch) bool) {
 	breaks := newBreaks(c)
 	lo := 0.0
 	for {
@@ -49,12 +49,12 @@ func (c *Channel) branches(f *curve, visit func(b branch) bool) {
 }
 
 // piece visits the branches of a curve on one smooth piece; it reports whether to go on.
-func (c *Channel) piece(f *curve, lo, hi float64, visit func(b branch) bool) bool {
+func (c *Channel) piece(f *curve, lo, hi float64, visit func(b Branch) bool) bool {
 	var knot [knots + 1]float64
 	n := c.cut(f, lo, hi, &knot)
-	b := branch{lo: lo, rising: f.risesFromZero(), first: true}
+	b := Branch{Lo: lo, Rising: f.risesFromZero(), First: true}
 	if lo > 0 {
-		b.rising = f.rate(c.Section.At(above(lo))) >= 0
+		b.Rising = f.rate(c.Section.At(above(lo))) >= 0
 	}
 	for i := 1; i <= n; i++ {
 		end := knot[i]
@@ -62,20 +62,20 @@ func (c *Channel) piece(f *curve, lo, hi float64, visit func(b branch) bool) boo
 		if !math.IsInf(end, 1) {
 			rising = f.rate(c.Section.At(end)) >= 0
 		}
-		if rising != b.rising {
+		if rising != b.Rising {
 			// A turn that rounds to the end of the piece, the crown perhaps, stays just inside it.
-			b.hi = min(c.turn(f, max(knot[i-1], lo), end, rising), math.Nextafter(end, 0))
-			if b.hi > b.lo {
+			b.Hi = min(c.turn(f, max(knot[i-1], lo), end, rising), math.Nextafter(end, 0))
+			if b.Hi > b.Lo {
 				if !visit(b) {
 					return false
 				}
-				b.lo, b.first = b.hi, false
+				b.Lo, b.First = b.Hi, false
 			}
-			b.rising = rising
+			b.Rising = rising
 		}
 	}
-	b.hi, b.last = hi, true
-	if b.hi > b.lo {
+	b.Hi, b.Last = hi, true
+	if b.Hi > b.Lo {
 		return visit(b)
 	}
 	return true

@@ -18,13 +18,13 @@ func (c *Channel) Capacity() (capacity Capacity, known bool) {
 	best, depth := c.conveyance(bank), bank
 	f := c.uniform()
 	if f.turning != never {
-		c.branches(&f, func(b branch) bool {
-			if b.lo >= bank {
+		c.branches(&f, func(b Branch) bool {
+			if b.Lo >= bank {
 				return false
 			}
-			if b.hi < bank {
-				if k := c.conveyance(b.hi); k > best || k == best && b.hi < depth {
-					best, depth = k, b.hi
+			if b.Hi < bank {
+				if k := c.conveyance(b.Hi); k > best || k == best && b.Hi < depth {
+					best, depth = k, b.Hi
 				}
 			}
 			return true

@@ -66,10 +66,15 @@ func (c *Channel) constantCoefficients() bool {
 	return c.EnergyCoefficient != 0 && c.MomentumCoefficient != 0 || c.Law == nil || friction.UnitCoefficients(c.Law)
 }
 
-// at returns the geometry at a depth; on a closed section's crown it is full.
-func (c *Channel) at(depth float64) section.Geometry {
-	if c.Section.Closed() && depth >= c.Section.Height() {
-		return c.Section.Full()
+// Geometry returns the geometry at a depth. At the crown of a closed section it is full; above, the depth is that of the pressure line: the full
+// section with its first moment about that line, and a surface without width.
+func (c *Channel) Geometry(depth float64) section.Geometry {
+	height := c.Section.Height()
+	if !c.Section.Closed() || depth < height {
+		return c.Section.At(depth)
 	}
-	return c.Section.At(depth)
+	g := c.Section.Full()
+	g.Moment += g.Area * (depth - height)
+	g.Depth, g.PerimeterRate, g.TopWidthRate = depth, 0, 0
+	return g
 }

@@ -9,7 +9,7 @@ import (
 // Alternate returns the alternate depth of a depth at a discharge (total, m3/s): the nearest one of equal specific energy on a branch on
 // which the energy runs the other way. It does not allocate.
 func (c *Channel) Alternate(discharge, depth float64) (alternate float64, absent Absence) {
-	m := c.motion(discharge)
+	m := c.Motion(discharge)
 	f := m.hollow(specificEnergy)
 	return f.conjugate(depth)
 }
@@ -17,7 +17,7 @@ func (c *Channel) Alternate(discharge, depth float64) (alternate float64, absent
 // Sequent returns the sequent depth of a depth at a discharge (total, m3/s): the nearest one of equal specific force on a branch on which
 // the force runs the other way. It does not allocate.
 func (c *Channel) Sequent(discharge, depth float64) (sequent float64, absent Absence) {
-	m := c.motion(discharge)
+	m := c.Motion(discharge)
 	f := m.hollow(specificForce)
 	return f.conjugate(depth)
 }
@@ -32,24 +32,24 @@ func (f *curve) conjugate(depth float64) (other float64, absent Absence) {
 		return depth, Coincides
 	}
 	nearest, failed := math.Inf(1), false
-	f.motion.channel.branches(f, func(b branch) bool {
-		if b.lo > depth && b.lo-depth > math.Abs(nearest-depth) {
+	f.motion.channel.branches(f, func(b Branch) bool {
+		if b.Lo > depth && b.Lo-depth > math.Abs(nearest-depth) {
 			return false
 		}
-		if b.rising == (direction > 0) {
+		if b.Rising == (direction > 0) {
 			return true
 		}
 		from, to := math.Inf(1), math.Inf(1)
-		if b.lo > 0 {
-			from = f.value(s.At(above(b.lo)))
+		if b.Lo > 0 {
+			from = f.value(s.At(above(b.Lo)))
 		}
-		if !math.IsInf(b.hi, 1) {
-			to = f.value(s.At(b.hi))
+		if !math.IsInf(b.Hi, 1) {
+			to = f.value(s.At(b.Hi))
 		}
 		// At a turning point that both branches share the value counts as passed, whatever its last place says.
-		touchesBelow := depth < b.lo && !b.first && from < want*(1+seam) && b.rising
-		touchesAbove := depth > b.hi && !b.last && to < want*(1+seam) && !b.rising
-		if !(b.rising && (from < want || touchesBelow) && want <= to || !b.rising && from > want && (want >= to || touchesAbove)) {
+		touchesBelow := depth < b.Lo && !b.First && from < want*(1+seam) && b.Rising
+		touchesAbove := depth > b.Hi && !b.Last && to < want*(1+seam) && !b.Rising
+		if !(b.Rising && (from < want || touchesBelow) && want <= to || !b.Rising && from > want && (want >= to || touchesAbove)) {
 			return true
 		}
 		x, ok := f.same(b, depth, want)
@@ -69,13 +69,13 @@ func (f *curve) conjugate(depth float64) (other float64, absent Absence) {
 }
 
 // same returns the depth on a branch at which a curve has the value that it has at another depth, off the branch.
-func (f *curve) same(b branch, depth, want float64) (x float64, ok bool) {
+func (f *curve) same(b Branch, depth, want float64) (x float64, ok bool) {
 	s := f.motion.channel.Section
 	x, ok = solve.UnitRoot(func(x float64) (float64, float64) {
 		g := s.At(x)
 		v := f.value(g)
 		return v / want, x * f.slope(g) / v
-	}, b.lo, above(b.hi), b.inside(), b.rising)
+	}, b.Lo, above(b.Hi), b.inside(), b.Rising)
 	if apart := math.Abs(x - depth); ok && apart < near*depth && max(x, depth)+4*apart < s.Height() {
 		return f.close(b, depth, x)
 	}
@@ -87,7 +87,7 @@ func (f *curve) same(b branch, depth, want float64) (x float64, ok bool) {
 const near = 0.01
 
 // close returns the depth near another one, on a branch, such that the mean of the rate between the two is zero.
-func (f *curve) close(b branch, depth, guess float64) (x float64, ok bool) {
+func (f *curve) close(b Branch, depth, guess float64) (x float64, ok bool) {
 	c := f.motion.channel
 	mean := func(x float64) float64 {
 		lo, hi := min(depth, x), max(depth, x)
@@ -112,7 +112,7 @@ func (f *curve) close(b branch, depth, guess float64) (x float64, ok bool) {
 	low, high := mean(lo), 0.0
 	high = low
 	for range 60 {
-		lo, hi = max(guess-width, b.lo), min(guess+width, b.hi)
+		lo, hi = max(guess-width, b.Lo), min(guess+width, b.Hi)
 		if depth < guess {
 			lo = max(lo, above(depth))
 		} else {

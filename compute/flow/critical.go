@@ -11,11 +11,11 @@ import (
 // minimum, F = 1. Maxima and kinks of the energy are none. Where there is none it returns the physical reason. It allocates only where
 // dst's capacity does not suffice.
 func (c *Channel) Critical(discharge float64, dst []float64) (depths []float64, absent Absence) {
-	m := c.motion(discharge)
+	m := c.Motion(discharge)
 	return m.critical(dst)
 }
 
-func (m *motion) critical(dst []float64) (depths []float64, absent Absence) {
+func (m *Motion) critical(dst []float64) (depths []float64, absent Absence) {
 	form := m.channel.Section.Form()
 	if m.channel.constantCoefficients() && (form == section.Rising || form == section.Arched) {
 		hi := m.channel.Section.Height()
@@ -29,22 +29,22 @@ func (m *motion) critical(dst []float64) (depths []float64, absent Absence) {
 	f := m.hollow(specificEnergy)
 	kinked, before := false, false
 	edge := 0.0 // dE/ddepth at the upper end of the branch before
-	m.channel.branches(&f, func(b branch) bool {
+	m.channel.branches(&f, func(b Branch) bool {
 		switch {
 		case !before: // the first branch: the energy falls from the bed
-		case !b.first && b.rising:
-			dst = append(dst, b.lo)
-		case b.first && b.rising && edge < 0:
+		case !b.First && b.Rising:
+			dst = append(dst, b.Lo)
+		case b.First && b.Rising && edge < 0:
 			// A minimum where two pieces meet: smooth if the derivative does not jump.
-			if m.energyRate(m.channel.Section.At(above(b.lo)))-edge <= seam*m.cosine {
-				dst = append(dst, b.lo)
+			if m.EnergyRate(m.channel.Section.At(above(b.Lo)))-edge <= seam*m.cosine {
+				dst = append(dst, b.Lo)
 			} else {
 				kinked = true
 			}
 		}
 		before = true
-		if b.last && !math.IsInf(b.hi, 1) {
-			edge = m.energyRate(m.channel.Section.At(b.hi))
+		if b.Last && !math.IsInf(b.Hi, 1) {
+			edge = m.EnergyRate(m.channel.Section.At(b.Hi))
 		}
 		return true
 	})
@@ -58,7 +58,7 @@ func (m *motion) critical(dst []float64) (depths []float64, absent Absence) {
 }
 
 // criticalBetween returns the depth between two others at which F^2 falls through one, where alpha is constant.
-func (m *motion) criticalBetween(lo, hi float64) (depth float64, ok bool) {
+func (m *Motion) criticalBetween(lo, hi float64) (depth float64, ok bool) {
 	guess := 1.0
 	if !math.IsInf(hi, 1) {
 		guess = lo + (hi-lo)/2
@@ -79,16 +79,16 @@ func (c *Channel) CriticalAt(depth float64) (discharge float64, absent Absence) 
 		return 0, Filled
 	}
 	g := c.Section.At(depth)
-	unit := motion{channel: c, discharge: 1, head: 1 / c.Gravity, cosine: c.Cosine()}
+	unit := Motion{channel: c, discharge: 1, head: 1 / c.Gravity, cosine: c.Cosine()}
 	term := unit.froudeTerm(g)
 	if !(term > 0) {
 		return 0, NoMinimum
 	}
 	q := math.Sqrt(unit.cosine / term)
-	m := motion{channel: c, discharge: q, head: q * q / c.Gravity, cosine: unit.cosine}
+	m := Motion{channel: c, discharge: q, head: q * q / c.Gravity, cosine: unit.cosine}
 	// The energy must rise above: a little below the depth its derivative is negative.
 	step := depth * 1e-6
-	if !(m.energyRate(c.Section.At(depth-step)) < 0) {
+	if !(m.EnergyRate(c.Section.At(depth-step)) < 0) {
 		return 0, NoMinimum
 	}
 	return q * c.barrels(), Present

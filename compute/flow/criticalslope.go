@@ -14,7 +14,7 @@ func (c *Channel) CriticalSlope(discharge float64) (slope float64, known bool) {
 	if !exists {
 		return 0, false
 	}
-	m := trial.motion(discharge)
+	m := trial.Motion(discharge)
 	slope = m.sine(depth)
 	switch {
 	case !(slope > 0):
@@ -48,7 +48,7 @@ func (c *Channel) CriticalSlope(discharge float64) (slope float64, known bool) {
 func (c *Channel) lowestCritical(discharge, slope float64) (depth float64, ok bool) {
 	c.Slope = slope
 	var room [8]float64
-	m := c.motion(discharge)
+	m := c.Motion(discharge)
 	depths, absent := m.critical(room[:0])
 	if absent != Present {
 		return 0, false
@@ -57,7 +57,7 @@ func (c *Channel) lowestCritical(discharge, slope float64) (depth float64, ok bo
 }
 
 // sine returns the slope on which a depth is normal, (Q/K)^2.
-func (m *motion) sine(depth float64) float64 {
+func (m *Motion) sine(depth float64) float64 {
 	ratio := m.discharge / m.channel.Law.AtDischarge(m.channel.Section.At(depth), m.discharge).K
 	return ratio * ratio
 }
@@ -68,7 +68,7 @@ func (c *Channel) slopeExcess(discharge, slope float64) float64 {
 	if !ok {
 		return math.NaN()
 	}
-	m := c.motion(discharge)
+	m := c.Motion(discharge)
 	return slope - m.sine(depth)
 }
 

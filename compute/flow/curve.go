@@ -29,7 +29,7 @@ const (
 // A curve is a quantity over depth, as the search for its branches sees it. Energy and force fall from the bed, conveyance rises from it;
 // without end all rise.
 type curve struct {
-	motion  motion
+	motion  Motion
 	of      quantity
 	turning turning
 	a, b    float64 // for a power law the conveyance is proportional to A^a/P^b to a constant power; else 0
@@ -37,7 +37,7 @@ type curve struct {
 
 // uniform returns the curve of conveyance at the channel's slope.
 func (c *Channel) uniform() curve {
-	f := curve{motion: motion{channel: c}, of: uniformConveyance}
+	f := curve{motion: Motion{channel: c}, of: uniformConveyance}
 	form, law := c.Section.Form(), c.Law.Form()
 	switch law {
 	case friction.Manning:
@@ -58,7 +58,7 @@ func (c *Channel) uniform() curve {
 
 // hollow returns the curve of energy or force. Where the coefficients are constant both have a derivative of the sign of
 // cos - constant*T/A^3.
-func (m *motion) hollow(of quantity) curve {
+func (m *Motion) hollow(of quantity) curve {
 	f := curve{motion: *m, of: of}
 	if m.channel.constantCoefficients() {
 		switch m.channel.Section.Form() {
@@ -78,9 +78,9 @@ func (f *curve) risesFromZero() bool { return f.of == uniformConveyance }
 func (f *curve) value(g section.Geometry) float64 {
 	switch f.of {
 	case specificEnergy:
-		return f.motion.energy(g)
+		return f.motion.Energy(g)
 	case specificForce:
-		return f.motion.force(g)
+		return f.motion.Force(g)
 	}
 	return f.motion.channel.Law.AtSlope(g, f.motion.channel.Slope).K
 }
@@ -89,9 +89,9 @@ func (f *curve) value(g section.Geometry) float64 {
 func (f *curve) slope(g section.Geometry) float64 {
 	switch f.of {
 	case specificEnergy:
-		return f.motion.energyRate(g)
+		return f.motion.EnergyRate(g)
 	case specificForce:
-		return f.motion.forceRate(g)
+		return f.motion.ForceRate(g)
 	}
 	return f.motion.channel.Law.AtSlope(g, f.motion.channel.Slope).Rate
 }
@@ -100,9 +100,9 @@ func (f *curve) slope(g section.Geometry) float64 {
 func (f *curve) rate(g section.Geometry) float64 {
 	switch f.of {
 	case specificEnergy:
-		return f.motion.energyRate(g)
+		return f.motion.EnergyRate(g)
 	case specificForce:
-		return f.motion.forceRate(g) / g.Area
+		return f.motion.ForceRate(g) / g.Area
 	}
 	switch {
 	case f.turning == once: // finite at the crown too, where the perimeter's rate has no bound

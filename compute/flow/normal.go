@@ -20,7 +20,7 @@ func (c *Channel) Normal(discharge float64, dst []float64) (depths []float64, ab
 	}
 	k := discharge / c.barrels() / math.Sqrt(c.Slope)
 	if hi, ok := c.onlyBelow(k); ok {
-		depth, ok := c.normalBetween(k, branch{hi: hi, rising: true})
+		depth, ok := c.normalBetween(k, Branch{Hi: hi, Rising: true})
 		if !ok {
 			return dst, Unsolved
 		}
@@ -44,10 +44,10 @@ func (c *Channel) onlyBelow(k float64) (depth float64, known bool) {
 }
 
 // normalBetween returns the depth on a branch at which the conveyance is k.
-func (c *Channel) normalBetween(k float64, b branch) (depth float64, ok bool) {
+func (c *Channel) normalBetween(k float64, b Branch) (depth float64, ok bool) {
 	return solve.UnitRoot(func(depth float64) (float64, float64) {
 		return c.uniformRatio(k, c.Section.At(depth))
-	}, b.lo, above(b.hi), b.inside(), b.rising)
+	}, b.Lo, above(b.Hi), b.inside(), b.Rising)
 }
 
 // search finds every normal depth on the branches of the uniform discharge.
@@ -56,17 +56,17 @@ func (c *Channel) search(dst []float64, k float64) (depths []float64, absent Abs
 	f := c.uniform()
 	greatest, jumped, failed, carries := 0.0, false, false, false
 	previous := 0.0 // the conveyance at the upper end of the branch before
-	c.branches(&f, func(b branch) bool {
+	c.branches(&f, func(b Branch) bool {
 		from, to := 0.0, math.Inf(1)
-		if b.lo > 0 {
-			from = c.conveyance(above(b.lo))
+		if b.Lo > 0 {
+			from = c.conveyance(above(b.Lo))
 		}
-		if !math.IsInf(b.hi, 1) {
-			to = c.conveyance(b.hi)
+		if !math.IsInf(b.Hi, 1) {
+			to = c.conveyance(b.Hi)
 		}
-		if b.lo > 0 && b.first && (previous-k)*(from-k) < 0 {
+		if b.Lo > 0 && b.First && (previous-k)*(from-k) < 0 {
 			if math.Abs(from-previous) <= seam*k {
-				dst = append(dst, b.lo)
+				dst = append(dst, b.Lo)
 			} else {
 				jumped = true
 			}
@@ -74,14 +74,14 @@ func (c *Channel) search(dst []float64, k float64) (depths []float64, absent Abs
 		greatest = max(greatest, from, to)
 		carries = carries || greatest > 0
 		previous = to
-		if from == k && b.lo > 0 && b.rising && len(dst) > none && dst[len(dst)-1] == b.lo {
+		if from == k && b.Lo > 0 && b.Rising && len(dst) > none && dst[len(dst)-1] == b.Lo {
 			return true // the same turning point twice
 		}
-		if b.rising && from < k && k <= to || !b.rising && from > k && k >= to {
+		if b.Rising && from < k && k <= to || !b.Rising && from > k && k >= to {
 			depth, ok := c.normalBetween(k, b)
 			failed = failed || !ok
 			if n := len(dst); n == none || dst[n-1] != depth {
-				dst = append(dst, min(depth, b.hi))
+				dst = append(dst, min(depth, b.Hi))
 			}
 		}
 		return true

@@ -60,7 +60,9 @@ type examiner struct {
 	faults []string
 }
 
-func (x *examiner) fault(format string, args ...any) { x.faults = append(x.faults, fmt.Sprintf(format, args...)) }
+func (x *examiner) fault(format string, args ...any) {
+	x.faults = append(x.faults, fmt.Sprintf(format, args...))
+}
 
 func (x *examiner) examine(r *rand.Rand) {
 	c, q := x.c, x.q
@@ -77,8 +79,8 @@ func (x *examiner) examine(r *rand.Rand) {
 			x.scan("normal", d.Normal, value, 0)
 		}
 	}
-	m := c.motion(q)
-	rate := func(y float64) float64 { return m.energyRate(c.Section.At(y)) / m.cosine }
+	m := c.Motion(q)
+	rate := func(y float64) float64 { return m.EnergyRate(c.Section.At(y)) / m.cosine }
 	x.roots("critical", d.Critical, rate)
 	if x.dense || len(d.Critical) == 0 {
 		x.scan("critical", d.Critical, rate, 1)
@@ -188,7 +190,7 @@ func (x *examiner) criticalSlope(slope float64) {
 // conjugates checks the alternate and the sequent depth of a random depth: the equation holds, and the way back leads to the same depth.
 func (x *examiner) conjugates(r *rand.Rand) {
 	c := x.c
-	m := c.motion(x.q)
+	m := c.Motion(x.q)
 	yardstick := math.Cbrt(m.head)
 	if height := c.Section.Height(); !math.IsInf(height, 1) {
 		yardstick = min(yardstick, height)

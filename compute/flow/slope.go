@@ -38,8 +38,8 @@ func (c *Channel) Class(discharge float64, normal, critical []float64) SlopeClas
 	case len(critical) > 0 && math.Abs(normal[0]-critical[0]) <= same*critical[0]:
 		return CriticalSlope
 	}
-	m := c.motion(discharge)
-	if m.energyRate(c.Section.At(normal[0])) > 0 {
+	m := c.Motion(discharge)
+	if m.EnergyRate(c.Section.At(normal[0])) > 0 {
 		return Mild
 	}
 	return Steep

@@ -49,7 +49,7 @@ type State struct {
 
 // State describes a depth, 0 < depth <= the section's height. A discharge of 0 stands for none.
 func (c *Channel) State(depth, discharge float64) State {
-	g := c.at(depth)
+	g := c.Geometry(depth)
 	s := State{Geometry: g, Radius: g.Radius(), HydraulicDepth: math.NaN(), CentroidDepth: g.Moment / g.Area,
 		Conveyance: math.NaN(), UniformDischarge: math.NaN(), FroudeNumber: math.NaN(), FrictionSlope: math.NaN(),
 		BedShearStress: math.NaN(), StreamPower: math.NaN()}
@@ -81,12 +81,12 @@ func (c *Channel) restingConveyance(g section.Geometry) float64 {
 // move fills in what a discharge adds to a state.
 func (c *Channel) move(s *State, discharge float64, full bool) {
 	g := s.Geometry
-	m := c.motion(discharge)
+	m := c.Motion(discharge)
 	s.Discharge = discharge
 	s.Velocity = m.discharge / g.Area
 	s.VelocityHead = c.coefficients(g).Energy * m.head / (2 * g.Area * g.Area)
 	s.SpecificEnergy = g.Depth*m.cosine + s.VelocityHead
-	s.SpecificForce = m.force(g)
+	s.SpecificForce = m.Force(g)
 	if full {
 		s.Regime = FullFlow
 	} else {

@@ -52,7 +52,7 @@ func (c *Channel) UniformAt(depth float64) (discharge float64, absent Absence) {
 	case c.Slope < 0:
 		return 0, Adverse
 	}
-	discharge = c.UniformDischarge(c.at(depth))
+	discharge = c.UniformDischarge(c.Geometry(depth))
 	if !(discharge > 0) {
 		return 0, NoConveyance
 	}
