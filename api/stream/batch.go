@@ -15,9 +15,21 @@ const (
 // back; only one of them has it at a time.
 type batch struct {
 	in      []byte // the records' bytes, one after another
-	out     []byte // their answers
 	records []entry
-	solved  chan struct{} // of capacity 1: a worker has finished with it
+
+	// Answers pass to the writer in pieces, mostly one: the answers to records[first:ready] are in out.
+	out          []byte
+	first, ready int
+	solved       chan struct{} // of capacity 1: a worker has made a piece
+	taken        chan struct{} // of capacity 1: the writer has taken a piece that was not the last
+}
+
+// last reports whether the piece in out is the last.
+func (b *batch) last() bool { return b.ready == len(b.records) }
+
+// next makes room for the next piece.
+func (b *batch) next() {
+	b.first, b.out = b.ready, b.out[:0]
 }
 
 // An entry is one record of a batch and where its parts end in the buffers.
@@ -29,7 +41,7 @@ type entry struct {
 }
 
 var batches = sync.Pool{New: func() any {
-	return &batch{records: make([]entry, 0, batchRecords), solved: make(chan struct{}, 1)}
+	return &batch{records: make([]entry, 0, batchRecords), solved: make(chan struct{}, 1), taken: make(chan struct{}, 1)}
 }}
 
 func (b *batch) reset() {
@@ -42,4 +54,5 @@ func (b *batch) reset() {
 	b.in, b.out = b.in[:0], b.out[:0]
 	clear(b.records)
 	b.records = b.records[:0]
+	b.first, b.ready = 0, 0
 }

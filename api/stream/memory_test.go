@@ -125,3 +125,30 @@ func (w *wholeLines) Next(dst []byte) ([]byte, int64, error) {
 
 func (w *wholeLines) Ready() bool     { return true }
 func (w *wholeLines) Position() int64 { return w.n + 1 }
+
+// Short records with long answers: the reader is far ahead before anybody knows how long they are.
+func TestMemoryIsFlatWhenAnswersAreLong(t *testing.T) {
+	long := bytes.Repeat([]byte("y"), 3<<20)
+	stop := heap()
+	p := newPump(bytes.NewReader([]byte(numbered(300/share))), io.Discard)
+	p.Workers = 2
+	p.Solver = longAnswers{long: long}
+	s, err := p.Run(t.Context())
+	grown := stop()
+	if err != nil || s.Lines != 300/share {
+		t.Fatalf("summary %+v, error %v", s, err)
+	}
+	t.Logf("heap grew by %.1f MiB at most", float64(grown)/(1<<20))
+	if grown > 96<<20 {
+		t.Errorf("the heap grew by %d bytes", grown)
+	}
+}
+
+type longAnswers struct {
+	echo
+	long []byte
+}
+
+func (l longAnswers) Solve(_ int, _ Record, dst []byte) ([]byte, bool) {
+	return append(dst, l.long...), false
+}

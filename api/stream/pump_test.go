@@ -189,3 +189,30 @@ func TestCancelInTheMiddleStopsEverything(t *testing.T) {
 		}
 	}
 }
+
+// Answers so long that batches pass to the writer in pieces keep their order, and problems and the end are counted right.
+func TestLongAnswersKeepTheOrder(t *testing.T) {
+	var out bytes.Buffer
+	p := newPump(strings.NewReader(numbered(400)), &out)
+	padding := strings.Repeat("z", 100<<10)
+	p.Solver = padded{padding: padding}
+	s, err := p.Run(t.Context())
+	if err != nil || s.Lines != 400 || s.Problems != 57 {
+		t.Fatalf("summary %+v, error %v", s, err)
+	}
+	a := check(t, out.Bytes(), s)
+	for i, line := range a.lines {
+		a.lines[i] = strings.TrimSuffix(line, padding)
+	}
+	numberedAnswers(t, a.lines)
+}
+
+type padded struct {
+	echo
+	padding string
+}
+
+func (s padded) Solve(worker int, record Record, dst []byte) ([]byte, bool) {
+	dst, _ = s.echo.Solve(worker, record, dst)
+	return append(dst, s.padding...), record.Line%7 == 0
+}

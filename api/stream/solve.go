@@ -15,39 +15,48 @@ func (r *run) solveAll(worker int) {
 	}
 }
 
-// solve answers the records of a batch, and reports whether the run goes on.
+// solve answers the records of a batch, and reports whether the run goes on. Where answers are long it hands them over in
+// pieces, and waits in between until the writer has come to them: what waits for its turn is bounded.
 func (r *run) solve(worker int, b *batch) bool {
 	var spent time.Duration
-	for i := 0; i < len(b.records); {
+	for b.ready < len(b.records) {
+		if b.ready > b.first && len(b.out) >= batchAnswers {
+			r.pace.note(b.ready-b.first, spent, len(b.out))
+			spent = 0
+			b.solved <- struct{}{}
+			select {
+			case <-b.taken:
+			case <-r.ctx.Done():
+				return false
+			}
+		}
 		if err := r.Slot.Acquire(r.ctx); err != nil {
 			r.abort(&BrokenError{Part: "slot", Err: err})
 			return false
 		}
-		held := time.Duration(0)
-		i, held = r.hold(worker, b, i)
-		spent += held
+		spent += r.hold(worker, b)
 		if r.ctx.Err() != nil {
 			return false
 		}
 	}
-	r.pace.note(len(b.records), spent, len(b.out))
+	r.pace.note(b.ready-b.first, spent, len(b.out))
 	return true
 }
 
-// hold answers records from i on for as long as the slot, which it gives back, may be held.
-func (r *run) hold(worker int, b *batch, i int) (next int, held time.Duration) {
+// hold answers records for as long as the slot, which it gives back, may be held, or until there is a piece to hand over.
+func (r *run) hold(worker int, b *batch) (held time.Duration) {
 	defer r.Slot.Release()
-	for start := time.Now(); i < len(b.records) && held < SlotHold; held = time.Since(start) {
+	for start := time.Now(); b.ready < len(b.records) && held < SlotHold && len(b.out) < batchAnswers; held = time.Since(start) {
 		from := 0
-		if i > 0 {
-			from = b.records[i-1].in
+		if b.ready > 0 {
+			from = b.records[b.ready-1].in
 		}
-		e := &b.records[i]
+		e := &b.records[b.ready]
 		r.answer(worker, b, e, Record{Line: e.line, Bytes: b.in[from:e.in:e.in]})
 		e.out = len(b.out)
-		i++
+		b.ready++
 	}
-	return i, held
+	return held
 }
 
 // answer appends one answer to the batch.

@@ -9,35 +9,27 @@ import (
 // the spool, and then the end.
 func (r *run) writeAll() {
 	f := framing{writer: r.Writer, hash: sha256.New()}
-	resumeAt := int64(0) // of the first batch that the spool had no room for
+	resumeAt := int64(0) // the first record whose answer the spool had no room for
 	for b := range r.ordered {
-		select {
-		case <-b.solved:
-		case <-r.ctx.Done():
-			return
-		}
-		// Before pending falls: the watch must not take the end of a long calculation for the client's idleness.
-		r.Activity.Sent()
-		if resumeAt == 0 && !r.waitForRoom(int64(len(b.out))) {
-			if r.ctx.Err() != nil {
+		for last := false; !last; {
+			select {
+			case <-b.solved:
+			case <-r.ctx.Done():
 				return
 			}
-			resumeAt = b.records[0].line
-			r.stop.ask(SpoolFull)
-		}
-		if resumeAt > 0 {
-			r.pending.Add(-1)
-			r.free <- b
-			continue
-		}
-		r.count(b)
-		f.batch(b)
-		if r.pending.Add(-1) == 0 {
-			f.flush()
+			// Before pending falls: the watch must not take the end of a long calculation for the client's idleness.
+			r.Activity.Sent()
+			if resumeAt == 0 && !r.waitForRoom(int64(len(b.out))) {
+				if r.ctx.Err() != nil {
+					return
+				}
+				resumeAt = b.records[b.first].line
+				r.stop.ask(SpoolFull)
+			}
+			last = b.last()
+			r.writePiece(&f, b, resumeAt > 0)
 		}
 		r.free <- b
-		f.hash.Write(f.out)
-		r.spool.append(f.out)
 	}
 	if r.ctx.Err() != nil {
 		return
@@ -52,6 +44,24 @@ func (r *run) writeAll() {
 		s.Complete = true
 	}
 	r.spool.end(f.end(s))
+}
+
+// writePiece puts one piece of a batch into the spool, or drops it, and gives the batch back to its worker unless it was the last.
+func (r *run) writePiece(f *framing, b *batch, drop bool) {
+	if !drop {
+		r.count(b)
+		f.piece(b)
+	}
+	if !b.last() {
+		b.next()
+		b.taken <- struct{}{}
+	} else if r.pending.Add(-1) == 0 && !drop {
+		f.flush()
+	}
+	if !drop {
+		f.hash.Write(f.out)
+		r.spool.append(f.out)
+	}
 }
 
 // waitForRoom reports whether the spool has room. Where it has no file, it waits until it has, or the run is broken off.
@@ -72,16 +82,16 @@ func (r *run) waitForRoom(size int64) bool {
 }
 
 func (r *run) count(b *batch) {
-	problems := 0
-	for i := range b.records {
-		if b.records[i].problem {
+	lines, problems := b.ready-b.first, 0
+	for i := range b.records[b.first:b.ready] {
+		if b.records[b.first+i].problem {
 			problems++
 		}
 	}
-	r.summary.Lines += int64(len(b.records))
+	r.summary.Lines += int64(lines)
 	r.summary.Problems += int64(problems)
 	if r.Answered != nil {
-		r.Answered(len(b.records), problems)
+		r.Answered(lines, problems)
 	}
 }
 
@@ -104,10 +114,10 @@ func (f *framing) begin() {
 	}
 }
 
-func (f *framing) batch(b *batch) {
+func (f *framing) piece(b *batch) {
 	f.begin()
 	from := 0
-	for i := range b.records {
+	for i := b.first; i < b.ready; i++ {
 		to := b.records[i].out
 		f.out = f.writer.Answer(f.out, b.out[from:to:to])
 		from = to
