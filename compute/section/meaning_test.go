@@ -138,3 +138,12 @@ func TestExtremeSizes(t *testing.T) {
 		}
 	})
 }
+
+// A depth beyond the greatest that a section is defined for counts as that.
+func TestDepthsBeyondTheHeight(t *testing.T) {
+	for _, s := range samples {
+		if h := s.section.Height(); !math.IsInf(h, 1) && s.section.At(1.5*h) != s.section.At(h) {
+			t.Errorf("%s: %+v, %+v", s.name, s.section.At(1.5*h), s.section.At(h))
+		}
+	}
+}

@@ -51,13 +51,13 @@ func NewTabulated(rows [][4]float64) (Section, error) {
 			continue
 		}
 		p := rows[i-1]
-		if r[0] <= p[0] {
+		if isSize(p[0]) && isSize(r[0]) && r[0] <= p[0] {
 			c.add(rowMember(i, 0), "not_rising", "Depths must rise from row to row.")
 		}
-		if r[1] <= p[1] {
+		if isArea(p[1]) && isArea(r[1]) && r[1] <= p[1] {
 			c.add(rowMember(i, 1), "not_rising", "Areas must rise from row to row.")
 		}
-		if r[2] < p[2] {
+		if isSize(p[2]) && isSize(r[2]) && r[2] < p[2] {
 			c.add(rowMember(i, 2), "falling_perimeter", "The wetted perimeter cannot fall as the depth rises.")
 		}
 		if sound && r[0] > p[0] && r[1] > p[1] && p[3] > 0 && !neverNegative(p[3], middleWidth(p, r), r[3]) {
