@@ -22,16 +22,17 @@ func main() {
 	if err != nil {
 		log.Fatal(err)
 	}
-	// A rectangle's critical depth is (q^2/g)^(1/3) for a discharge q per unit width (energy minimum of a rectangle, common practice);
-	// with q^2 = g it is 1 m.
-	const width, gravity = 2.0, 9.80665
+	// A rectangle's critical depth is (q^2/(g cos))^(1/3) for a discharge q per unit width on a bed with that cosine (the energy's minimum,
+	// common practice); with q^2 = g cos it is 1 m.
+	const width, gravity, slope = 2.0, 9.80665, 0.001
+	unitDischarge := math.Sqrt(gravity * math.Sqrt(1-slope*slope))
 	var section leat.Section
 	must(section.FromRectangularSection(leat.RectangularSection{Kind: leat.Rectangular, BottomWidth: width}))
 	var roughness leat.Roughness
 	must(roughness.FromManningRoughness(leat.ManningRoughness{Manning: 0.02}))
 	brief := leat.ComputeDepthsParamsDetail("brief")
 	answer, err := client.ComputeDepthsWithResponse(context.Background(), &leat.ComputeDepthsParams{Detail: &brief}, leat.DepthsRequest{
-		Section: section, Roughness: roughness, BedSlope: 0.001, Discharge: width * math.Sqrt(gravity),
+		Section: section, Roughness: roughness, BedSlope: slope, Discharge: width * unitDischarge,
 	})
 	must(err)
 	if answer.JSON200 == nil {

@@ -7,14 +7,16 @@ const base = process.argv[2];
 if (base === undefined) throw new Error("usage: node call.js ADDRESS");
 const client = createClient<paths>({ baseUrl: base });
 
-// A wide rectangle's critical depth is (q^2/g)^(1/3) for a discharge q per unit width (energy minimum of a rectangle, common practice);
-// with q^2 = g it is 1 m.
+// A rectangle's critical depth is (q^2/(g cos))^(1/3) for a discharge q per unit width on a bed with that cosine (the energy's minimum, common
+// practice); with q^2 = g cos it is 1 m.
 const width = 2;
 const gravity = 9.80665;
+const bed_slope = 0.001;
+const unitDischarge = Math.sqrt(gravity * Math.sqrt(1 - bed_slope * bed_slope));
 const section: components["schemas"]["Section"] = { kind: "rectangular", bottom_width: width };
 const { data, error } = await client.POST("/v1/depths", {
   params: { query: { detail: "brief" } },
-  body: { id: "OS-D-0001", section, roughness: { manning: 0.02 }, bed_slope: 0.001, discharge: width * Math.sqrt(gravity) },
+  body: { id: "OS-D-0001", section, roughness: { manning: 0.02 }, bed_slope, discharge: width * unitDischarge },
 });
 if (error !== undefined) throw new Error(`${error.title}: ${error.detail}`);
 const critical: number | null = data.critical_depth;
