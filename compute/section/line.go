@@ -37,17 +37,17 @@ func (l *line) from(slope float64) *line {
 	return l.add(offset, level, slope)
 }
 
-// flat appends a level stretch.
-func (l *line) flat(width float64) *line {
-	if width == 0 {
+// flat appends a level stretch to an offset.
+func (l *line) flat(offset float64) *line {
+	if offset == l.offset {
 		return l
 	}
-	return l.add(l.offset+width, l.level, 0)
+	return l.add(offset, l.level, 0)
 }
 
-// side appends a side that reaches a level after running a width.
-func (l *line) side(width, level, slope float64) *line {
-	return l.add(l.offset+width, solve.Pair{High: level}, slope)
+// side appends a side to a point.
+func (l *line) side(offset, level, slope float64) *line {
+	return l.add(offset, solve.Pair{High: level}, slope)
 }
 
 // onward appends the side that goes up without end.

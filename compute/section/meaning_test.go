@@ -147,3 +147,22 @@ func TestDepthsBeyondTheHeight(t *testing.T) {
 		}
 	}
 }
+
+// A wall that stands at an offset belongs to the zone whose water wets it, for widths whose sums round.
+func TestWallsAtOffsets(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		b, h, l := size(t, "width"), size(t, "height"), size(t, "bench")
+		parts, err := must(NewTwoStage(TwoStage{b, 0, 0, h, l, 3 * l, 1})).(Zoned).Part([]float64{-b / 2, b / 2})
+		if err != nil {
+			t.Fatal(err)
+		}
+		if g := parts[1].At(2 * h); !agree(g.Perimeter, b+2*h, 1e-15) || !agree(g.Area, 2*b*h, 1e-15) {
+			t.Fatalf("middle: %+v", g)
+		}
+		for i, bench := range []float64{l, 0, 3 * l} {
+			if g := parts[i].At(2 * h); i != 1 && !agree(g.Perimeter, bench+h*math.Sqrt2, 1e-14) {
+				t.Fatalf("part %d: %+v", i, g)
+			}
+		}
+	})
+}

@@ -32,14 +32,16 @@ func NewTwoStage(t TwoStage) (Section, error) {
 	if err := c.err(); err != nil {
 		return nil, err
 	}
-	left, right := t.LeftSideSlope*t.BenchHeight, t.RightSideSlope*t.BenchHeight
-	line := newLine(-(0.5*t.BottomWidth+left+t.LeftBenchWidth), t.BenchHeight).
+	// Offsets are reckoned from the middle outwards, so that a wall at half the bottom width stands there to the last digit.
+	half, height := 0.5*t.BottomWidth, t.BenchHeight
+	left, right := half+t.LeftSideSlope*height, half+t.RightSideSlope*height
+	line := newLine(-(left+t.LeftBenchWidth), height).
 		from(t.UpperSideSlope).
-		flat(t.LeftBenchWidth).
-		side(left, 0, t.LeftSideSlope).
-		flat(t.BottomWidth).
-		side(right, t.BenchHeight, t.RightSideSlope).
-		flat(t.RightBenchWidth).
+		flat(-left).
+		side(-half, 0, t.LeftSideSlope).
+		flat(half).
+		side(right, height, t.RightSideSlope).
+		flat(right + t.RightBenchWidth).
 		onward(t.UpperSideSlope)
 	return &Benched{compile(line), t.BottomWidth, line}, nil
 }
