@@ -57,7 +57,8 @@ type Form uint8
 const (
 	// Irregular promises nothing beyond smooth pieces.
 	Irregular Form = iota
-	// Banded promises that on every piece the area is a quadratic and the perimeter a linear function of depth.
+	// Banded promises that on every piece the area is a quadratic and the perimeter a linear function of depth. Between pieces width and
+	// perimeter may jump upwards; the width falls with depth only in a closed section (a box with haunches).
 	Banded
 	// Rising promises that the hydraulic radius and A^3/T rise continuously with depth without end, so that there is exactly
 	// one normal and one critical depth; derivatives may break at Breaks() (rectangle, trapezoid, triangle, parabola, u shape).
@@ -80,7 +81,8 @@ type Surveyed interface {
 }
 
 // Zoned is a Section that can be parted at offsets (m, rising; left negative for two_stage) into sections of its own,
-// each measured from the lowest point of the whole: a zone may be dry up to some depth, where its Geometry is zero.
+// each measured from the lowest point of the whole: a zone may be dry up to some depth, where its Geometry is zero; that depth
+// is then the first of its Breaks.
 // The internal lines between zones add no perimeter. A wall that stands at an offset belongs to the zone whose water wets it.
 type Zoned interface {
 	Section
