@@ -160,7 +160,7 @@ func (p *plan) find(segments []string) (*field, int) {
 		if p == nil {
 			return nil, 0
 		}
-		i, known := p.index[s]
+		i, known := find(p.index, s)
 		if !known {
 			return nil, 0
 		}

@@ -13,7 +13,7 @@ func TestBoundsAreTheValidators(t *testing.T) {
 	probes := 0
 	for typ, p := range plans {
 		for _, sf := range reflect.VisibleFields(typ) {
-			i, member := p.index[sf.Tag.Get("json")]
+			i, member := find(p.index, sf.Tag.Get("json"))
 			if !member || sf.Anonymous {
 				continue
 			}
@@ -79,7 +79,7 @@ func probing(b *bounds) []float64 {
 func TestListLengthsAreTheValidators(t *testing.T) {
 	for typ, p := range plans {
 		for _, sf := range reflect.VisibleFields(typ) {
-			i, member := p.index[sf.Tag.Get("json")]
+			i, member := find(p.index, sf.Tag.Get("json"))
 			if !member || sf.Anonymous {
 				continue
 			}

@@ -14,11 +14,13 @@ type decoding struct {
 	walk    walk
 }
 
-var decodings = sync.Pool{New: func() any {
+var decodings = sync.Pool{New: func() any { return newDecoding() }}
+
+func newDecoding() *decoding {
 	d := new(decoding)
 	d.walk.decoder = jsontext.NewDecoder(&d.walk.buffer)
 	return d
-}}
+}
 
 // Decode reads one request object into a struct and checks it: I-JSON first, then every rule that the types' tags and
 // their own methods say. units is the system of the call, in force unless the request names one; afterwards all values

@@ -142,8 +142,7 @@ func checkAccepted(t *testing.T, data []byte, system System, limits *Limits, int
 		t.Fatalf("%T %q: accepted, but the validator finds %+v", into, data, faults)
 	}
 	again := reflect.New(reflect.TypeOf(into).Elem())
-	var d decoding
-	d.walk.decoder = jsontext.NewDecoder(&d.walk.buffer)
+	d := newDecoding()
 	d.walk.start(data, into.common().System, limits, true)
 	d.walk.object(plans[again.Elem().Type()], again.Elem())
 	if d.walk.failed || len(d.walk.faults) > 0 {

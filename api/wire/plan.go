@@ -16,12 +16,13 @@ import (
 //   - limit: the limit of the service that bounds a whole number
 type plan struct {
 	fields   []field
-	index    map[string]int // by name
-	required uint64         // fields that must be present
-	given    []int          // index of the struct's field Given, if it has one
-	variants map[string]variant
-	ruled    bool     // the struct has rules of its own
-	names    []string // of all fields, for suggestions
+	index    nameIndex // of fields by name
+	required uint64    // fields that must be present
+	given    []int     // index of the struct's field Given, if it has one
+	variants []variant
+	variant  nameIndex // of variants by name
+	ruled    bool      // the struct has rules of its own
+	names    []string  // of all fields, for suggestions
 }
 
 // A variant says, in bits of fields, what one kind or law may and must have.
@@ -81,7 +82,7 @@ func compilePlan(t reflect.Type, known map[reflect.Type]*plan) *plan {
 	if p, ok := known[t]; ok {
 		return p
 	}
-	p := &plan{index: map[string]int{}}
+	p := &plan{}
 	known[t] = p
 	for _, sf := range reflect.VisibleFields(t) {
 		name := sf.Tag.Get("json")
@@ -99,9 +100,8 @@ func compilePlan(t reflect.Type, known map[reflect.Type]*plan) *plan {
 		if p.fields[i].variants != nil {
 			continue
 		}
-		for name, v := range p.variants {
-			v.allowed |= 1 << i
-			p.variants[name] = v
+		for v := range p.variants {
+			p.variants[v].allowed |= 1 << i
 		}
 	}
 	p.ruled = reflect.PointerTo(t).Implements(reflect.TypeFor[ruled]())
@@ -138,18 +138,19 @@ func (p *plan) add(t reflect.Type, sf reflect.StructField, name string, known ma
 	}
 	for _, v := range strings.Fields(sf.Tag.Get("in")) {
 		v, optional := strings.CutSuffix(v, "?")
-		if p.variants == nil {
-			p.variants = map[string]variant{}
+		at, known := find(p.variant, v)
+		if !known {
+			at = len(p.variants)
+			p.variant.add(v, at)
+			p.variants = append(p.variants, variant{})
 		}
-		have := p.variants[v]
-		have.allowed |= 1 << len(p.fields)
+		p.variants[at].allowed |= 1 << len(p.fields)
 		if !optional {
-			have.required |= 1 << len(p.fields)
+			p.variants[at].required |= 1 << len(p.fields)
 		}
-		p.variants[v] = have
 		f.variants = append(f.variants, v)
 	}
-	p.index[name] = len(p.fields)
+	p.index.add(name, len(p.fields))
 	p.names = append(p.names, name)
 	p.fields = append(p.fields, f)
 }

@@ -163,8 +163,9 @@ func variantText(variant string) string {
 
 func foreignText(p *plan, f *field, chosen string) string {
 	var own []string
+	at, _ := find(p.variant, chosen)
 	for i := range p.fields {
-		if p.fields[i].variants != nil && p.variants[chosen].allowed&(1<<i) != 0 {
+		if p.fields[i].variants != nil && p.variants[at].allowed&(1<<i) != 0 {
 			own = append(own, p.fields[i].name)
 		}
 	}

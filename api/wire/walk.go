@@ -40,10 +40,8 @@ func (w *walk) start(data []byte, system System, limits *Limits, collect bool) {
 	w.failed, w.dead, w.collect, w.faults, w.at, w.size = false, false, collect, nil, "", false
 }
 
-// release forgets the data, so that a walk at rest keeps no body alive.
+// release forgets what belongs to the call. The decoder goes on knowing the body until its next one, or until the pool lets it go.
 func (w *walk) release() {
-	w.buffer = bytes.Buffer{}
-	w.decoder.Reset(&w.buffer, readOptions)
 	w.limits, w.faults = nil, nil
 }
 
@@ -135,7 +133,7 @@ func (w *walk) object(p *plan, v reflect.Value) {
 			break
 		}
 		name := w.memberName()
-		i, known := p.index[string(name)]
+		i, known := find(p.index, name)
 		null := w.decoder.PeekKind() == 'n'
 		switch {
 		case null:
@@ -182,7 +180,8 @@ func (w *walk) complete(p *plan, v reflect.Value, present uint64) {
 	}
 	if p.variants != nil {
 		name := v.Addr().Interface().(varied).variant()
-		if chosen, known := p.variants[name]; known {
+		if at, known := find(p.variant, name); known {
+			chosen := p.variants[at]
 			if foreign := present &^ chosen.allowed; foreign != 0 {
 				w.foreign(p, foreign, name)
 			}
