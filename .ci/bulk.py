@@ -107,11 +107,13 @@ def full_duplex(base, query, body):
     connection.putheader("Content-Type", TYPE)
     connection.putheader("Transfer-Encoding", "chunked")
     connection.endheaders()
+    # Not connection.send: an answer with Connection: close has http.client forget its socket and open another one.
+    socket = connection.sock
 
     def send():
         for block in body:
-            connection.send(b"%x\r\n%s\r\n" % (len(block), block))
-        connection.send(b"0\r\n\r\n")
+            socket.sendall(b"%x\r\n%s\r\n" % (len(block), block))
+        socket.sendall(b"0\r\n\r\n")
 
     sender = threading.Thread(target=send, daemon=True)
     sender.start()
