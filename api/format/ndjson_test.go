@@ -24,27 +24,32 @@ import (
 func TestMain(m *testing.M) { goleak.VerifyTestMain(m) }
 
 // double stands in for an operation: {"id":…,"value":x} gives {"double":2x}, a negative value is a problem, 13 panics.
-var double = &operation.Operation{Name: "double", Answer: func(dst, body []byte, options operation.Options) ([]byte, []byte, *wire.Problem) {
+var double = &operation.Operation{Name: "double", Solve: func(body []byte, options operation.Options) (operation.Solved, *wire.Problem) {
 	var in struct {
 		ID    json.RawMessage
 		Value float64
 	}
 	if options.Inside {
-		return dst, nil, wire.Internal("the id must not be inside")
+		return operation.Solved{}, wire.Internal("the id must not be inside")
 	}
 	if err := json.Unmarshal(body, &in); err != nil {
-		return dst, nil, wire.MalformedJSON(wire.Fault{Code: "syntax_error", Detail: "This is no JSON."})
+		return operation.Solved{}, wire.MalformedJSON(wire.Fault{Code: "syntax_error", Detail: "This is no JSON."})
 	}
 	switch {
 	case in.Value < 0:
-		return dst, in.ID, wire.InvalidRequest(wire.Fault{Pointer: "/value", Code: "out_of_range", Detail: `It is "negative".`})
+		return operation.Solved{ID: wire.ID(in.ID)}, wire.InvalidRequest(wire.Fault{Pointer: "/value", Code: "out_of_range", Detail: `It is "negative".`})
 	case in.Value == 13:
 		panic("thirteen")
 	}
-	dst = append(dst, `{"double":`...)
-	dst = strconv.AppendFloat(dst, 2*in.Value, 'g', -1, 64)
-	return append(dst, '}'), in.ID, nil
+	return operation.Solved{Answer: fixedAnswer(`{"double":` + strconv.FormatFloat(2*in.Value, 'g', -1, 64) + `}`), ID: wire.ID(in.ID)}, nil
 }}
+
+// fixedAnswer is the text of an answer.
+type fixedAnswer string
+
+func (a fixedAnswer) AppendJSON(dst []byte, _ wire.System, _ wire.ID) []byte {
+	return append(dst, a...)
+}
 
 func pump(t testing.TB, f Format, body io.Reader) (string, stream.Summary) {
 	t.Helper()
@@ -208,8 +213,8 @@ func TestRefusalOfUnknownCauseIsOurFault(t *testing.T) {
 }
 
 func TestSolvingALineAllocatesNothing(t *testing.T) {
-	plain := &operation.Operation{Name: "plain", Answer: func(dst, body []byte, _ operation.Options) ([]byte, []byte, *wire.Problem) {
-		return append(dst, `{"answer":1}`...), body[6:7], nil
+	plain := &operation.Operation{Name: "plain", Solve: func(body []byte, _ operation.Options) (operation.Solved, *wire.Problem) {
+		return operation.Solved{Answer: fixedAnswer(`{"answer":1}`), ID: body[6:7]}, nil
 	}}
 	f := NewNDJSON(plain, operation.Options{}, 100)
 	record := stream.Record{Line: 7, Bytes: []byte(`{"id":5}`)}

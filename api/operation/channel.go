@@ -13,6 +13,7 @@ import (
 // inputs are the members from which every operation builds its channel.
 type inputs struct {
 	common    *wire.Common
+	barrels   wire.Whole
 	section   *wire.Section
 	roughness *wire.Roughness
 	bedSlope  wire.Number
@@ -23,7 +24,7 @@ func (in inputs) channel() (flow.Channel, *wire.Problem) {
 	c := flow.Channel{
 		Slope:               in.bedSlope.Or(0),
 		Gravity:             in.common.Gravity.Or(compute.StandardGravity),
-		Barrels:             in.common.Barrels.Or(1),
+		Barrels:             in.barrels.Or(1),
 		EnergyCoefficient:   in.common.EnergyCoefficient.Or(0),
 		MomentumCoefficient: in.common.MomentumCoefficient.Or(0),
 		Bank:                in.section.BankHeight.Or(0),

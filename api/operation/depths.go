@@ -8,15 +8,15 @@ import (
 )
 
 // Depths is the operation depths: the characteristic depths of one section.
-var Depths = Operation{Name: "depths", Answer: func(dst, body []byte, options Options) ([]byte, []byte, *wire.Problem) {
+var Depths = Operation{Name: "depths", Form: (*wire.DepthsAnswer)(nil), Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 	var request wire.DepthsRequest
-	return run(dst, body, options, &request, &request.ID, &request.System, func() (answer, *wire.Problem) {
+	return run(body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
 		return solveDepths(&request, options.Brief)
 	})
 }}
 
-func solveDepths(r *wire.DepthsRequest, brief bool) (answer, *wire.Problem) {
-	c, problem := inputs{&r.Common, &r.Section, &r.Roughness, r.BedSlope}.channel()
+func solveDepths(r *wire.DepthsRequest, brief bool) (wire.Answer, *wire.Problem) {
+	c, problem := inputs{&r.Common, r.Barrels, &r.Section, &r.Roughness, r.BedSlope}.channel()
 	if problem != nil {
 		return nil, problem
 	}

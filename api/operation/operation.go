@@ -15,39 +15,56 @@ type Options struct {
 type Operation struct {
 	// Name is the last part of the route: "depths".
 	Name string
-	// Answer decodes one request object, checks it, solves it and appends the JSON answer object to dst. On failure it returns dst
-	// unchanged and the problem, without Instance. id is the caller's id as its JSON literal, nil where none was given
-	// or none could be read; it is returned with a problem too, where the body could be parsed that far. It may be a part of body.
-	Answer func(dst, body []byte, options Options) (answer []byte, id []byte, problem *wire.Problem)
+	// Form is an answer without content of the type that the operation gives: its methods say in which forms beside JSON answers can be told.
+	Form wire.Answer
+	// Solve decodes one request object, checks it and solves it. With a problem, which is without Instance, what it returns holds
+	// the ID alone, where the body could be read that far.
+	Solve func(body []byte, options Options) (Solved, *wire.Problem)
+}
+
+// Answer solves one request object and appends the JSON answer object to dst. On failure it returns dst unchanged and the problem.
+// id is the caller's id as its JSON literal, nil where none was given or none could be read; it may be a part of body.
+func (o *Operation) Answer(dst, body []byte, options Options) (answer []byte, id []byte, problem *wire.Problem) {
+	solved, problem := o.Solve(body, options)
+	if problem != nil {
+		return dst, solved.ID, problem
+	}
+	return solved.AppendJSON(dst, options.Inside), solved.ID, nil
+}
+
+// Solved is the answer to one request, with what its forms need beside it.
+type Solved struct {
+	Answer wire.Answer
+	Units  wire.System // of the request, in which the answer is told
+	ID     wire.ID     // of the request; a part of its body
+}
+
+// AppendJSON appends the answer object, with the id inside it or without.
+func (s *Solved) AppendJSON(dst []byte, inside bool) []byte {
+	if !inside {
+		return s.Answer.AppendJSON(dst, s.Units, nil)
+	}
+	return s.Answer.AppendJSON(dst, s.Units, s.ID)
 }
 
 // All returns the operations in the order of the contract.
 func All() []*Operation { return []*Operation{&Section, &Depths, &Rating} }
 
-// answer is what an operation makes of a request.
-type answer interface {
-	AppendJSON(dst []byte, units wire.System, id wire.ID) []byte
-}
-
 // defaultLimits hold where a caller sets none.
 var defaultLimits = wire.DefaultLimits()
 
-// run is the path that every operation takes: decode into request, solve it, append what came of it.
-func run(dst, body []byte, options Options, request wire.Request, id *wire.ID, units *wire.System, solve func() (answer, *wire.Problem)) ([]byte, []byte, *wire.Problem) {
+// run is the path that every operation takes: decode into request, solve it.
+func run(body []byte, options Options, request wire.Request, common *wire.Common, solve func() (wire.Answer, *wire.Problem)) (Solved, *wire.Problem) {
 	limits := options.Limits
 	if limits == nil {
 		limits = &defaultLimits
 	}
 	if problem := wire.Decode(body, options.Units, limits, request); problem != nil {
-		return dst, *id, problem
+		return Solved{ID: common.ID}, problem
 	}
-	result, problem := solve()
+	answer, problem := solve()
 	if problem != nil {
-		return dst, *id, problem
+		return Solved{ID: common.ID}, problem
 	}
-	inside := *id
-	if !options.Inside {
-		inside = nil
-	}
-	return result.AppendJSON(dst, *units, inside), *id, nil
+	return Solved{answer, common.System, common.ID}, nil
 }

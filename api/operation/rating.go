@@ -9,15 +9,15 @@ import (
 )
 
 // Rating is the operation rating: a depth-discharge table.
-var Rating = Operation{Name: "rating", Answer: func(dst, body []byte, options Options) ([]byte, []byte, *wire.Problem) {
+var Rating = Operation{Name: "rating", Form: (*wire.RatingAnswer)(nil), Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 	var request wire.RatingRequest
-	return run(dst, body, options, &request, &request.ID, &request.System, func() (answer, *wire.Problem) {
+	return run(body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
 		return solveRating(&request)
 	})
 }}
 
-func solveRating(r *wire.RatingRequest) (answer, *wire.Problem) {
-	c, problem := inputs{&r.Common, &r.Section, &r.Roughness, r.BedSlope}.channel()
+func solveRating(r *wire.RatingRequest) (wire.Answer, *wire.Problem) {
+	c, problem := inputs{&r.Common, r.Barrels, &r.Section, &r.Roughness, r.BedSlope}.channel()
 	if problem != nil {
 		return nil, problem
 	}
@@ -28,7 +28,7 @@ func solveRating(r *wire.RatingRequest) (answer, *wire.Problem) {
 }
 
 // rateDepths gives the discharge that flows uniformly, or critically, at evenly spaced depths.
-func rateDepths(c *flow.Channel, r *wire.RatingRequest) (answer, *wire.Problem) {
+func rateDepths(c *flow.Channel, r *wire.RatingRequest) (wire.Answer, *wire.Problem) {
 	if fault, above := aboveSection(c, r.ToDepth.Value, "/to_depth"); above {
 		return nil, wire.InvalidRequest(fault)
 	}
@@ -73,7 +73,7 @@ func withoutFlow(s wire.State) wire.State {
 }
 
 // rateDischarges gives the lowest normal, or critical, depth of each discharge.
-func rateDischarges(c *flow.Channel, r *wire.RatingRequest) (answer, *wire.Problem) {
+func rateDischarges(c *flow.Channel, r *wire.RatingRequest) (wire.Answer, *wire.Problem) {
 	var w warnings
 	var room [8]float64
 	m := members(c, true) | wire.WithDischarge

@@ -7,15 +7,15 @@ import (
 )
 
 // Section is the operation section: geometry and hydraulics at given depths.
-var Section = Operation{Name: "section", Answer: func(dst, body []byte, options Options) ([]byte, []byte, *wire.Problem) {
+var Section = Operation{Name: "section", Form: (*wire.SectionAnswer)(nil), Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 	var request wire.SectionRequest
-	return run(dst, body, options, &request, &request.ID, &request.System, func() (answer, *wire.Problem) {
+	return run(body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
 		return solveSection(&request)
 	})
 }}
 
-func solveSection(r *wire.SectionRequest) (answer, *wire.Problem) {
-	c, problem := inputs{&r.Common, &r.Section, &r.Roughness, r.BedSlope}.channel()
+func solveSection(r *wire.SectionRequest) (wire.Answer, *wire.Problem) {
+	c, problem := inputs{&r.Common, r.Barrels, &r.Section, &r.Roughness, r.BedSlope}.channel()
 	if problem != nil {
 		return nil, problem
 	}

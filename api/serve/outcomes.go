@@ -10,19 +10,18 @@ func (s *Server) counted(op *operation.Operation) *operation.Operation {
 	result := s.metrics.solves.WithLabelValues(op.Name, outcomeResult)
 	refused := s.metrics.solves.WithLabelValues(op.Name, outcomeProblem)
 	panicked := s.metrics.solves.WithLabelValues(op.Name, outcomePanic)
-	return &operation.Operation{
-		Name: op.Name,
-		Answer: func(dst, body []byte, options operation.Options) ([]byte, []byte, *wire.Problem) {
-			counter := panicked
-			defer func() { counter.Inc() }()
-			answer, id, problem := op.Answer(dst, body, options)
-			counter = result
-			if problem != nil {
-				counter = refused
-			}
-			return answer, id, problem
-		},
+	counting := *op
+	counting.Solve = func(body []byte, options operation.Options) (operation.Solved, *wire.Problem) {
+		counter := panicked
+		defer func() { counter.Inc() }()
+		solved, problem := op.Solve(body, options)
+		counter = result
+		if problem != nil {
+			counter = refused
+		}
+		return solved, problem
 	}
+	return &counting
 }
 
 // lineCounter returns what counts the answered lines of an operation's streams.

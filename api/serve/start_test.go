@@ -22,14 +22,14 @@ import (
 
 // fakeOperation stands in for the operations of the contract where a test is about the edge alone. It does what the body says.
 func fakeOperation(name string) *operation.Operation {
-	return &operation.Operation{Name: name, Answer: func(dst, body []byte, options operation.Options) ([]byte, []byte, *wire.Problem) {
+	return &operation.Operation{Name: name, Solve: func(body []byte, options operation.Options) (operation.Solved, *wire.Problem) {
 		var request struct {
 			ID    string `json:"id"`
 			Act   string `json:"act"`
 			Bytes int    `json:"bytes"`
 		}
 		if err := json.Unmarshal(body, &request); err != nil {
-			return dst, nil, wire.MalformedJSON(wire.Fault{Code: "syntax", Detail: "This is no JSON."})
+			return operation.Solved{}, wire.MalformedJSON(wire.Fault{Code: "syntax", Detail: "This is no JSON."})
 		}
 		var id []byte
 		if request.ID != "" {
@@ -41,13 +41,13 @@ func fakeOperation(name string) *operation.Operation {
 		case "sleep":
 			time.Sleep(300 * time.Millisecond)
 		case "refuse":
-			return dst, id, wire.InvalidRequest(wire.Fault{Pointer: "/act", Code: "refused", Detail: "This was asked for."})
+			return operation.Solved{ID: id}, wire.InvalidRequest(wire.Fault{Pointer: "/act", Code: "refused", Detail: "This was asked for."})
 		}
 		units := "si"
 		if options.Units == wire.US {
 			units = "us"
 		}
-		dst = append(dst, `{"units":"`+units+`","brief":`...)
+		dst := []byte(`{"units":"` + units + `","brief":`)
 		if options.Brief {
 			dst = append(dst, `true`...)
 		} else {
@@ -55,9 +55,14 @@ func fakeOperation(name string) *operation.Operation {
 		}
 		dst = append(dst, `,"pad":"`...)
 		dst = append(dst, strings.Repeat("x", request.Bytes)...)
-		return append(dst, `"}`...), id, nil
+		return operation.Solved{Answer: fakeAnswer(append(dst, `"}`...)), ID: id}, nil
 	}}
 }
+
+// fakeAnswer is the text of an answer.
+type fakeAnswer []byte
+
+func (a fakeAnswer) AppendJSON(dst []byte, _ wire.System, _ wire.ID) []byte { return append(dst, a...) }
 
 // A running server and what a test wants to know of it.
 type running struct {

@@ -11,8 +11,6 @@ type Common struct {
 	// are used a little below it where they also correct the pressure of curved flow; hence the wide bounds.
 	EnergyCoefficient   Number `json:"energy_coefficient" validate:"omitempty,gte=0.1,lte=100"`
 	MomentumCoefficient Number `json:"momentum_coefficient" validate:"omitempty,gte=0.1,lte=100"`
-	// Barrels is the number of equal sections side by side.
-	Barrels Whole `json:"barrels" validate:"omitempty,gte=1,lte=100"`
 
 	// System is the system of units in force: that of Units, or of the call where the request names none. Decode sets it.
 	System System `json:"-"`
@@ -22,3 +20,9 @@ func (c *Common) common() *Common { return c }
 
 // Request is what Decode fills: a pointer to a struct that embeds Common.
 type Request interface{ common() *Common }
+
+// Barrelled holds the member that stands beside every section.
+type Barrelled struct {
+	// Barrels is the number of equal sections side by side.
+	Barrels Whole `json:"barrels" validate:"omitempty,gte=1,lte=100"`
+}

@@ -37,7 +37,8 @@ func TestDecode(t *testing.T) {
 		}},
 		{"depths", ` { "barrels" : 3.0, "id":1.50e1,"gravity":9.8,"energy_coefficient":1.1,"momentum_coefficient":1.05,"nonsense":null,"depth":null,
 			"section":{"kind":"rectangular","bottom_width":1,"diameter":null},"roughness":{"manning":0.025,"zones":null,"combine":null},"bed_slope":-0,"discharge":1}`, &DepthsRequest{
-			Common: Common{ID: ID(`1.50e1`), Barrels: Whole{3, true}, Gravity: given(9.8), EnergyCoefficient: given(1.1),
+			Barrelled: Barrelled{Whole{3, true}},
+			Common: Common{ID: ID(`1.50e1`), Gravity: given(9.8), EnergyCoefficient: given(1.1),
 				MomentumCoefficient: given(1.05)},
 			Section:   Section{Given: true, Kind: Rectangular, BottomWidth: given(1)},
 			Roughness: manning, BedSlope: given(0), Discharge: given(1),

@@ -3,6 +3,7 @@ package wire
 // DepthsRequest asks for the characteristic depths of one section.
 type DepthsRequest struct {
 	Common
+	Barrelled
 	Section   Section   `json:"section" validate:"required"`
 	Roughness Roughness `json:"roughness" validate:"required"`
 	BedSlope  Number    `json:"bed_slope" validate:"required,gt=-1,lt=1,floor=1e-15"`

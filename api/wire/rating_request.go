@@ -12,6 +12,7 @@ const (
 // RatingRequest asks for a depth-discharge table: for Count depths from FromDepth to ToDepth, or for Discharges.
 type RatingRequest struct {
 	Common
+	Barrelled
 	Section    Section    `json:"section" validate:"required"`
 	Roughness  Roughness  `json:"roughness" validate:"required"`
 	BedSlope   Number     `json:"bed_slope" validate:"required,gt=-1,lt=1,floor=1e-15"`

@@ -3,6 +3,7 @@ package wire
 // SectionRequest asks for geometry and hydraulics at given depths. Exactly one of Depth and Depths is given.
 type SectionRequest struct {
 	Common
+	Barrelled
 	Section   Section   `json:"section" validate:"required"`
 	Depth     Number    `json:"depth" quantity:"length" validate:"omitempty,gte=1e-18,lte=1e9"`
 	Depths    []float64 `json:"depths" quantity:"length" validate:"omitempty,min=1,dive,gte=1e-18,lte=1e9"`
