@@ -1,7 +1,7 @@
 #!/usr/bin/python3
 """Writes section.json beside it: the geometry of every kind of cross-section to 40 digits.
 
-Usage: python3 section.py > section.json        (needs mpmath; takes about two minutes)
+Usage: python3 section.py > section.json        (needs mpmath; takes about four minutes)
 
 Sizes and depths are float64 numbers, taken exactly as they are. Values come by routes that share no closed form with the
 program: curved outlines are integrated numerically (tanh-sinh quadrature with 100 digits, of the width for the area, of
@@ -101,7 +101,8 @@ def horseshoe_pieces(height):
 def ellipse_pieces(width, height):
     a, b = width / 2, height / 2
     _, _, half, slope = circle_piece(mpf(0), height, b, b)
-    return [(mpf(0), height, lambda y: a / b * half(y), lambda y: a / b * slope(y))]
+    # In two pieces, since the arc element of a flat ellipse has a sharp bend at its widest level.
+    return [(lo, hi, lambda y: a / b * half(y), lambda y: a / b * slope(y)) for lo, hi in ((mpf(0), b), (b, height))]
 
 
 class Straight:
@@ -327,14 +328,14 @@ def cases():
         yield dict(kind="u_shaped", width=w), open_depths(w)
     for d in (1.0, 0.3, 2.7e-3, 7.3):
         yield dict(kind="circular", diameter=d), closed_depths(d)
-    for w, h in ((2.0, 1.0), (0.9, 1.4), (1.0, 1.0000001), (50.0, 0.2), (0.05, 3.0)):
+    for w, h in ((2.0, 1.0), (0.9, 1.4), (1.0, 1.0000001), (50.0, 0.2), (0.05, 3.0), (1e6, 1.0), (2e-4, 40.0)):
         yield dict(kind="elliptical", width=w, height=h), closed_depths(h)
     for h, i in ((1.5, False), (0.9, True), (3.1, True), (0.42, False)):
         near = [h / 15 * (1 - 1e-7), h / 15 * (1 + 1e-7), h * (2 / 3 + 1e-7), h * (14 / 15 + 1e-7), h * (1 / 3 + 1e-7)]
         yield dict(kind="egg", height=h, inverted=i), sorted(closed_depths(h) + near)
     for h in (2.0, 3.3):
         yield dict(kind="horseshoe", height=h), sorted(closed_depths(h) + [h * 0.0885623, h * 0.0885621, h * 0.5000001])
-    for w, h, f in ((2.0, 1.5, None), (1.8, 1.2, 0.2), (1.0, 0.7, 0.5), (3.0, 1.0, 1.0)):
+    for w, h, f in ((2.0, 1.5, None), (1.8, 1.2, 0.2), (1.0, 0.7, 0.5), (3.0, 1.0, 1.0), (2.0, 1.5, 1.0)):
         s = dict(kind="box", width=w, height=h)
         if f is not None:
             s["haunch"] = f
@@ -351,6 +352,9 @@ def cases():
                                         [0.0, 1229.1], [0.0, 1233.0], [4.0, 1233.0], [4.0, 1230.7], [8.8, 1230.9], [9.0, 1233.8]]), open_depths(2.2)
     # ends below the highest point, a side that is nearly level, a slit
     yield dict(kind="surveyed", points=[[0.0, 1.0], [1.0, 0.0], [1.001, -0.5], [1.002, 0.0], [2.0, 2.0], [50.0, 2.0000000000000004], [51.0, 1.2], [52.0, 1.9]]), open_depths(1.3)
+    # levels and offsets that differ by a millionth of a millimetre
+    yield dict(kind="surveyed", points=[[1e6, 812.000000001], [1000000.5, 812.0], [1000001.0, 812.000000002], [1000001.5, 812.0], [1000001.5000000001, 812.5],
+                                        [1000003.0, 812.5000000001], [1000004.0, 813.0]]), open_depths(0.7)
     random_points = []
     x = -30.0
     for i in range(60):
