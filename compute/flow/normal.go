@@ -20,6 +20,9 @@ func (c *Channel) Normal(discharge float64, dst []float64) (depths []float64, ab
 	}
 	k := discharge / c.barrels() / math.Sqrt(c.Slope)
 	if hi, ok := c.onlyBelow(k); ok {
+		if c.Law.Form() == friction.Whole && !(c.conveyance(immense) > 0) {
+			return dst, NoConveyance // the roughness outgrows the greatest hydraulic radius
+		}
 		depth, ok := c.normalBetween(k, Branch{Hi: hi, Rising: true})
 		if !ok {
 			return dst, Unsolved
@@ -28,6 +31,9 @@ func (c *Channel) Normal(discharge float64, dst []float64) (depths []float64, ab
 	}
 	return c.search(dst, k)
 }
+
+// immense is a depth in m at which the hydraulic radius has reached its limit.
+const immense = 1e12
 
 // onlyBelow returns a depth below which a conveyance k is reached exactly once and above which it is not reached, and whether one is known without a search:
 // where the conveyance rises without end, and in an arch that carries more when full.
