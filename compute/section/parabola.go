@@ -22,9 +22,13 @@ func (s *Parabolic) At(depth float64) (g Geometry) {
 	width := s.scale * math.Sqrt(depth)
 	slope := 4 * depth / width
 	root := math.Sqrt(1 + slope*slope)
+	arc := math.Log(slope + root) // asinh(slope), which cancels where the slope is small
+	if slope < 1 {
+		arc = math.Log1p(slope + slope*slope/(1+root))
+	}
 	g.Depth = depth
 	g.Area = width * depth * (2.0 / 3)
-	g.Perimeter = 0.5 * width * (root + math.Asinh(slope)/slope)
+	g.Perimeter = 0.5 * width * (root + arc/slope)
 	g.TopWidth = width
 	g.Moment = width * depth * depth * (4.0 / 15)
 	g.PerimeterRate = 2 * root / slope
