@@ -13,7 +13,7 @@ type Depths struct {
 	Bank          float64 // m; NaN where not known
 	Capacity      Capacity
 	FullDischarge float64 // total, m3/s; closed sections on a positive slope only
-	Ratio         float64 // discharge over capacity
+	Ratio         float64 // discharge over capacity; NaN where the capacity is 0, since the law gives no conveyance up to the bank
 	Surcharged    bool    // a closed section whose capacity is less than the discharge
 	Freeboard     float64 // bank less the lowest normal depth, m; 0 when surcharged
 	Fill          float64 // lowest normal depth over bank; 1 when surcharged
@@ -38,7 +38,9 @@ func (c *Channel) Depths(discharge float64, room *Room) Depths {
 	}
 	if capacity, known := c.Capacity(); known {
 		d.Capacity = capacity
-		d.Ratio = discharge / capacity.Discharge
+		if capacity.Discharge > 0 {
+			d.Ratio = discharge / capacity.Discharge
+		}
 	}
 	if c.Section.Closed() {
 		if slope := c.FullFrictionSlope(discharge); !math.IsInf(slope, 1) {
@@ -46,7 +48,7 @@ func (c *Channel) Depths(discharge float64, room *Room) Depths {
 		}
 		if c.Slope > 0 {
 			d.FullDischarge = c.FullDischarge()
-			d.Surcharged = d.Ratio > 1
+			d.Surcharged = discharge > d.Capacity.Discharge
 		}
 	}
 	switch {
