@@ -129,8 +129,8 @@ func foreigners(t *testing.T, union string) []foreign {
 	return out
 }
 
-// mutants makes every change of one place that the tests know of.
-func mutants(t *testing.T, base map[string]any) []mutant {
+// mutants makes every change of one place that the tests know of, in all members of a base or in the one named.
+func mutants(t *testing.T, base map[string]any, only string) []mutant {
 	t.Helper()
 	var out []mutant
 	add := func(name string) {
@@ -212,11 +212,17 @@ func mutants(t *testing.T, base map[string]any) []mutant {
 		}
 	}
 	for _, k := range slices.Sorted(maps.Keys(base)) {
+		if only != "" && k != only {
+			continue
+		}
 		old := base[k]
 		delete(base, k)
 		add("without /" + k)
 		base[k] = old
 		visit("/"+k, old, func(n any) { base[k] = n })
+	}
+	if only != "" {
+		return out
 	}
 	for _, k := range []string{"unknown_member", "depth", "depths", "discharge", "discharges", "from_depth", "count", "kind", "barrels", "fingerprint", "Units"} {
 		if _, has := base[k]; !has {
@@ -291,7 +297,14 @@ func TestContractMutations(t *testing.T) {
 					t.Errorf("%s is not the contract's: %v", base, err)
 					continue
 				}
-				for _, m := range mutants(t, all[base]) {
+				only := "" // what is the same in all bases is changed in those that are about no kind and no law
+				switch {
+				case strings.HasSuffix(base, "Section"):
+					only = "section"
+				case strings.HasSuffix(base, "Roughness"):
+					only = "roughness"
+				}
+				for _, m := range mutants(t, all[base], only) {
 					if seen[m.body] || testing.Short() && len(seen)%16 != 0 {
 						seen[m.body] = true
 						continue
@@ -329,7 +342,7 @@ func TestContractMutations(t *testing.T) {
 			t.Log(counts)
 			if !testing.Short() {
 				for _, least := range []string{"forbidden and refused", "allowed and answered", "allowed and refused by prose", "not I-JSON"} {
-					if counts[least] < 100 {
+					if counts[least] < 50 {
 						t.Errorf("only %d mutants are %s: the generator is broken", counts[least], least)
 					}
 				}
