@@ -1,0 +1,31 @@
+# The service as one static binary in an otherwise empty image. Build and run:
+#
+#   docker build -t leat .
+#   docker run --rm --read-only -p 8080:8080 leat
+#
+# The build fetches Go modules; the running container needs no network but its own port. What needs no container either:
+# CGO_ENABLED=0 go build -trimpath ./cmd/leat
+
+# Any image with this Go and a shell will do.
+ARG GO_IMAGE=golang:1.26
+FROM ${GO_IMAGE} AS build
+WORKDIR /src
+# Modules first, so that a change of ours does not fetch them again.
+COPY go.mod go.sum ./
+RUN go mod download && go mod verify
+COPY . .
+# GOAMD64=v1 is part of what the service promises: the same request gives the same bytes on every replica. The folder for
+# bulk answers that wait is made here since an empty image has nothing to make it with.
+RUN CGO_ENABLED=0 GOAMD64=v1 go build -trimpath -ldflags '-s -w' -o /out/leat ./cmd/leat && mkdir -m 0700 /out/spool
+
+FROM scratch
+COPY --from=build /out/leat /leat
+COPY --from=build --chown=65532:65532 /out/spool /spool
+# By number: an orchestrator can then see that it is not root.
+USER 65532:65532
+VOLUME ["/spool"]
+ENV LEAT_LISTEN=:8080 LEAT_SPOOL_DIR=/spool
+EXPOSE 8080
+HEALTHCHECK --interval=10s --timeout=3s CMD ["/leat", "health"]
+ENTRYPOINT ["/leat"]
+CMD ["serve"]
