@@ -38,7 +38,7 @@ func bases(t *testing.T, op string) map[string]map[string]any {
 	}
 	sections, laws := shown("Section"), shown("Roughness")
 	request := func(section, law map[string]any) map[string]any {
-		r := map[string]any{"section": section, "roughness": law, "bed_slope": 0.004, "id": "OS-D-0147"}
+		r := map[string]any{"section": section, "roughness": law, "bed_slope": 0.004, "id": "OST-RD-0147"}
 		switch op {
 		case "section":
 			r["depth"] = 0.12

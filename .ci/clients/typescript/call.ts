@@ -16,7 +16,7 @@ const unitDischarge = Math.sqrt(gravity * Math.sqrt(1 - bed_slope * bed_slope));
 const section: components["schemas"]["Section"] = { kind: "rectangular", bottom_width: width };
 const { data, error } = await client.POST("/v1/depths", {
   params: { query: { detail: "brief" } },
-  body: { id: "OS-D-0001", section, roughness: { manning: 0.02 }, bed_slope, discharge: width * unitDischarge },
+  body: { id: "OST-RD-0001", section, roughness: { manning: 0.02 }, bed_slope, discharge: width * unitDischarge },
 });
 if (error !== undefined) throw new Error(`${error.title}: ${error.detail}`);
 const critical: number | null = data.critical_depth;

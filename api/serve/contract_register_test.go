@@ -1,0 +1,101 @@
+package serve_test
+
+import (
+	"bytes"
+	"encoding/json"
+	"maps"
+	"os"
+	"path/filepath"
+	"strconv"
+	"testing"
+)
+
+// TestContractRegister sends the register of Ostermere through bulk, in every form that the query parameters allow, and asks the other operations
+// about its assets: at depths from a film to the crown or above the bank, and for ratings of both kinds with depths and discharges
+// that some cannot have. Every line of every answer is judged on its way; what is looked at here is that they were answers.
+func TestContractRegister(t *testing.T) {
+	register, err := os.ReadFile(filepath.Join("..", "..", "testdata", "ostermere.ndjson"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	s := startService(t)
+	var assets []map[string]any // those with an answer
+	for _, query := range []string{"?detail=full&units=si", "?detail=brief", "?units=us"} {
+		status, answer := s.post("/v1/bulk/depths"+query, ndjsonMedia, register)
+		if status != 200 {
+			t.Fatalf("%s: %d %s", query, status, answer)
+		}
+		if query != "?detail=brief" {
+			continue
+		}
+		rows := bytes.Split(bytes.TrimSpace(register), []byte("\n"))
+		for i, line := range bytes.Split(bytes.TrimSpace(answer), []byte("\n")) {
+			if i == len(rows) {
+				break
+			}
+			var a struct{ Result json.RawMessage }
+			if err := json.Unmarshal(line, &a); err != nil {
+				t.Fatal(err)
+			}
+			if a.Result != nil {
+				assets = append(assets, parse(t, rows[i]).(map[string]any))
+			}
+		}
+	}
+	if len(assets) < 500 {
+		t.Fatalf("only %d of the register's assets have an answer", len(assets))
+	}
+
+	sections, ratings := new(bytes.Buffer), new(bytes.Buffer)
+	add := func(to *bytes.Buffer, asset map[string]any, without []string, with map[string]any) {
+		request := maps.Clone(asset)
+		for _, k := range without {
+			delete(request, k)
+		}
+		maps.Copy(request, with)
+		text, err := json.Marshal(request)
+		if err != nil {
+			t.Fatal(err)
+		}
+		to.Write(text)
+		to.WriteByte('\n')
+	}
+	for _, asset := range assets {
+		section := asset["section"].(map[string]any)
+		height := 1.0
+		for _, k := range []string{"height", "diameter", "bank_height"} {
+			if h, ok := section[k].(float64); ok {
+				height = h
+				break
+			}
+		}
+		discharge := asset["discharge"].(float64)
+		depths := map[string]any{"depths": []float64{1e-6 * height, 0.3 * height, 0.95 * height, height}}
+		add(sections, asset, nil, depths)
+		add(sections, asset, []string{"discharge"}, depths)
+		add(sections, asset, []string{"roughness", "bed_slope"}, depths)
+		add(sections, asset, []string{"roughness", "bed_slope", "discharge"}, depths)
+		for _, kind := range []string{"uniform", "critical"} {
+			add(ratings, asset, []string{"discharge"}, map[string]any{"kind": kind, "from_depth": 0.01 * height, "to_depth": height, "count": 5})
+			add(ratings, asset, []string{"discharge"}, map[string]any{"kind": kind, "discharges": []float64{discharge / 100, discharge, 100 * discharge}})
+		}
+	}
+	for op, body := range map[string]*bytes.Buffer{"section": sections, "rating": ratings} {
+		for _, units := range []string{"si", "us"} {
+			status, answer := s.post("/v1/bulk/"+op+"?units="+units, ndjsonMedia, body.Bytes())
+			if status != 200 {
+				t.Fatalf("%s: %d %s", op, status, answer)
+			}
+			results, refused := bytes.Count(answer, []byte(`,"result":`)), bytes.Count(answer, []byte(`,"problem":`))
+			t.Logf("%s in %s: %d results, %d problems", op, units, results, refused)
+			if results < 3*refused {
+				t.Errorf("%s in %s: %d results, %d problems: the requests are not what they are meant to be", op, units, results, refused)
+			}
+			for line := range bytes.SplitSeq(answer, []byte("\n")) {
+				if bytes.Contains(line, []byte(`"status":5`)) {
+					t.Errorf("%s in %s: %s", op, units, strconv.Quote(string(line)))
+				}
+			}
+		}
+	}
+}
