@@ -56,7 +56,7 @@ func (b *body) release() {
 // that has gone gets its problem too: it may have closed its own direction only.
 func (l *larder) read(r *http.Request, limit int64) (b body, problem *wire.Problem) {
 	if r.ContentLength > limit {
-		skip(r, limit)
+		skip(r)
 		return body{}, tooLarge(limit)
 	}
 	b = body{larder: l}
@@ -87,7 +87,7 @@ func (l *larder) read(r *http.Request, limit int64) (b body, problem *wire.Probl
 		n, err := r.Body.Read(b.bytes[len(b.bytes):cap(b.bytes)])
 		b.bytes = b.bytes[:len(b.bytes)+n]
 		if int64(len(b.bytes)) > limit {
-			skip(r, limit)
+			skip(r)
 			return b, tooLarge(limit)
 		}
 		switch {
@@ -102,13 +102,16 @@ func (l *larder) read(r *http.Request, limit int64) (b body, problem *wire.Probl
 	}
 }
 
-// skip reads and drops what is left of a body that is too large, up to a bound, so that a client that sends first and reads
+// skippedBytes is how much of a refused body is read and dropped.
+const skippedBytes = 64 << 20
+
+// skip reads and drops what is left of a body that is refused, up to a bound, so that a client that sends first and reads
 // afterwards finds its answer instead of a broken connection. One that waits for leave to send is not given it. It reports whether the
 // body was read to its end.
-func skip(r *http.Request, limit int64) bool {
+func skip(r *http.Request) bool {
 	if r.Header.Get("Expect") != "" {
 		return false
 	}
-	_, err := io.CopyN(io.Discard, r.Body, 8*limit)
+	_, err := io.CopyN(io.Discard, r.Body, skippedBytes)
 	return err == io.EOF
 }

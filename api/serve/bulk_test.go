@@ -404,7 +404,7 @@ func TestBrokenBodyBeforeTheAnswerIsAProblem(t *testing.T) {
 func TestRefusedStreamFindsItsProblem(t *testing.T) {
 	r := start(t, nil)
 	c := r.dial()
-	body := strings.Repeat("{}\n", 1_000_000)
+	body := strings.Repeat("{}\n", 10_000_000)
 	fmt.Fprintf(c, "POST /v1/bulk/depths HTTP/1.1\r\nHost: leat\r\nContent-Type: text/plain\r\nContent-Length: %d\r\n\r\n", len(body))
 	if _, err := io.WriteString(c, body); err != nil {
 		t.Fatal(err)

@@ -14,7 +14,7 @@ type Config struct {
 	HeldBytes  int64         // request bodies held in memory at once, over all unary requests
 	ArrayItems int           // greatest length of a list in a request
 	Points     int           // greatest number of points of a surveyed section, and of rows of a tabulated one
-	TimeLimit  time.Duration // longest time for one unary request, from its header to its answer
+	TimeLimit  time.Duration // longest time of one unary calculation
 
 	IdleLimit   time.Duration // a bulk stream without progress in either direction is cut after this
 	SpoolDir    string        // folder for answers that a bulk client does not take yet

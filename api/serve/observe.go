@@ -38,6 +38,10 @@ func (s *Server) observe(silent map[string]bool) gin.HandlerFunc {
 		h["X-Content-Type-Options"] = noSniff
 		h["Content-Security-Policy"] = noContent
 		h["Referrer-Policy"] = noReferrer
+		if s.unready.Load() {
+			// The next request had better go elsewhere. In HTTP/2 net/http turns this into a GOAWAY.
+			h["Connection"] = []string{"close"}
+		}
 
 		route := c.FullPath()
 		if silent[route] {

@@ -75,7 +75,7 @@ func aboutToStop() *wire.Problem {
 }
 
 func lateAnswer(limit time.Duration) *wire.Problem {
-	return wire.TimeLimit(fmt.Sprintf("The request took longer than time_limit_seconds, %v; ask for less at once.", limit.Seconds()))
+	return wire.TimeLimit(fmt.Sprintf("The calculation took longer than time_limit_seconds, %v; ask for less at once.", limit.Seconds()))
 }
 
 func internalFault() *wire.Problem {

@@ -142,8 +142,19 @@ func TestClientThatSendsTooMuchBeforeItReadsFindsTheProblem(t *testing.T) {
 	}
 }
 
+func TestSlowHeaderIsCut(t *testing.T) {
+	r := start(t, nil)
+	r.Server.http.ReadHeaderTimeout = 200 * time.Millisecond // the listener is idle yet, so nothing reads it meanwhile
+	c := r.dial()
+	io.WriteString(c, "POST /v1/depths HTTP/1.1\r\nHost: le")
+	began := time.Now()
+	if text, err := io.ReadAll(c); err != nil || len(text) > 0 || time.Since(began) > 3*time.Second {
+		t.Errorf("%q, %v after %v: want the connection closed", text, err, time.Since(began))
+	}
+}
+
 func TestSlowBodyIs408(t *testing.T) {
-	r := start(t, func(c *Config, _ *Surroundings) { c.TimeLimit = 100 * time.Millisecond })
+	r := start(t, nil)
 	r.Server.http.ReadTimeout = 200 * time.Millisecond // the listener is idle yet, so nothing reads it meanwhile
 	c := r.dial()
 	io.WriteString(c, "POST /v1/depths HTTP/1.1\r\nHost: leat\r\nContent-Type: application/json\r\nContent-Length: 20\r\n\r\n{")

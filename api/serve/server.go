@@ -18,9 +18,10 @@ import (
 // Times that no operator needs to change.
 const (
 	headerLimit    = 5 * time.Second  // for a request's header to arrive
+	bodyLimit      = 30 * time.Second // for the body of a unary request to arrive after it
 	keepAliveLimit = 60 * time.Second // for the next request on a connection to begin
 	headerBytes    = 16 << 10
-	answerLimit    = 10 * time.Second // for an answer to be taken, beyond the time limit of the request
+	answerLimit    = 10 * time.Second // for an answer to be taken
 	streamsAtOnce  = 100              // of one HTTP/2 connection
 )
 
@@ -92,8 +93,8 @@ func New(config Config, operations []*operation.Operation, around Surroundings) 
 		Protocols:         &protocols,
 		HTTP2:             &http.HTTP2Config{MaxConcurrentStreams: streamsAtOnce},
 		ReadHeaderTimeout: headerLimit,
-		ReadTimeout:       headerLimit + config.TimeLimit,
-		WriteTimeout:      headerLimit + config.TimeLimit + answerLimit,
+		ReadTimeout:       headerLimit + bodyLimit,
+		WriteTimeout:      bodyLimit + config.TimeLimit + answerLimit,
 		IdleTimeout:       keepAliveLimit,
 		MaxHeaderBytes:    headerBytes,
 		ErrorLog:          slog.NewLogLogger(around.Log.Handler(), slog.LevelWarn),

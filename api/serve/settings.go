@@ -48,7 +48,7 @@ var settings = []setting{
 	bytesSetting("held-bytes", "request bodies held in memory at once; beyond it 503", 1<<20, 64<<30, func(c *Config) *int64 { return &c.HeldBytes }),
 	countSetting("array-items", "greatest length of a list in a request", 1, 1_000_000, func(c *Config) *int { return &c.ArrayItems }),
 	countSetting("points", "most points of a surveyed section, rows of a tabulated one", 3, 1_000_000, func(c *Config) *int { return &c.Points }),
-	durationSetting("time-limit", "longest time for one unary request", 100*time.Millisecond, 10*time.Minute, func(c *Config) *time.Duration { return &c.TimeLimit }),
+	durationSetting("time-limit", "longest time of one calculation; beyond it 504", 100*time.Millisecond, 10*time.Minute, func(c *Config) *time.Duration { return &c.TimeLimit }),
 	durationSetting("idle-limit", "a bulk stream without progress is ended after this", time.Second, time.Hour, func(c *Config) *time.Duration { return &c.IdleLimit }),
 	{
 		"spool-dir", "folder for bulk answers that wait for a slow reader", "a folder that exists and can be written",

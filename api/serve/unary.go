@@ -36,7 +36,6 @@ func (a *answers) put(b *[]byte) {
 // unary is the handler of one operation on one request object.
 func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 	return func(c *gin.Context) {
-		began := time.Now()
 		options, problem := s.admit(c, mediaJSON)
 		if problem != nil {
 			s.refuse(c, problem)
@@ -57,6 +56,7 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 		defer body.release()
 		buffer := s.answers.get()
 		defer s.answers.put(buffer)
+		began := time.Now()
 		answer, _, problem := op.Answer((*buffer)[:0], body.bytes, options)
 		*buffer = answer
 		if problem == nil && time.Since(began) > s.config.TimeLimit {
@@ -94,7 +94,7 @@ func (s *Server) admit(c *gin.Context, media string) (operation.Options, *wire.P
 // refuse answers with a problem before the body was read. It drops what the client is sending all the same, up to a bound, so
 // that one that sends first and reads afterwards finds the problem and no broken connection.
 func (s *Server) refuse(c *gin.Context, problem *wire.Problem) {
-	if !skip(c.Request, s.config.BodyBytes) {
+	if !skip(c.Request) {
 		closeConnection(c)
 	}
 	s.writeProblem(c, problem)
