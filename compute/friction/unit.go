@@ -1,8 +1,8 @@
 package friction
 
 // UnitCoefficients reports whether a law treats every section as one, so that alpha and beta are 1 at every depth: all laws but
-// zones combined as Divided or Lotter.
+// those that can tell, by a method AsOne, that they do not (zones combined as Divided or Lotter).
 func UnitCoefficients(law Law) bool {
-	zones, parted := law.(*Zones)
-	return !parted || zones.AsOne()
+	parted, ok := law.(interface{ AsOne() bool })
+	return !ok || parted.AsOne()
 }

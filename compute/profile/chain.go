@@ -1,0 +1,300 @@
+package profile
+
+import "math"
+
+// A chain is a run under way.
+type chain struct {
+	run   *Run
+	legs  []*leg
+	notes notes
+	// begin is what the upstream boundary sends in.
+	begin hold
+
+	segments []segment
+	jumps    []Jump
+	controls []Control
+	turns    []turn
+}
+
+// A turn is a place where the specific forces balance.
+type turn struct {
+	force    float64 // above, of all barrels
+	residual float64
+}
+
+// newChain lays out the legs of a run.
+func newChain(run *Run) (*chain, error) {
+	c := &chain{run: run}
+	var err error
+	if len(run.Stations) > 0 {
+		err = c.layStations()
+	} else {
+		err = c.layReaches()
+	}
+	return c, err
+}
+
+// layReaches makes a leg of every reach and the joints between them.
+func (c *chain) layReaches() error {
+	reaches := c.run.Reaches
+	total, at := c.run.Discharge, 0.0
+	for i := range reaches {
+		r := &reaches[i]
+		total += r.Inflow
+		l := &leg{reach: i, start: at, length: r.Length, slope: r.Channel.Slope, prismatic: true}
+		var err error
+		if r.Lateral > 0 {
+			l.stretch = newFed(&r.Channel, total, r.Lateral, r.Length, c.run.Checkpoint)
+		} else if l.stretch, err = newPrismatic(&r.Channel, total, r.Length, c.run.Checkpoint); err != nil {
+			return err
+		}
+		if l.inside, err = l.stretch.controls(); err != nil {
+			return err
+		}
+		total += r.Lateral * r.Length
+		at += r.Length
+		c.legs = append(c.legs, l)
+	}
+	bed := c.run.Datum
+	for i := len(c.legs) - 1; i >= 0; i-- {
+		l := c.legs[i]
+		if i < len(c.legs)-1 {
+			bed += reaches[i].Drop
+		}
+		bed += l.slope * l.length
+		l.bed = bed
+		if i == len(c.legs)-1 {
+			continue
+		}
+		next := &reaches[i+1]
+		upper := l.side(l.length)
+		before := l.total(l.length)
+		l.joint = joint{upper: upper, lower: sideOf(&next.Channel, before), with: sideOf(&next.Channel, before+next.Inflow), inflow: next.Inflow > 0,
+			drop: reaches[i].Drop, loss: reaches[i].Loss, entry: next.Entry}
+	}
+	return nil
+}
+
+// sweepUp follows the subcritical flow from the downstream end to the upstream end, through every joint and from every control inside.
+func (c *chain) sweepUp() error {
+	last := c.legs[len(c.legs)-1]
+	end, err := c.run.Downstream.downstreamHold(last.side(last.length), last.total(last.length), last.level(last.length), &c.notes)
+	if err != nil {
+		return err
+	}
+	last.above = above{depth: end.depth}
+	c.controls = append(c.controls, Control{Chainage: last.start + last.length, Kind: end.kind, Depth: end.depth})
+	for i := len(c.legs) - 1; i >= 0; i-- {
+		l := c.legs[i]
+		if i < len(c.legs)-1 {
+			lower := c.legs[i+1]
+			below := math.NaN()
+			if t := lower.sub(0); t != nil {
+				below = t.depth(0)
+			}
+			if l.above, err = l.joint.above(below); err != nil {
+				return err
+			}
+		}
+		t, err := l.sweep(l.length, l.above.depth, upstream, true)
+		if err != nil {
+			return err
+		}
+		if len(t.panels) > 0 {
+			l.subs = append(l.subs, t)
+		}
+		for k := len(l.inside) - 1; k >= 0; k-- {
+			p := l.inside[k]
+			if n := len(l.subs); n > 0 && l.subs[n-1].end <= p.x {
+				continue // drowned
+			}
+			t, err := l.sweep(p.x, p.depth, upstream, true)
+			if err != nil {
+				return err
+			}
+			if len(t.panels) > 0 {
+				l.subs = append(l.subs, t)
+			}
+		}
+	}
+	return nil
+}
+
+// A segment is a stretch of the flow as it is: a trace between two chainages of a leg.
+type segment struct {
+	leg         *leg
+	trace       *trace
+	from, to    float64 // chainages within the leg
+	subcritical bool
+}
+
+// walk goes downstream and decides what flows: the supercritical branch where its specific force is the larger, else the subcritical one.
+func (c *chain) walk() error {
+	first := c.legs[0]
+	begin, err := c.run.Upstream.upstreamHold(first.side(0), first.total(0), first.level(0), &c.notes)
+	if err != nil {
+		return err
+	}
+	shooting, depth := begin.governs, begin.depth
+	fromBoundary := begin.governs
+	for i, l := range c.legs {
+		x := 0.0
+		for x < l.length || l.length == 0 {
+			if !shooting {
+				t := l.sub(x)
+				if t == nil || t.panels[0].x0 <= x && l.length > 0 {
+					// Nothing downstream governs here: the flow enters from a pool, or from what is above, at critical depth.
+					s := l.side(x)
+					if depth, err = s.critical(); err != nil {
+						return err
+					}
+					c.control(l, x, "critical", depth)
+					shooting = true
+					continue
+				}
+				end := t.panels[0].x0
+				c.segments = append(c.segments, segment{l, t, x, end, true})
+				x = end
+				if x < l.length {
+					depth = t.panels[0].y0
+					c.control(l, x, "critical", depth)
+					shooting = true
+				}
+				if l.length == 0 {
+					break
+				}
+				continue
+			}
+			t, err := l.sweep(x, depth, downstream, false)
+			if err != nil {
+				return err
+			}
+			to, jumps, err := c.meet(l, t, x)
+			if err != nil {
+				return err
+			}
+			if fromBoundary {
+				if to > x || !jumps {
+					c.control(l, 0, begin.kind, begin.depth)
+				} else {
+					c.notes.end("boundary_drowned", "upstream", "the subcritical force at the upstream end is greater than that of what the boundary sends in; it is drowned and does not govern")
+				}
+				fromBoundary = false
+			}
+			if to > x || !jumps {
+				c.segments = append(c.segments, segment{l, t, x, to, false})
+			}
+			switch {
+			case jumps && to > x:
+				c.jump(l, t, to)
+				shooting = false
+			case jumps:
+				if i > 0 && x == 0 && c.arrived(i) {
+					c.notes.at("turns_at_joint", l.start, "supercritical flow turns subcritical at this joint, where its force is the larger above and the smaller below")
+				}
+				shooting = false
+			case !t.whole:
+				return &NoSolution{Code: "no_steady_flow", Detail: "supercritical flow reaches critical depth inside a reach where no subcritical flow meets it; give other boundaries, or look for an error in the section or the roughness"}
+			default:
+				depth = t.last
+			}
+			x = to
+			if l.length == 0 {
+				break
+			}
+		}
+		if i == len(c.legs)-1 {
+			c.finish(l, shooting)
+			break
+		}
+		if shooting, depth, err = c.cross(i, shooting, depth); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// arrived reports whether the flow at the end of the leg before is supercritical.
+func (c *chain) arrived(i int) bool {
+	n := len(c.segments)
+	return n > 0 && c.segments[n-1].leg == c.legs[i-1] && !c.segments[n-1].subcritical
+}
+
+// cross takes the flow over the joint below a leg.
+func (c *chain) cross(i int, shooting bool, depth float64) (bool, float64, error) {
+	l, next := c.legs[i], c.legs[i+1]
+	a := l.above
+	if shooting {
+		if below, ok := l.joint.pass(depth); ok {
+			return true, below, nil
+		}
+		c.notes.at("turns_at_joint", next.start, "supercritical flow has too little energy or force to pass this joint and turns subcritical there")
+	}
+	sweeps := next.sub(0) != nil && !(next.length > 0 && next.sub(0).panels[0].x0 == 0)
+	switch {
+	case a.upperControl && !shooting:
+		c.control(l, l.length, "critical", a.depth)
+		below, ok := l.joint.pass(a.depth)
+		if ok {
+			return true, below, nil
+		}
+		if sweeps {
+			return false, 0, nil
+		}
+	case a.lowerControl || !sweeps:
+	default:
+		return false, 0, nil
+	}
+	below, err := l.joint.with.critical()
+	if err != nil {
+		return false, 0, err
+	}
+	c.control(next, 0, "critical", below)
+	return true, below, nil
+}
+
+// control notes a place that governs.
+func (c *chain) control(l *leg, x float64, kind string, depth float64) {
+	c.controls = append(c.controls, Control{Chainage: l.start + x, Kind: kind, Depth: depth})
+}
+
+// finish decides whether the downstream boundary, noted first, governs.
+func (c *chain) finish(l *leg, shooting bool) {
+	end := c.controls[0]
+	c.controls = c.controls[1:]
+	if shooting {
+		if c.run.Downstream.Kind != FreeOverfall {
+			c.notes.end("boundary_does_not_govern", "downstream", "supercritical flow arrives at the downstream end with the larger force, so that the boundary there does not govern")
+		}
+		return
+	}
+	c.controls = append(c.controls, end)
+}
+
+// Solve computes a run. The error is compute.Faults for inputs that break a rule, a *NoSolution with the physical reason, an *Unsolved where a search
+// did not converge, or what the checkpoint returned.
+func Solve(run *Run) (*Answer, error) {
+	if faults := check(run); len(faults) > 0 {
+		return nil, faults
+	}
+	c, err := newChain(run)
+	if err != nil {
+		return nil, err
+	}
+	if err := c.sweepUp(); err != nil {
+		return nil, err
+	}
+	if err := c.walk(); err != nil {
+		return nil, err
+	}
+	return c.answer()
+}
+
+// NoSolution is the physical reason why a run has no answer.
+type NoSolution struct {
+	Code   string
+	Detail string
+	Member string // path of the input to change, as in compute.Fault
+}
+
+func (n *NoSolution) Error() string { return n.Detail }

@@ -1,0 +1,458 @@
+package profile
+
+import (
+	"math"
+	"slices"
+)
+
+// collocation integrates a varying stretch panel by panel: on each the derivative is a polynomial that satisfies the equation at the Gauss points
+// (Butcher 1964; Hairer and Wanner, Solving Ordinary Differential Equations II, section IV.5), so that the method is of high order and does not mind the
+// strong attraction of normal depth. Near critical depth the chainage is taken as a function of the depth instead.
+type collocation struct {
+	v           *varying
+	direction   float64
+	subcritical bool
+	x, y        float64
+	far         float64
+	trace       *trace
+	width       float64 // of the last panel accepted
+	slope       float64 // ddepth/dx to begin with, where the equation cannot tell it: at a control
+}
+
+// integrate[j][k] is the integral from -1 to the j-th node of the polynomial that is 1 at the k-th node and 0 at the others.
+var integrate = func() (m [order][order]float64) {
+	for k := range order {
+		var unit [order]float64
+		unit[k] = 1
+		s := newSeries(&unit)
+		for j := range order {
+			m[j][k], _ = s.integral(rule.node[j])
+		}
+	}
+	return m
+}()
+
+// settled is the tail of a series below which a panel of a varying stretch counts as resolved.
+const settled = 1e-10
+
+func (v *varying) sweep(x, depth, direction float64, subcritical bool) (*trace, error) {
+	c := &collocation{v: v, direction: direction, subcritical: subcritical, x: x, y: depth, slope: math.NaN(), trace: &trace{up: direction == upstream}}
+	if direction == downstream {
+		c.far = v.length
+	}
+	if c.startsAtCritical() {
+		if x > 0 && x < v.length {
+			slope, ok := v.throughCritical(x, depth)
+			if !ok {
+				return c.done(), nil
+			}
+			c.slope = slope
+		} else if !c.leavesCritical() {
+			return c.done(), nil
+		}
+	}
+	if err := c.run(); err != nil {
+		return nil, err
+	}
+	return c.done(), nil
+}
+
+func (c *collocation) done() *trace {
+	c.trace.end, c.trace.last, c.trace.whole = c.x, c.y, c.x == c.far
+	return c.trace
+}
+
+// startsAtCritical reports whether the depth at the start is critical, as far as its own last places tell.
+func (c *collocation) startsAtCritical() bool {
+	_, d := c.v.rates(c.x, c.y)
+	return math.Abs(d) <= 1e-9*c.v.cosine
+}
+
+// sign returns the sign of the denominator in the regime of the sweep.
+func (c *collocation) sign() float64 {
+	if c.subcritical {
+		return 1
+	}
+	return -1
+}
+
+// leavesCritical reports whether the flow can leave critical depth at the end of a stretch the way of the sweep: the subcritical one upstream against a bed that
+// falls too little, the supercritical one downstream on a bed that falls enough.
+func (c *collocation) leavesCritical() bool {
+	n, _ := c.v.rates(c.x, c.y)
+	return n*c.direction > 0
+}
+
+// run advances to the far end or to where the branch ends.
+func (c *collocation) run() error {
+	v := c.v
+	tiny := 1e-9 * v.length
+	for range mostPanels {
+		if v.check != nil {
+			if err := v.check(); err != nil {
+				return err
+			}
+		}
+		left := math.Abs(c.far - c.x)
+		if left == 0 {
+			return nil
+		}
+		width := min(left, v.length)
+		if c.width > 0 {
+			width = min(width, 2*c.width)
+		}
+		on := false
+		for width > tiny || width == left {
+			if p, ok := c.overChainage(width); ok {
+				if p, ok = c.stopAtBreak(p); ok {
+					c.accept(p)
+					on = true
+					break
+				}
+			}
+			if c.nearCritical() {
+				break
+			}
+			width /= 2
+			if width <= tiny && left <= tiny {
+				break
+			}
+		}
+		if on {
+			continue
+		}
+		ended, ok := c.overDepth()
+		if !ok {
+			return unsolved("the water surface between two stations")
+		}
+		if ended {
+			return nil
+		}
+	}
+	return unsolved("the water surface between two stations")
+}
+
+func (c *collocation) accept(p panel) {
+	c.trace.panels = append(c.trace.panels, p)
+	c.width = math.Abs(p.x1 - p.x0)
+	c.x, c.y, c.slope = p.x1, p.y1, math.NaN()
+	if math.Abs(c.far-c.x) <= 1e-13*c.v.length {
+		c.x = c.far
+		c.trace.panels[len(c.trace.panels)-1].x1 = c.far
+	}
+}
+
+// nearCritical reports whether the depth is so near critical that the chainage had better be a function of it.
+func (c *collocation) nearCritical() bool {
+	_, d := c.v.rates(c.x, c.y)
+	return math.IsNaN(c.slope) && math.Abs(d) < 0.05*c.v.cosine
+}
+
+// overChainage solves one panel of a width in chainage. ok is false where it does not converge, is not resolved, or leaves the regime.
+func (c *collocation) overChainage(width float64) (p panel, ok bool) {
+	v := c.v
+	half := c.direction * width / 2
+	begin := c.slope
+	if math.IsNaN(begin) {
+		n, d := v.rates(c.x, c.y)
+		begin = n / d
+	}
+	var y, f [order]float64
+	for j, t := range rule.node {
+		y[j] = c.y + begin*half*(t+1)
+		if !(y[j] > 0.2*c.y && y[j] < 5*c.y) {
+			y[j] = c.y
+		}
+	}
+	slopeAt := func(j int, depth float64) (float64, bool) {
+		n, d := v.rates(c.x+half*(rule.node[j]+1), depth)
+		return n / d, d*c.sign() > 0
+	}
+	converged := false
+	for range 12 {
+		var jacobian [order][order]float64
+		var residual [order]float64
+		var rate [order]float64
+		for j := range order {
+			if !(y[j] > 0) {
+				return p, false
+			}
+			var inside bool
+			f[j], inside = slopeAt(j, y[j])
+			if !inside || math.IsNaN(f[j]) || math.IsInf(f[j], 0) {
+				return p, false
+			}
+			step := 1e-7 * y[j]
+			other, _ := slopeAt(j, y[j]+step)
+			rate[j] = (other - f[j]) / step
+		}
+		for j := range order {
+			sum := 0.0
+			for k := range order {
+				sum += integrate[j][k] * f[k]
+				jacobian[j][k] = -half * integrate[j][k] * rate[k]
+			}
+			jacobian[j][j]++
+			residual[j] = c.y + half*sum - y[j]
+		}
+		if !eliminate(&jacobian, &residual) {
+			return p, false
+		}
+		largest := 0.0
+		for j := range order {
+			change := residual[j]
+			if math.Abs(change) > 0.5*y[j] {
+				change = math.Copysign(0.5*y[j], change)
+			}
+			y[j] += change
+			largest = max(largest, math.Abs(change)/y[j])
+		}
+		if largest < 1e-13 {
+			converged = true
+			break
+		}
+	}
+	if !converged {
+		return p, false
+	}
+	for j := range order {
+		var inside bool
+		if f[j], inside = slopeAt(j, y[j]); !inside {
+			return p, false
+		}
+		f[j] *= half
+	}
+	s := newSeries(&f)
+	rise, _ := s.integral(1)
+	scale := math.Abs(rise) + 1e-3*c.y
+	if (math.Abs(s[order-1])+math.Abs(s[order-2]))/scale > settled {
+		return p, false
+	}
+	y1 := c.y + rise
+	x1 := c.x + c.direction*width
+	if width == math.Abs(c.far-c.x) {
+		x1 = c.far
+	}
+	if _, d := v.rates(x1, y1); !(y1 > 0) || !(d*c.sign() > 0) {
+		return p, false
+	}
+	return panel{x0: c.x, x1: x1, y0: c.y, y1: y1, form: overChainage, s: s, full: c.full(y[order/2])}, true
+}
+
+func (c *collocation) full(y float64) bool {
+	return c.v.a.Section.Closed() && y >= c.v.height
+}
+
+// stopAtBreak shortens a panel that crosses a break of the section or the roughness, or the crown, so that it ends there: nothing is smooth across. It is ok
+// where nothing is crossed.
+func (c *collocation) stopAtBreak(p panel) (panel, bool) {
+	b, crosses := c.crossed(p)
+	if !crosses {
+		return p, true
+	}
+	lo, hi := 0.0, math.Abs(p.x1-p.x0)
+	guess := p
+	for range 60 {
+		// The chainage at which the depth of the last panel passes the break.
+		width := lo + (hi-lo)/2
+		if t := guess.crossing(b); t > lo && t < hi {
+			width = t
+		}
+		q, ok := c.overChainage(width)
+		if !ok {
+			hi = width
+			continue
+		}
+		if math.Abs(q.y1-b) <= 1e-13*b {
+			q.y1 = b
+			if _, again := c.crossed(q); !again {
+				return q, true
+			}
+		}
+		if (q.y1-b)*(p.y1-b) > 0 {
+			hi, guess = width, q
+		} else {
+			lo = width
+		}
+		if hi-lo <= 1e-14*c.v.length {
+			q.y1 = b
+			return q, true
+		}
+	}
+	return p, false
+}
+
+// crossing returns the distance from its start at which a panel over chainage passes a depth.
+func (p *panel) crossing(depth float64) float64 {
+	lo, hi := -1.0, 1.0
+	for range 60 {
+		t := lo + (hi-lo)/2
+		rise, _ := p.s.integral(t)
+		if (p.y0+rise-depth)*(p.y1-depth) > 0 {
+			hi = t
+		} else {
+			lo = t
+		}
+	}
+	return math.Abs(p.x1-p.x0) * (lo + 1) / 2
+}
+
+// crossed returns the first break that a panel passes on its way.
+func (c *collocation) crossed(p panel) (depth float64, crosses bool) {
+	lo, hi := min(p.y0, p.y1), max(p.y0, p.y1)
+	breaks := c.v.breaks
+	i, _ := slices.BinarySearch(breaks, lo)
+	for i < len(breaks) && breaks[i] <= lo*(1+1e-13) {
+		i++
+	}
+	j := i
+	for j < len(breaks) && breaks[j] < hi*(1-1e-13) {
+		j++
+	}
+	crown := c.v.height > lo*(1+1e-13) && c.v.height < hi*(1-1e-13)
+	switch {
+	case i == j && !crown:
+		return 0, false
+	case i == j:
+		return c.v.height, true
+	case p.y1 > p.y0:
+		return breaks[i], true
+	case crown:
+		return c.v.height, true
+	}
+	return breaks[j-1], true
+}
+
+// overDepth goes on from near critical depth with the chainage as a function of the depth, to critical depth, where the branch ends, or away from it
+// until the depth may be a function of the chainage again. ok is false where neither works.
+func (c *collocation) overDepth() (ended, ok bool) {
+	v := c.v
+	for range 200 {
+		n, d := v.rates(c.x, c.y)
+		if n == 0 {
+			return true, true
+		}
+		// The direction in which the depth goes as the chainage goes the way of the sweep.
+		rise := c.direction * math.Copysign(1, n) * c.sign()
+		if math.Abs(d) <= 1e-9*v.cosine && rise == -c.sign() {
+			return true, true // it has come to critical depth
+		}
+		step := 0.01 * c.y
+		if rise == -c.sign() {
+			_, near := v.rates(c.x, c.y*(1-1e-6*rise))
+			gradient := (near - d) / (-1e-6 * rise * c.y)
+			if towards := math.Abs(d / gradient); gradient != 0 {
+				step = min(step, 0.9*towards)
+			}
+		}
+		accepted := false
+		for range 40 {
+			if p, fine := c.panelOverDepth(rise * step); fine {
+				if c.direction*(p.x1-c.far) >= 0 {
+					y := p.depth(c.far)
+					c.trace.panels = append(c.trace.panels, p)
+					c.x, c.y = c.far, y
+					return true, true
+				}
+				c.trace.panels = append(c.trace.panels, p)
+				c.x, c.y, c.width = p.x1, p.y1, 0
+				accepted = true
+				break
+			}
+			step /= 2
+		}
+		if !accepted {
+			return true, math.Abs(d) < 1e-4*v.cosine
+		}
+		if _, d := v.rates(c.x, c.y); math.Abs(d) > 0.06*v.cosine {
+			return false, true
+		}
+	}
+	return false, false
+}
+
+// panelOverDepth solves one panel over a rise of the depth.
+func (c *collocation) panelOverDepth(rise float64) (p panel, ok bool) {
+	v := c.v
+	half := rise / 2
+	var x, f [order]float64
+	for j := range x {
+		x[j] = c.x
+	}
+	at := func(j int, chainage float64) (float64, bool) {
+		n, d := v.rates(chainage, c.y+half*(rule.node[j]+1))
+		return d / n, d*c.sign() > 0 && n/d*c.direction*rise > 0
+	}
+	for round := 0; ; round++ {
+		for j := range order {
+			var inside bool
+			if f[j], inside = at(j, x[j]); !inside {
+				return p, false
+			}
+		}
+		largest := 0.0
+		for j := range order {
+			sum := 0.0
+			for k := range order {
+				sum += integrate[j][k] * f[k]
+			}
+			next := c.x + half*sum
+			largest = max(largest, math.Abs(next-x[j]))
+			x[j] = next
+		}
+		if largest <= 1e-15*v.length {
+			break
+		}
+		if round > 60 {
+			return p, false
+		}
+	}
+	for j := range f {
+		f[j] *= half
+	}
+	s := newSeries(&f)
+	if !(s.tail() < settled) {
+		return p, false
+	}
+	whole, _ := s.integral(1)
+	y1 := c.y + rise
+	p = panel{x0: c.x, x1: c.x + whole, y0: c.y, y1: y1, form: overDepth, chart: chart{plain: true}, u0: c.y, u1: y1, s: s}
+	if _, crosses := c.crossed(p); crosses {
+		return p, false
+	}
+	return p, true
+}
+
+// eliminate solves a linear system in place by Gauss's elimination with pivots; the solution stands in b.
+func eliminate(a *[order][order]float64, b *[order]float64) bool {
+	for i := range order {
+		pivot := i
+		for j := i + 1; j < order; j++ {
+			if math.Abs(a[j][i]) > math.Abs(a[pivot][i]) {
+				pivot = j
+			}
+		}
+		if !(math.Abs(a[pivot][i]) > 0) {
+			return false
+		}
+		a[i], a[pivot] = a[pivot], a[i]
+		b[i], b[pivot] = b[pivot], b[i]
+		for j := i + 1; j < order; j++ {
+			w := a[j][i] / a[i][i]
+			if w == 0 {
+				continue
+			}
+			for k := i; k < order; k++ {
+				a[j][k] -= w * a[i][k]
+			}
+			b[j] -= w * b[i]
+		}
+	}
+	for i := order - 1; i >= 0; i-- {
+		for k := i + 1; k < order; k++ {
+			b[i] -= a[i][k] * b[k]
+		}
+		b[i] /= a[i][i]
+	}
+	return true
+}

@@ -1,0 +1,67 @@
+package profile
+
+import (
+	"math"
+
+	"leat/compute/solve"
+)
+
+// controls returns the places inside the stretch at which F is 1 and the numerator of ddepth/dx passes zero from below to above: there the flow passes from
+// subcritical to supercritical by itself.
+func (v *varying) controls() ([]passage, error) {
+	var found []passage
+	numerator := func(x float64) float64 {
+		s := v.side(x)
+		depth, _, known := s.motion.LeastEnergy()
+		if !known || depth >= v.height {
+			return math.NaN()
+		}
+		n, _ := v.rates(x, depth)
+		return n
+	}
+	const parts = 4
+	before, from := math.NaN(), 0.0
+	for i := range parts + 1 {
+		x := v.length * float64(i) / parts
+		n := numerator(x)
+		if before < 0 && n > 0 {
+			at, _, ok := solve.RootSlopeless(numerator, from, x)
+			if ok && at > 0 && at < v.length {
+				s := v.side(at)
+				depth, _, _ := s.motion.LeastEnergy()
+				if _, through := v.throughCritical(at, depth); through {
+					found = append(found, passage{at, depth})
+				}
+			}
+		}
+		before, from = n, x
+	}
+	return found, nil
+}
+
+// throughCritical returns the slope ddepth/dx with which a flow passes from subcritical to supercritical through a place where numerator and denominator
+// of the equation vanish: of the two solutions of the quadratic that de l'Hospital's rule gives, the one along which the denominator falls. ok is false
+// where there is none.
+func (v *varying) throughCritical(x, depth float64) (slope float64, ok bool) {
+	dx, dy := 1e-5*v.length, 1e-5*depth
+	dx = min(dx, x/2, (v.length-x)/2)
+	n1, d1 := v.rates(x-dx, depth)
+	n2, d2 := v.rates(x+dx, depth)
+	nx, denominatorX := (n2-n1)/(2*dx), (d2-d1)/(2*dx)
+	n1, d1 = v.rates(x, depth-dy)
+	n2, d2 = v.rates(x, depth+dy)
+	ny, denominatorY := (n2-n1)/(2*dy), (d2-d1)/(2*dy)
+	// denominatorY*m^2 + (denominatorX - ny)*m - nx = 0
+	b := denominatorX - ny
+	square := b*b + 4*denominatorY*nx
+	if !(square > 0) || denominatorY == 0 {
+		return 0, false
+	}
+	root := math.Sqrt(square)
+	for _, m := range [2]float64{(-b - root) / (2 * denominatorY), (-b + root) / (2 * denominatorY)} {
+		if denominatorX+denominatorY*m < 0 {
+			return m, true
+		}
+	}
+	return 0, false
+}

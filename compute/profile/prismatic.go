@@ -1,0 +1,414 @@
+package profile
+
+import (
+	"math"
+	"slices"
+
+	"leat/compute/flow"
+	"leat/compute/section"
+)
+
+// prismatic is a reach of one section, slope and discharge. There the depth's equation does not hold the chainage,
+//
+//	dx/ddepth = cos*(1 - F^2)/(S0 - Sf),
+//
+// so that a curve is an integral over depth, whose only singularities are the normal depths.
+type prismatic struct {
+	channel   *flow.Channel
+	motion    flow.Motion
+	discharge float64 // total, m3/s
+	length    float64
+	poles     []float64     // normal depths, rising
+	branches  []flow.Branch // of the specific energy
+	height    float64
+	arched    bool
+	check     func() error
+}
+
+func newPrismatic(c *flow.Channel, discharge, length float64, check func() error) (*prismatic, error) {
+	p := &prismatic{channel: c, motion: c.Motion(discharge), discharge: discharge, length: length, height: c.Section.Height(),
+		arched: c.Section.Closed() && c.Section.At(c.Section.Height()).TopWidth == 0, check: check}
+	if c.Slope > 0 {
+		normals, absent := c.Normal(discharge, nil)
+		if absent == flow.Unsolved {
+			return nil, unsolved("normal depth")
+		}
+		p.poles = normals
+	}
+	p.motion.EnergyBranches(func(b flow.Branch) bool {
+		p.branches = append(p.branches, b)
+		return true
+	})
+	return p, nil
+}
+
+// direction of a sweep along the chainage.
+const (
+	upstream   = -1.0
+	downstream = 1.0
+)
+
+// steepness returns S0 - Sf, the numerator of ddepth/dx, at a geometry.
+func (p *prismatic) steepness(g section.Geometry) float64 {
+	return p.channel.Slope - p.motion.FrictionSlope(g)
+}
+
+// steepnessNear returns S0 - Sf at a depth a distance from a normal depth, without the cancellation: from the mean of dK/ddepth between.
+func (p *prismatic) steepnessNear(g section.Geometry, normal, distance float64) float64 {
+	if math.Abs(distance) > 1e-2*normal {
+		return p.steepness(g)
+	}
+	const node = 0.38729833462074168852 // half of sqrt(3/5): Gauss's rule of three points
+	q := p.motion.Discharge()
+	rate := func(y float64) float64 { return p.channel.Law.AtDischarge(p.channel.Section.At(y), q).Rate }
+	middle := normal + distance/2
+	more := distance * (8*rate(middle) + 5*rate(middle-node*distance) + 5*rate(middle+node*distance)) / 18
+	k := p.channel.Law.AtDischarge(g, q).K
+	return p.channel.Slope * more * (2*k - more) / (k * k)
+}
+
+func (p *prismatic) sweep(x, depth, direction float64, subcritical bool) (*trace, error) {
+	s := &sweeper{p: p, direction: direction, subcritical: subcritical, x: x, y: depth, trace: &trace{up: direction == upstream}}
+	if direction == downstream {
+		s.far = p.length
+	}
+	if err := s.run(); err != nil {
+		return nil, err
+	}
+	s.trace.end, s.trace.last = s.x, s.y
+	s.trace.whole = s.x == s.far
+	return s.trace, nil
+}
+
+// sweeper is a sweep under way.
+type sweeper struct {
+	p           *prismatic
+	direction   float64
+	subcritical bool
+	x, y        float64
+	far         float64 // chainage of the other end
+	trace       *trace
+	rise        float64 // 1 while the depth rises along the sweep, -1 while it falls
+}
+
+// mostPanels bounds a sweep along one stretch; smooth curves take about ten.
+const mostPanels = 4000
+
+func (s *sweeper) run() error {
+	if s.p.length == 0 {
+		s.straight(s.far, s.y, s.full())
+		return nil
+	}
+	for len(s.trace.panels) < mostPanels {
+		if s.p.check != nil {
+			if err := s.p.check(); err != nil {
+				return err
+			}
+		}
+		if s.x == s.far {
+			return nil
+		}
+		switch b, moves := s.where(); {
+		case moves == pinned:
+			s.straight(s.far, s.y, s.full())
+			return nil
+		case moves == ended:
+			return nil
+		case moves == aboveTable:
+			return &NoSolution{Code: "above_section", Detail: "the water rises above the last row of a tabulated section; give a table that goes on"}
+		case moves == fullFlow:
+			s.pressure()
+		default:
+			on, err := s.along(b)
+			if err != nil || !on {
+				return err
+			}
+		}
+	}
+	return unsolved("the water surface")
+}
+
+func (s *sweeper) full() bool { return s.p.channel.Section.Closed() && s.y >= s.p.height }
+
+// straight adds a panel on which the depth is linear.
+func (s *sweeper) straight(x, y float64, full bool) {
+	s.trace.panels = append(s.trace.panels, panel{x0: s.x, x1: x, y0: s.y, y1: y, form: straight, full: full})
+	s.x, s.y = x, y
+}
+
+// moves says how a sweep goes on.
+type moves uint8
+
+const (
+	alongBranch moves = iota
+	pinned            // the depth stays: at a normal depth, or at a break towards which it moves from both sides
+	fullFlow          // the closed section flows full
+	ended             // the sweep has no way to go
+	aboveTable        // the water stands above the last row of a table
+)
+
+// where looks at the depth from below and above and says on which branch the sweep goes on.
+func (s *sweeper) where() (flow.Branch, moves) {
+	p := s.p
+	for _, n := range p.poles {
+		if math.Abs(s.y-n) <= 4e-16*n {
+			return flow.Branch{}, pinned
+		}
+	}
+	switch open := !p.channel.Section.Closed(); {
+	case open && s.subcritical && s.y >= p.height:
+		return flow.Branch{}, aboveTable
+	case s.y > p.height && s.subcritical:
+		return flow.Branch{}, fullFlow
+	case s.y > p.height:
+		return flow.Branch{}, ended
+	}
+	// A branch of the regime that ends at this depth or holds it, and one that begins at or holds it.
+	below, above := -1, -1
+	for i, b := range p.branches {
+		if b.Rising != s.subcritical {
+			continue
+		}
+		if b.Lo < s.y && s.y <= b.Hi {
+			below = i
+		}
+		if b.Lo <= s.y && s.y < b.Hi {
+			above = i
+		}
+	}
+	sign := 1.0
+	if !s.subcritical {
+		sign = -1
+	}
+	falls := below >= 0 && s.p.steepness(p.channel.Section.At(s.y))*sign*s.direction < 0
+	rises := false
+	switch {
+	case above >= 0:
+		rises = s.p.steepness(p.channel.Section.At(math.Nextafter(s.y, math.Inf(1))))*sign*s.direction > 0
+	case s.full() && s.subcritical:
+		if s.p.steepness(p.channel.Geometry(s.y))*s.direction > 0 {
+			s.rise = 1
+			return flow.Branch{}, fullFlow
+		}
+	}
+	switch {
+	case rises && (!falls || s.rise > 0):
+		s.rise = 1
+		return p.branches[above], alongBranch
+	case falls:
+		s.rise = -1
+		return p.branches[below], alongBranch
+	case below >= 0 && (above >= 0 || s.full()):
+		return flow.Branch{}, pinned // it is pushed back from both sides, or stands still
+	case s.full() && s.subcritical:
+		return flow.Branch{}, ended
+	}
+	return flow.Branch{}, ended
+}
+
+// pressure follows a full section: the pressure line is straight.
+func (s *sweeper) pressure() {
+	p := s.p
+	slope := p.steepness(p.channel.Geometry(s.y)) / p.channel.Cosine()
+	y := s.y + slope*(s.far-s.x)
+	if y >= p.height {
+		s.straight(s.far, y, true)
+		return
+	}
+	x := s.x + (p.height-s.y)/slope
+	if s.direction*(s.far-x) < 0 {
+		x = s.far
+	}
+	s.rise = -1
+	s.straight(x, p.height, true)
+}
+
+// along integrates the curve on a branch until the stretch or the branch ends. It reports whether the sweep may go on.
+func (s *sweeper) along(b flow.Branch) (on bool, err error) {
+	p := s.p
+	stop := b.Hi
+	if s.rise < 0 {
+		stop = b.Lo
+	}
+	// Normal depths on the way are asymptotes.
+	pole := math.NaN()
+	for _, n := range p.poles {
+		if s.rise > 0 && n > s.y && n <= stop {
+			stop, pole = n, n
+			break
+		}
+		if s.rise < 0 && n < s.y && n >= stop {
+			stop, pole = n, n
+		}
+	}
+	for s.x != s.far {
+		if p.check != nil {
+			if err := p.check(); err != nil {
+				return false, err
+			}
+		}
+		if !math.IsNaN(pole) && math.Abs(s.y-pole) <= 2e-16*pole {
+			s.y = pole
+			s.straight(s.far, pole, false)
+			return false, nil
+		}
+		reached := s.step(stop, !math.IsNaN(pole))
+		if reached {
+			break
+		}
+		if len(s.trace.panels) >= mostPanels {
+			return false, unsolved("the water surface")
+		}
+	}
+	if s.x == s.far {
+		return false, nil
+	}
+	return s.beyond(b), nil
+}
+
+// chartAt chooses the chart at a depth on the way to a stop: the nearer of the poles on both sides, or the crown.
+func (s *sweeper) chartAt(stop float64) (c chart, until float64) {
+	p := s.p
+	lower, upper := 0.0, math.Inf(1)
+	for _, n := range p.poles {
+		if n < s.y || n == s.y && s.rise > 0 {
+			lower = max(lower, n)
+		}
+		if n > s.y || n == s.y && s.rise < 0 {
+			upper = min(upper, n)
+		}
+	}
+	crown := p.arched && p.height < upper
+	if crown {
+		upper = p.height
+	}
+	middle := lower + (upper-lower)/2
+	c, until = chart{pole: lower, side: 1}, stop
+	high := s.y > middle || s.y == middle && s.rise > 0
+	if high {
+		c = chart{pole: upper, side: -1, crown: crown}
+	}
+	if high && s.rise < 0 {
+		until = max(stop, middle)
+	} else if !high && s.rise > 0 {
+		until = min(stop, middle)
+	}
+	return c, until
+}
+
+// resolved is the tail of a series below which its panel counts as resolved.
+const resolved = 1e-12
+
+// step adds one panel, at most to the stop. asymptote tells that the stop is a normal depth that is never reached. It reports whether the stop was reached.
+func (s *sweeper) step(stop float64, asymptote bool) bool {
+	p := s.p
+	c, until := s.chartAt(stop)
+	u0 := c.of(s.y)
+	toPole := asymptote && until == c.pole
+	end := math.Inf(-1)
+	if !toPole {
+		if until == c.pole {
+			end = 0 // the crown
+		} else {
+			end = c.of(until)
+		}
+	}
+	width := 1.0
+	if c.crown {
+		width = math.Abs(end - u0)
+	}
+	if n := len(s.trace.panels); n > 0 {
+		if last := &s.trace.panels[n-1]; last.form == overDepth && last.chart == c {
+			width = 2 * math.Abs(last.u1-last.u0)
+		}
+	}
+	toward := math.Copysign(1, s.rise*c.side)
+	normal := c.pole != 0 && !c.crown
+	for {
+		u1 := u0 + toward*width
+		y1 := 0.0
+		clipped := !math.IsInf(end, 0) && toward*(end-u1) <= width*0.1
+		if clipped {
+			u1, y1 = end, until
+		} else {
+			y1, _, _ = c.depth(u1)
+		}
+		var values [order]float64
+		half := (u1 - u0) / 2
+		good := true
+		for j, t := range rule.node {
+			y, distance, rate := c.depth(u0 + half*(t+1))
+			g := p.channel.Section.At(y)
+			steepness := 0.0
+			if normal {
+				steepness = p.steepnessNear(g, c.pole, distance)
+			} else {
+				steepness = p.steepness(g)
+			}
+			values[j] = p.motion.EnergyRate(g) / steepness * rate * half
+			good = good && values[j]*s.direction > 0
+		}
+		series := newSeries(&values)
+		if width > 1e-9 && (!(series.tail() < resolved) || !good) && math.Abs(u1-u0) > 1e-9*math.Abs(u0) {
+			width = math.Min(width, math.Abs(u1-u0)) / 2
+			continue
+		}
+		whole, _ := series.integral(1)
+		x1 := s.x + whole
+		pn := panel{x0: s.x, x1: x1, y0: s.y, y1: y1, form: overDepth, chart: c, u0: u0, u1: u1, s: series}
+		if s.direction*(x1-s.far) >= 0 {
+			// The stretch ends inside the panel.
+			pn.x1 = x1
+			y := pn.depth(s.far)
+			if x1 == s.far {
+				y = y1
+			}
+			s.trace.panels = append(s.trace.panels, pn)
+			s.x, s.y = s.far, y
+			return true
+		}
+		s.trace.panels = append(s.trace.panels, pn)
+		s.x, s.y = x1, y1
+		return clipped && until == stop
+	}
+}
+
+// beyond decides what becomes of a sweep that has reached the end of its branch; it reports whether it goes on.
+func (s *sweeper) beyond(b flow.Branch) bool {
+	p := s.p
+	i := slices.Index(p.branches, b)
+	if s.rise > 0 && s.y == p.height {
+		return s.subcritical // full from here (or above a table), or the end of a supercritical flow that fills the section
+	}
+	j := i + int(s.rise)
+	if j < 0 || j >= len(p.branches) {
+		return false
+	}
+	at := s.y
+	next := p.branches[j]
+	energy := p.motion.Energy(p.channel.Section.At(at))
+	if s.rise < 0 {
+		energy = p.motion.Energy(p.channel.Section.At(math.Nextafter(at, math.Inf(1))))
+	}
+	if next.Rising == s.subcritical {
+		there := p.motion.Energy(p.channel.Section.At(at))
+		if s.rise > 0 {
+			there = p.motion.Energy(p.channel.Section.At(math.Nextafter(at, math.Inf(1))))
+		}
+		if math.Abs(there-energy) <= 1e-12*energy {
+			return true // a break of the section only
+		}
+	}
+	// On, at equal energy, on the next branch of the regime in the direction in which the depth was moving.
+	for ; j >= 0 && j < len(p.branches); j += int(s.rise) {
+		next := p.branches[j]
+		if next.Rising != s.subcritical {
+			continue
+		}
+		if y, ok := onBranch(&p.motion, p.channel, next, energy); ok && (y-at)*s.rise > 0 {
+			s.y = y
+			return true
+		}
+	}
+	return false
+}

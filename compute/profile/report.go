@@ -1,0 +1,281 @@
+package profile
+
+import (
+	"math"
+	"slices"
+
+	"leat/compute"
+	"leat/compute/flow"
+)
+
+// straightness is how far, relative to the depth, a straight line between two stations may lie off the depth where no report is asked for.
+const straightness = 1e-3
+
+// answer describes the flow that the walk found.
+func (c *chain) answer() (*Answer, error) {
+	a := &Answer{Jumps: c.jumps, Controls: c.controls, Extent: math.NaN()}
+	if a.Jumps == nil {
+		a.Jumps = []Jump{}
+	}
+	slices.SortStableFunc(a.Controls, func(x, y Control) int {
+		switch {
+		case x.Chainage < y.Chainage:
+			return -1
+		case x.Chainage > y.Chainage:
+			return 1
+		}
+		return 0
+	})
+	if err := c.summaries(a); err != nil {
+		return nil, err
+	}
+	if err := c.points(a); err != nil {
+		return nil, err
+	}
+	if err := c.curves(a); err != nil {
+		return nil, err
+	}
+	c.extent(a)
+	a.Notes = c.notes.list
+	return a, nil
+}
+
+// summaries describes every reach by the discharge at its downstream end, and every interval by its downstream station's.
+func (c *chain) summaries(a *Answer) error {
+	for _, l := range c.legs {
+		if c.run.Checkpoint != nil {
+			if err := c.run.Checkpoint(); err != nil {
+				return err
+			}
+		}
+		s := l.side(l.length)
+		n, err := newNaming(s, l.total(l.length))
+		if err != nil {
+			return err
+		}
+		r := ReachSummary{NormalDepth: math.NaN(), CriticalDepth: math.NaN(), Class: n.class}
+		if len(n.normal) > 0 {
+			r.NormalDepth = n.normal[0]
+		}
+		if len(n.critical) > 0 {
+			r.CriticalDepth = n.critical[0]
+		}
+		a.Reaches = append(a.Reaches, r)
+	}
+	return nil
+}
+
+// naming is what a curve's name depends on.
+type naming struct {
+	normal, critical []float64
+	class            flow.SlopeClass
+}
+
+func newNaming(s side, total float64) (naming, error) {
+	var n naming
+	var a, b flow.Absence
+	n.normal, a = s.channel.Normal(total, nil)
+	n.critical, b = s.channel.Critical(total, nil)
+	if a == flow.Unsolved || b == flow.Unsolved {
+		return n, unsolved("normal and critical depth")
+	}
+	n.class = s.channel.Class(total, n.normal, n.critical)
+	return n, nil
+}
+
+// names returns the naming at a chainage of a leg: the leg's own where the discharge does not vary.
+func (c *chain) names(l *leg, x float64) (naming, error) {
+	if _, ok := l.stretch.(*prismatic); ok {
+		if l.naming == nil {
+			n, err := newNaming(l.side(0), l.total(0))
+			if err != nil {
+				return naming{}, err
+			}
+			l.naming = &n
+		}
+		return *l.naming, nil
+	}
+	return newNaming(l.side(x), l.total(x))
+}
+
+// point describes the flow at a chainage of a segment.
+func (c *chain) point(g *segment, x float64) (Point, error) {
+	l := g.leg
+	depth := g.trace.depth(x)
+	s := l.side(x)
+	total := l.total(x)
+	state := s.channel.State(depth, total)
+	p := Point{Chainage: l.start + x, Reach: l.reach, BedLevel: l.level(x), State: state}
+	p.WaterLevel = p.BedLevel + depth*s.channel.Cosine()
+	p.EnergyLevel = p.BedLevel + state.SpecificEnergy
+	if !l.prismatic {
+		return p, nil
+	}
+	n, err := c.names(l, x)
+	if err != nil {
+		return p, err
+	}
+	p.Curve = s.channel.CurveName(&state, n.class, n.normal)
+	return p, nil
+}
+
+// points reports the stations: at the chainages asked for, or as many as straight lines need. At a jump, a drop or a break two may stand at one chainage.
+func (c *chain) points(a *Answer) error {
+	for i := range c.segments {
+		g := &c.segments[i]
+		if c.run.Checkpoint != nil {
+			if err := c.run.Checkpoint(); err != nil {
+				return err
+			}
+		}
+		places := c.places(g)
+		for _, x := range places {
+			p, err := c.point(g, x)
+			if err != nil {
+				return err
+			}
+			if n := len(a.Stations); n > 0 {
+				last := &a.Stations[n-1]
+				if last.Chainage == p.Chainage && last.Reach == p.Reach && last.State.Geometry.Depth == p.State.Geometry.Depth {
+					continue
+				}
+			}
+			a.Stations = append(a.Stations, p)
+			if c.run.Report.Most > 0 && len(a.Stations) > c.run.Report.Most {
+				return compute.Faults{{Member: "report", Code: "too_many_stations",
+					Detail: "The water surface needs more stations than the limit report_points; ask for fewer by report."}}
+			}
+		}
+		if c.run.Report.Spacing == 0 && c.run.Report.At == nil || len(places) > 1 {
+			c.balance(a, g, places)
+		} else {
+			c.balance(a, g, []float64{g.from, g.to})
+		}
+	}
+	for _, t := range c.turns {
+		a.Balance.Momentum = max(a.Balance.Momentum, t.residual)
+	}
+	return nil
+}
+
+// places returns the chainages of a segment's leg that are reported.
+func (c *chain) places(g *segment) []float64 {
+	r := &c.run.Report
+	start := g.leg.start
+	var out []float64
+	switch {
+	case r.At != nil:
+		i, _ := slices.BinarySearch(r.At, start+g.from)
+		for ; i < len(r.At) && r.At[i] <= start+g.to; i++ {
+			out = append(out, min(max(r.At[i]-start, g.from), g.to))
+		}
+		return out
+	case r.Spacing > 0:
+		end := c.legs[len(c.legs)-1]
+		whole := end.start + end.length
+		for k := math.Ceil((start + g.from) / r.Spacing); ; k++ {
+			x := min(k*r.Spacing, whole)
+			if x > start+g.to {
+				return out
+			}
+			out = append(out, min(max(x-start, g.from), g.to))
+			if x == whole {
+				return out
+			}
+		}
+	}
+	out = append(out, g.from)
+	knots := g.knots()
+	for i := 1; i < len(knots); i++ {
+		out = c.straighten(g, out, knots[i-1], knots[i], 0)
+		out = append(out, knots[i])
+	}
+	return out
+}
+
+// straighten appends the chainages between two others, rising, that straight lines need.
+func (c *chain) straighten(g *segment, out []float64, from, to float64, level int) []float64 {
+	a, b := g.trace.depth(from), g.trace.depth(to)
+	off := false
+	for _, w := range [3]float64{0.25, 0.5, 0.75} {
+		y := g.trace.depth(from + (to-from)*w)
+		off = off || math.Abs(a+(b-a)*w-y) > straightness*y
+	}
+	if !off || level > 30 {
+		return out
+	}
+	middle := from + (to-from)/2
+	out = c.straighten(g, out, from, middle, level+1)
+	out = append(out, middle)
+	return c.straighten(g, out, middle, to, level+1)
+}
+
+// knots returns the chainages at which the panels of a segment begin and end, rising, both ends of the segment included.
+func (g *segment) knots() []float64 {
+	out := []float64{g.from, g.to}
+	for i := range g.trace.panels {
+		if x := g.trace.panels[i].x1; x > g.from && x < g.to {
+			out = append(out, x)
+		}
+	}
+	slices.Sort(out)
+	return slices.Compact(out)
+}
+
+// curves lists the stretches of one curve.
+func (c *chain) curves(a *Answer) error {
+	for i := range c.segments {
+		g := &c.segments[i]
+		knots := g.knots()
+		for k := 1; k < len(knots); k++ {
+			middle := knots[k-1] + (knots[k]-knots[k-1])/2
+			p, err := c.point(g, middle)
+			if err != nil {
+				return err
+			}
+			span := CurveSpan{From: g.leg.start + knots[k-1], To: g.leg.start + knots[k], Reach: g.leg.reach, Curve: p.Curve}
+			if n := len(a.Curves); n > 0 && a.Curves[n-1].Reach == span.Reach && a.Curves[n-1].Curve == span.Curve && a.Curves[n-1].To == span.From {
+				a.Curves[n-1].To = span.To
+				continue
+			}
+			a.Curves = append(a.Curves, span)
+		}
+	}
+	return nil
+}
+
+// extent looks from the downstream end for the first place within 1 % of its own reach's normal depth.
+func (c *chain) extent(a *Answer) {
+	const band = 0.01
+	end := c.legs[len(c.legs)-1]
+	whole := end.start + end.length
+	for i := len(c.segments) - 1; i >= 0; i-- {
+		g := &c.segments[i]
+		normal := a.Reaches[slices.Index(c.legs, g.leg)].NormalDepth
+		if math.IsNaN(normal) {
+			continue
+		}
+		off := func(x float64) float64 { return math.Abs(g.trace.depth(x)-normal) - band*normal }
+		knots := g.knots()
+		for k := len(knots) - 1; k >= 0; k-- {
+			if off(knots[k]) > 0 {
+				continue
+			}
+			x := knots[k]
+			if k < len(knots)-1 { // it came into the band between this knot and the one before
+				lo, hi := knots[k], knots[k+1]
+				for range 100 {
+					middle := lo + (hi-lo)/2
+					if off(middle) <= 0 {
+						lo = middle
+					} else {
+						hi = middle
+					}
+				}
+				x = lo
+			}
+			a.Extent = whole - (g.leg.start + x)
+			return
+		}
+	}
+}

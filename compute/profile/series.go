@@ -1,0 +1,144 @@
+package profile
+
+import "math"
+
+// order is the number of Gauss points of a panel; a panel's function is a polynomial of one degree less.
+const order = 12
+
+// A series is a function on [-1, 1] as a sum of Legendre polynomials, P_0 first.
+type series [order]float64
+
+// rule holds the nodes of the Gauss-Legendre rule and the matrix that turns the values at them into a series (Abramowitz and Stegun 1964,
+// 25.4.29 and 22.2.10).
+var rule = newRule()
+
+type legendreRule struct {
+	node    [order]float64
+	weight  [order]float64
+	project [order][order]float64
+}
+
+func newRule() *legendreRule {
+	r := new(legendreRule)
+	for j := range order {
+		// Newton's iteration from Tricomi's first guess.
+		t := -math.Cos(math.Pi * (float64(j) + 0.75) / (order + 0.5))
+		var slope float64
+		for range 8 {
+			p, below := 1.0, 0.0
+			for k := 0; k < order; k++ {
+				p, below = (float64(2*k+1)*t*p-float64(k)*below)/float64(k+1), p
+			}
+			slope = order * (t*p - below) / (t*t - 1)
+			t -= p / slope
+		}
+		r.node[j] = t
+		r.weight[j] = 2 / ((1 - t*t) * slope * slope)
+		p, below := 1.0, 0.0
+		for k := 0; k < order; k++ {
+			r.project[k][j] = float64(2*k+1) / 2 * r.weight[j] * p
+			p, below = (float64(2*k+1)*t*p-float64(k)*below)/float64(k+1), p
+		}
+	}
+	return r
+}
+
+// newSeries returns the series of a function from its values at the nodes.
+func newSeries(values *[order]float64) series {
+	var s series
+	for k := range order {
+		sum := 0.0
+		for j := range order {
+			sum += rule.project[k][j] * values[j]
+		}
+		s[k] = sum
+	}
+	return s
+}
+
+// tail returns the size of the last two coefficients relative to the largest: how well the series resolves its function.
+func (s *series) tail() float64 {
+	largest := 0.0
+	for _, c := range s {
+		largest = max(largest, math.Abs(c))
+	}
+	if largest == 0 {
+		return 0
+	}
+	return (math.Abs(s[order-1]) + math.Abs(s[order-2])) / largest
+}
+
+// at returns the value at t.
+func (s *series) at(t float64) float64 {
+	p, below, sum := 1.0, 0.0, 0.0
+	for k := 0; k < order; k++ {
+		sum += s[k] * p
+		p, below = next(k, t, p, below), p
+	}
+	return sum
+}
+
+// next returns P_(k+1)(t) from P_k and P_(k-1).
+func next(k int, t, p, below float64) float64 {
+	return (recurrence[k][0]*t)*p - recurrence[k][1]*below
+}
+
+// recurrence holds (2k+1)/(k+1) and k/(k+1).
+var recurrence = func() (r [order + 1][2]float64) {
+	for k := range r {
+		r[k] = [2]float64{float64(2*k+1) / float64(k+1), float64(k) / float64(k+1)}
+	}
+	return r
+}()
+
+// integral returns the integral from -1 to t, and the value at t.
+func (s *series) integral(t float64) (integral, value float64) {
+	p, below := 1.0, -1.0 // with P_(-1) = -1 the formula below holds for k = 0 too
+	for k := 0; k < order; k++ {
+		value += s[k] * p
+		var above float64
+		if k == 0 {
+			above = t
+			integral += s[0] * (above - below)
+		} else {
+			above = next(k, t, p, below)
+			integral += s[k] * (above - below) * inverse[k]
+		}
+		p, below = above, p
+	}
+	return integral, value
+}
+
+// inverse holds 1/(2k+1).
+var inverse = func() (r [order]float64) {
+	for k := range r {
+		r[k] = 1 / float64(2*k+1)
+	}
+	return r
+}()
+
+// invert returns the t in [-1, 1] at which the integral from -1, which must be monotone, is a value between 0 and the whole.
+func (s *series) invert(integral float64) float64 {
+	whole, _ := s.integral(1)
+	lo, hi := -1.0, 1.0
+	t := -1 + 2*integral/whole
+	sign := math.Copysign(1, whole)
+	for range 60 {
+		if !(t > lo && t < hi) {
+			t = lo + (hi-lo)/2
+		}
+		x, slope := s.integral(t)
+		e := x - integral
+		if sign*e < 0 {
+			lo = t
+		} else {
+			hi = t
+		}
+		step := e / slope
+		if !(math.Abs(step) > 4e-16) || hi-lo < 4e-16 {
+			return t
+		}
+		t -= step
+	}
+	return t
+}

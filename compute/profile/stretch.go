@@ -1,0 +1,62 @@
+package profile
+
+// A stretch is a part of the chain on which nothing jumps but the depth: a prismatic reach, or one with lateral inflow, or the interval between two stations.
+type stretch interface {
+	// sweep follows the flow of one regime from a place and a depth to the upstream or the downstream end, or to where its branch ends.
+	sweep(x, depth, direction float64, subcritical bool) (*trace, error)
+	// side returns the channel and the motion at a chainage of the stretch.
+	side(x float64) side
+	// total returns the total discharge at a chainage.
+	total(x float64) float64
+	// rates returns the numerator and the denominator of ddepth/dx at a chainage and depth.
+	rates(x, depth float64) (numerator, denominator float64)
+	// controls returns the places inside at which the flow passes from subcritical to supercritical by itself, from upstream to downstream.
+	controls() ([]passage, error)
+}
+
+// A passage is a place and its critical depth.
+type passage struct{ x, depth float64 }
+
+// A leg is a stretch with its place in the chain and the subcritical flow in it.
+type leg struct {
+	stretch
+	reach     int     // index of the reach, or of the interval
+	start     float64 // chainage of its upstream end in the run
+	length    float64
+	bed       float64 // bed level at its upstream end
+	slope     float64
+	prismatic bool
+	inside    []passage
+	subs      []*trace // subcritical sweeps, from downstream to upstream: from the end, and from each control inside
+	joint     joint    // to the next leg
+	naming    *naming  // of its curves, once known
+	above     above    // what the joint makes of the flow below it; of the last leg the boundary
+}
+
+// level returns the bed level at a chainage of the leg.
+func (l *leg) level(x float64) float64 { return l.bed - l.slope*x }
+
+// sub returns the subcritical sweep that covers a chainage, nil for none.
+func (l *leg) sub(x float64) *trace {
+	for _, t := range l.subs {
+		if t.covers(x) {
+			return t
+		}
+	}
+	return nil
+}
+
+// force returns the specific force of all barrels at a chainage and depth.
+func (l *leg) force(x, depth float64) float64 {
+	s := l.side(x)
+	return s.force(depth) * float64(max(s.channel.Barrels, 1))
+}
+
+func (p *prismatic) side(float64) side            { return side{p.channel, p.motion} }
+func (p *prismatic) total(float64) float64        { return p.discharge }
+func (p *prismatic) controls() ([]passage, error) { return nil, nil }
+
+func (p *prismatic) rates(_, depth float64) (numerator, denominator float64) {
+	g := p.channel.Geometry(depth)
+	return p.steepness(g), p.motion.EnergyRate(g)
+}
