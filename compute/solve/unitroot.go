@@ -48,8 +48,9 @@ func UnitRoot(f Ratio, lo, hi, guess float64, rising bool) (x float64, ok bool) 
 		switch {
 		case d == 0 || !(d > -1.5 && d < 1.5) || step > 8 && step%3 == 0 && !(math.Abs(d) < 1e-9):
 			next = middle(lo, hi)
-		case math.Abs(e) < 1e-6 && e*e*max(0.02, math.Abs(e)/(before*before)) < 1e-17:
-			// Converging by squares, at the pace of the step before: what is left at next is below the last place.
+		case step > 0 && math.Abs(e) < 1e-6 && e*e*max(0.02, math.Abs(e)/(before*before)) < 1e-17*min(1, math.Abs(power)):
+			// Converging by squares, at the pace of the step before: what is left at next is below the last place. The first step tells no
+			// pace, and where the function is flat a small e is no small distance.
 			if next >= lo && next <= hi {
 				return next, true
 			}
