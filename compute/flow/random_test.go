@@ -9,6 +9,8 @@ import (
 	"sync"
 	"sync/atomic"
 	"testing"
+
+	"leat/compute/friction/frictiontest"
 )
 
 var randomSolves = flag.Int("solves", 20_000, "how many random channels TestRandomSolves solves")
@@ -27,7 +29,7 @@ func TestRandomSolves(t *testing.T) {
 					return
 				}
 				r := rand.New(rand.NewPCG(uint64(seed), 7))
-				kind := r.IntN(len(kinds))
+				kind := r.IntN(len(frictiontest.Kinds))
 				c, q, err := randomChannel(r, kind)
 				if err != nil {
 					impossible.Add(1)
@@ -37,7 +39,7 @@ func TestRandomSolves(t *testing.T) {
 				x := examiner{c: &c, q: q, dense: seed%50 == 0}
 				x.examine(r)
 				if len(x.faults) > 0 && shown.Add(1) <= 20 {
-					t.Errorf("seed %d, %s, law %T, slope %v, discharge %v:", seed, kinds[kind].name, c.Law, c.Slope, q)
+					t.Errorf("seed %d, %s, law %T, slope %v, discharge %v:", seed, frictiontest.Kinds[kind].Name, c.Law, c.Slope, q)
 					for _, f := range x.faults {
 						t.Errorf("  %s", f)
 					}
