@@ -143,8 +143,7 @@ func TestClientThatSendsTooMuchBeforeItReadsFindsTheProblem(t *testing.T) {
 }
 
 func TestSlowHeaderIsCut(t *testing.T) {
-	r := start(t, nil)
-	r.Server.http.ReadHeaderTimeout = 200 * time.Millisecond // the listener is idle yet, so nothing reads it meanwhile
+	r := start(t, nil, func(s *http.Server) { s.ReadHeaderTimeout = 200 * time.Millisecond })
 	c := r.dial()
 	io.WriteString(c, "POST /v1/depths HTTP/1.1\r\nHost: le")
 	began := time.Now()
@@ -154,8 +153,7 @@ func TestSlowHeaderIsCut(t *testing.T) {
 }
 
 func TestSlowBodyIs408(t *testing.T) {
-	r := start(t, nil)
-	r.Server.http.ReadTimeout = 200 * time.Millisecond // the listener is idle yet, so nothing reads it meanwhile
+	r := start(t, nil, func(s *http.Server) { s.ReadTimeout = 200 * time.Millisecond })
 	c := r.dial()
 	io.WriteString(c, "POST /v1/depths HTTP/1.1\r\nHost: leat\r\nContent-Type: application/json\r\nContent-Length: 20\r\n\r\n{")
 	response, err := http.ReadResponse(bufio.NewReader(c), nil)

@@ -5,16 +5,15 @@ import (
 	"context"
 	"errors"
 	"io"
-	"log/slog"
 	"net"
 	"net/http"
-	"os"
 	"strings"
 	"sync"
 	"testing"
 	"time"
 
 	"github.com/go-json-experiment/json"
+	"go.uber.org/goleak"
 
 	"leat/api/operation"
 	"leat/api/wire"
@@ -136,8 +135,8 @@ func testSurroundings(log io.Writer) Surroundings {
 	}
 }
 
-// start starts a server with fake operations over a real socket; it is stopped when the test ends.
-func start(t *testing.T, change func(*Config, *Surroundings)) *running {
+// start starts a server with fake operations over a real socket, adjusted before it listens; it is stopped when the test ends.
+func start(t *testing.T, change func(*Config, *Surroundings), adjust ...func(*http.Server)) *running {
 	t.Helper()
 	config, log := testConfig(t), new(logBuffer)
 	around := testSurroundings(log)
@@ -147,6 +146,9 @@ func start(t *testing.T, change func(*Config, *Surroundings)) *running {
 	server, err := New(config, []*operation.Operation{fakeOperation("section"), fakeOperation("depths"), fakeOperation("rating")}, around)
 	if err != nil {
 		t.Fatal(err)
+	}
+	for _, f := range adjust {
+		f(server.http)
 	}
 	address, err := server.Start()
 	if err != nil {
@@ -267,6 +269,5 @@ func (r reply) problem(t *testing.T, status int) seenProblem {
 }
 
 func TestMain(m *testing.M) {
-	slog.SetDefault(slog.New(slog.DiscardHandler))
-	os.Exit(m.Run())
+	goleak.VerifyTestMain(m)
 }

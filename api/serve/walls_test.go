@@ -161,11 +161,27 @@ func rank(folder string) int {
 	return slices.IndexFunc(order, func(row []string) bool { return slices.Contains(row, folder) })
 }
 
+// supported returns the package that a package of support for tests stands below: "x/y/ytest" supports "x/y".
+func supported(folder string) (string, bool) {
+	parent, base := path.Split(folder)
+	parent = strings.TrimSuffix(parent, "/")
+	return parent, parent != "" && base == path.Base(parent)+"test"
+}
+
 func TestImportsPointOneWay(t *testing.T) {
 	h := readHouse(t)
 	for folder, files := range h {
 		_, isAside := aside[folder]
 		inside := strings.HasPrefix(folder, "cmd/internal/")
+		subject, isSupport := supported(folder)
+		if isSupport {
+			for _, name := range importsOf(files) {
+				if own, isOwn := ours(name); isOwn && (rank(own) < 0 || rank(own) < rank(subject)) {
+					t.Errorf("%s imports %s: tests of %s need nothing above it", folder, name, subject)
+				}
+			}
+			continue
+		}
 		if rank(folder) < 0 && !isAside && !inside {
 			t.Errorf("package %s has no place in the order of the house: give it one here and in DEVELOPERS.md", folder)
 			continue
@@ -176,6 +192,10 @@ func TestImportsPointOneWay(t *testing.T) {
 				continue
 			}
 			allowed, isAsideToo := aside[own]
+			if _, isSupport := supported(own); isSupport {
+				t.Errorf("%s imports %s: that is for tests", folder, name)
+				continue
+			}
 			switch {
 			case isAside:
 				t.Errorf("%s imports %s: it must import nothing of ours", folder, name)
@@ -256,6 +276,12 @@ func TestWallsCanFail(t *testing.T) {
 	}
 	if isStandard("github.com/gin-gonic/gin") || isStandard("leat/compute") || !isStandard("net/http") {
 		t.Error("isStandard")
+	}
+	if subject, found := supported("compute/friction/frictiontest"); !found || subject != "compute/friction" {
+		t.Error("supported")
+	}
+	if _, found := supported("compute/latest"); found {
+		t.Error("supported")
 	}
 	if _, found := ours("leather/x"); found {
 		t.Error("ours")
