@@ -21,6 +21,15 @@ type inputs struct {
 
 // channel builds the channel that a request describes, or tells every fault of its section and roughness.
 func (in inputs) channel() (flow.Channel, *wire.Problem) {
+	c, faults := in.build("", nil)
+	if len(faults) > 0 {
+		return flow.Channel{}, wire.InvalidRequest(faults...)
+	}
+	return c, nil
+}
+
+// build builds the channel that the members at a place of the request describe, and adds the faults of section and roughness.
+func (in inputs) build(place string, faults []wire.Fault) (flow.Channel, []wire.Fault) {
 	c := flow.Channel{
 		Slope:               in.bedSlope.Or(0),
 		Gravity:             in.common.Gravity.Or(compute.StandardGravity),
@@ -29,32 +38,28 @@ func (in inputs) channel() (flow.Channel, *wire.Problem) {
 		MomentumCoefficient: in.common.MomentumCoefficient.Or(0),
 		Bank:                in.section.BankHeight.Or(0),
 	}
-	var faults []wire.Fault
 	built, err := newSection(in.section)
-	faults = gather(faults, "/section", err)
+	faults = gather(faults, place, "/section", err)
 	if err == nil {
 		c.Section = built
 		if c.Bank > c.Section.Height() {
-			faults = append(faults, wire.Fault{Pointer: "/section/bank_height", Code: "above_section",
+			faults = append(faults, wire.Fault{Pointer: place + "/section/bank_height", Code: "above_section",
 				Detail: "bank_height lies above the section's greatest depth; leave it out or give one not above the last row"})
 		}
 	}
 	if in.roughness.Given && err == nil {
 		law, err := newLaw(in.roughness, c.Section, c.Gravity)
-		faults = gather(faults, "/roughness", err)
+		faults = gather(faults, place, "/roughness", err)
 		c.Law = law
 	}
-	if len(faults) > 0 {
-		return flow.Channel{}, wire.InvalidRequest(faults...)
-	}
-	return c, nil
+	return c, faults
 }
 
-// gather adds the faults of a constructor of compute under the pointer of what was being built.
-func gather(all []wire.Fault, base string, err error) []wire.Fault {
+// gather adds the faults of a constructor of compute under the pointer of what was being built: a member at a place of the request.
+func gather(all []wire.Fault, place, member string, err error) []wire.Fault {
 	var faults compute.Faults
-	if errors.As(err, &faults) {
-		return append(all, wire.FaultsUnder(base, faults)...)
+	if err != nil && errors.As(err, &faults) {
+		return append(all, wire.FaultsUnder(place+member, faults)...)
 	}
 	return all
 }

@@ -9,6 +9,10 @@ type Options struct {
 	Brief  bool         // ?detail=brief
 	Inside bool         // put the id inside the answer object (unary); in bulk it stands beside it
 	Limits *wire.Limits // nil for the defaults
+
+	// Begin, unless nil, is called where a solve begins that may take long. What it returns is called at least every 0.1 ms of the
+	// solve, and an error of it ends the solve: where that is a *wire.Problem, it is the request's.
+	Begin func() (checkpoint func() error)
 }
 
 // An Operation is one calculation of the contract. It is immutable and safe for concurrent use.
@@ -17,6 +21,8 @@ type Operation struct {
 	Name string
 	// Form is an answer without content of the type that the operation gives: its methods say in which forms beside JSON answers can be told.
 	Form wire.Answer
+	// Long says that requests may be long and their solves take a while.
+	Long bool
 	// Solve decodes one request object, checks it and solves it. With a problem, which is without Instance, what it returns holds
 	// the ID alone, where the body could be read that far.
 	Solve func(body []byte, options Options) (Solved, *wire.Problem)

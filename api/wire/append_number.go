@@ -22,6 +22,9 @@ func appendNumber(dst []byte, v float64) []byte {
 	return strconv.AppendFloat(dst, v, 'f', -1, 64)
 }
 
+// AppendNumber appends a number as answers write it: see appendNumber.
+func AppendNumber(dst []byte, v float64) []byte { return appendNumber(dst, v) }
+
 // trimExponent takes the leading zero out of an exponent of two digits, in place: 1e-09 becomes 1e-9.
 func trimExponent(number []byte) []byte {
 	n := len(number)

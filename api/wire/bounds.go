@@ -56,7 +56,7 @@ func (f *field) rules(tag string) (required bool) {
 			}
 		case "floor":
 			b.floor = within(parameter)
-		case "columns", "named":
+		case "columns", "named", "ordinates":
 			f.bounds = columnBounds(parameter)
 		default:
 			panic(fmt.Sprintf("wire: %s: unknown rule %q in a validate tag", f.name, rule))

@@ -11,7 +11,7 @@ func (f *field) outOfRange(at pointer, column int, value float64, system System)
 	}
 	q := f.quantity[column]
 	what := f.name
-	if len(f.bounds) > 1 {
+	if len(f.bounds) > 1 || f.shape == shapePositions {
 		what = "This number"
 	} else if f.shape == shapeNumbers || f.shape == shapeNamed {
 		what = "Every number of " + f.name

@@ -46,6 +46,15 @@ func newChecker() *validator.Validate {
 		b := columnBounds(field.Param())[0]
 		return b.holds(field.Field().FieldByName("Value").Float())
 	}))
+	must(v.RegisterValidation("ordinates", func(field validator.FieldLevel) bool {
+		b := columnBounds(field.Param())[0]
+		for i := range mostOrdinates { // those not given are 0
+			if !b.holds(field.Field().Field(0).Index(i).Float()) {
+				return false
+			}
+		}
+		return true
+	}))
 	must(v.RegisterValidation("floor", func(field validator.FieldLevel) bool {
 		least, err := strconv.ParseFloat(field.Param(), 64)
 		value := field.Field().Float()
@@ -115,6 +124,14 @@ func (p *plan) translate(faults []Fault, e validator.FieldError, system System) 
 		last := segments[len(segments)-1]
 		at = at[:len(at)-len("/")-len(last)].member(n.Name)
 		return append(faults, f.outOfRange(at, 0, n.Value, system))
+	case "ordinates":
+		p, _ := e.Value().(Position)
+		for i, value := range p.Ordinates {
+			if !f.bounds[0].holds(value) {
+				faults = append(faults, f.outOfRange(at.index(i), 0, value, system))
+			}
+		}
+		return faults
 	case "columns":
 		row := reflect.ValueOf(e.Value())
 		for i := range f.bounds {

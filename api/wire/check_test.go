@@ -36,6 +36,8 @@ func TestBoundsAreTheValidators(t *testing.T) {
 						value = Pair{row, true}
 					case shapeNamed:
 						value = []NamedNumber{{"a", v}}
+					case shapePositions:
+						value = []Position{{Ordinates: [4]float64{0, v}, Count: 2}, {Count: 2}}
 					case shapeNumbers:
 						value = []float64{v}
 					case shapePairs:
@@ -95,7 +97,7 @@ func TestListLengthsAreTheValidators(t *testing.T) {
 						t.Errorf("%v.%s = %q: compiled %v, validator %v", typ, f.name, name, known, err)
 					}
 				}
-			case shapeNumbers, shapePairs, shapeRows, shapeObjects, shapeNamed, shapeTexts:
+			case shapeNumbers, shapePairs, shapeRows, shapePositions, shapeObjects, shapeNamed, shapeTexts:
 				// Only the length is judged here: take the tag up to where it goes into the items.
 				tag, _, _ := strings.Cut(sf.Tag.Get("validate"), ",dive")
 				for n := range 4 {

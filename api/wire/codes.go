@@ -37,4 +37,7 @@ const (
 	codeNotPositive       = "not_positive"
 	codeOutOfRange        = "out_of_range"
 	codeNotRising         = "not_rising"
+	codeMisplacedMember   = "misplaced_member"
+	codeSectionDiffers    = "section_differs"
+	codeNoLength          = "no_length"
 )

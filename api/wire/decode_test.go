@@ -15,8 +15,8 @@ const (
 
 // decodeAs decodes a body as the request of an operation.
 func decodeAs(operation, body string) (Request, *Problem) {
-	requests := map[string]Request{"section": new(SectionRequest), "depths": new(DepthsRequest), "rating": new(RatingRequest)}
-	limits := Limits{ArrayItems: 50, Points: 60}
+	requests := map[string]Request{"section": new(SectionRequest), "depths": new(DepthsRequest), "rating": new(RatingRequest), "profile": new(ProfileRequest)}
+	limits := Limits{ArrayItems: 50, Points: 60, Reaches: 8, Stations: 9, ReportPoints: 55}
 	r := requests[operation]
 	return r, Decode([]byte(body), SI, &limits, r)
 }

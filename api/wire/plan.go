@@ -51,13 +51,14 @@ const (
 	shapeBool
 	shapeName // one of an enumeration
 	shapeID
-	shapeNumbers // a list
-	shapePairs   // a list of [2]float64
-	shapeRows    // a list of [4]float64
-	shapePair    // a list of exactly two numbers
-	shapeNamed   // an object of numbers under names of the caller's
-	shapeTexts   // a list of strings
-	shapeRaw     // any value
+	shapeNumbers   // a list
+	shapePairs     // a list of [2]float64
+	shapeRows      // a list of [4]float64
+	shapePair      // a list of exactly two numbers
+	shapePositions // a list of places of a geometry
+	shapeNamed     // an object of numbers under names of the caller's
+	shapeTexts     // a list of strings
+	shapeRaw       // any value
 	shapeObject
 	shapeObjects // a list
 )
@@ -67,6 +68,7 @@ var plans = compilePlans(
 	SectionRequest{},
 	DepthsRequest{},
 	RatingRequest{},
+	ProfileRequest{},
 )
 
 func compilePlans(requests ...any) map[reflect.Type]*plan {
@@ -165,6 +167,8 @@ func shapeOf(t reflect.Type) shape {
 		return shapeID
 	case reflect.TypeFor[Pair]():
 		return shapePair
+	case reflect.TypeFor[[]Position]():
+		return shapePositions
 	case reflect.TypeFor[[]NamedNumber]():
 		return shapeNamed
 	case reflect.TypeFor[[]string]():

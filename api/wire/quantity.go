@@ -10,6 +10,7 @@ const (
 	QuantityArea
 	QuantityVolume // first moments of area and specific force
 	QuantityDischarge
+	QuantityDischargePerLength
 	QuantityVelocity
 	QuantityAcceleration
 	QuantityStress
@@ -43,6 +44,7 @@ var units = [quantities]unit{
 	QuantityArea:               {name: "area", si: "m2", us: "ft2", siUCUM: "m2", usUCUM: "[sft_i]", inSI: foot * foot},
 	QuantityVolume:             {name: "volume", si: "m3", us: "ft3", siUCUM: "m3", usUCUM: "[cft_i]", inSI: foot * foot * foot},
 	QuantityDischarge:          {name: "discharge", si: "m3/s", us: "ft3/s", siUCUM: "m3/s", usUCUM: "[cft_i]/s", inSI: foot * foot * foot},
+	QuantityDischargePerLength: {name: "discharge_per_length", si: "m2/s", us: "ft2/s", siUCUM: "m2/s", usUCUM: "[sft_i]/s", inSI: foot * foot},
 	QuantityVelocity:           {name: "velocity", si: "m/s", us: "ft/s", siUCUM: "m/s", usUCUM: "[ft_i]/s", inSI: foot},
 	QuantityAcceleration:       {name: "acceleration", si: "m/s2", us: "ft/s2", siUCUM: "m/s2", usUCUM: "[ft_i]/s2", inSI: foot},
 	QuantityStress:             {name: "stress", si: "N/m2", us: "lbf/ft2", siUCUM: "N/m2", usUCUM: "[lbf_av]/[sft_i]", inSI: pound * standardGravity / (foot * foot)},

@@ -250,10 +250,11 @@ func (s *scanner) array() bool {
 
 // itemLimit returns the limit of the array that begins here, by the member whose value it is.
 func (s *scanner) itemLimit() (limit int, name string) {
+	name = "array_items"
 	if s.depth > 0 {
-		if f := &s.frames[s.depth-1]; !f.array && string(f.name) == "points" {
-			return s.limits.Points, "points"
+		if f := &s.frames[s.depth-1]; !f.array {
+			name = limitOfList(f.name)
 		}
 	}
-	return s.limits.ArrayItems, "array_items"
+	return s.limits.named(name), name
 }

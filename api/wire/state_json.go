@@ -25,6 +25,13 @@ var (
 // AppendJSON appends the state as an object.
 func (s *State) AppendJSON(dst []byte, system System) []byte {
 	start := len(dst)
+	dst = s.appendMembers(dst, system)
+	dst[start] = '{' // in place of the first comma
+	return append(dst, '}')
+}
+
+// appendMembers appends the members, each with its comma before it.
+func (s *State) appendMembers(dst []byte, system System) []byte {
 	if s.Members&WithDischarge != 0 {
 		dst = stateDischarge.append(dst, system, s.Discharge)
 	}
@@ -54,8 +61,7 @@ func (s *State) AppendJSON(dst []byte, system System) []byte {
 		dst = stateBedShearStress.append(dst, system, s.BedShearStress)
 		dst = stateStreamPower.append(dst, system, s.StreamPower)
 	}
-	dst[start] = '{' // in place of the first comma
-	return append(dst, '}')
+	return dst
 }
 
 // appendStates appends a list of states under a key.

@@ -128,8 +128,8 @@ func (f *field) wanted() string {
 // listType describes a list that the field accepts.
 func (f *field) listType() string {
 	switch f.shape {
-	case shapePairs, shapeRows:
-		return "a list of " + f.tupleType()[len("a list of "):] + ", each a list itself"
+	case shapePairs, shapeRows, shapePositions:
+		return "a list of lists" + f.tupleType()[len("a list"):]
 	case shapeObjects:
 		return "a list of objects"
 	case shapeTexts:
@@ -140,8 +140,11 @@ func (f *field) listType() string {
 
 // tupleType describes one item of a list of tuples.
 func (f *field) tupleType() string {
-	if f.shape == shapeRows {
+	switch f.shape {
+	case shapeRows:
 		return "a list of four numbers"
+	case shapePositions:
+		return "a list of two to four numbers"
 	}
 	return "a list of two numbers"
 }
@@ -157,6 +160,10 @@ func variantText(variant string) string {
 		return "roughness by bed and sides"
 	case string(Manning), string(Strickler), string(Chezy), string(SandRoughness), string(Zones), string(ManningByDepth):
 		return "roughness by " + variant
+	case "depth", "level", "control", "gate", "weir", "rating":
+		return "a boundary by " + variant
+	case "spacing", "at":
+		return "a report by " + variant
 	}
 	return "a section of kind " + variant
 }

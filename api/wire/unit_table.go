@@ -23,7 +23,7 @@ func collectMemberUnits() []MemberUnit {
 	for _, p := range plans {
 		for i := range p.fields {
 			switch f := &p.fields[i]; f.shape {
-			case shapeNumber, shapeNumbers, shapeWhole, shapeNamed:
+			case shapeNumber, shapeNumbers, shapeWhole, shapeNamed, shapePositions:
 				all = append(all, MemberUnit{f.name, -1, f.quantity[0]})
 			case shapePairs, shapePair, shapeRows:
 				for column, q := range f.quantity {

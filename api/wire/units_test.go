@@ -36,7 +36,7 @@ func TestUnitFactors(t *testing.T) {
 	for q, want := range map[Quantity]*big.Rat{
 		Dimensionless: rat("1"), QuantityManning: rat("1"), QuantityStrickler: rat("1"),
 		QuantityLength: ft, QuantityVelocity: ft, QuantityAcceleration: ft,
-		QuantityArea: times(ft, ft), QuantityKinematicViscosity: times(ft, ft),
+		QuantityArea: times(ft, ft), QuantityDischargePerLength: times(ft, ft), QuantityKinematicViscosity: times(ft, ft),
 		QuantityVolume: times(ft, ft, ft), QuantityDischarge: times(ft, ft, ft),
 		QuantityStress: pressure, QuantityPowerPerArea: times(pressure, ft), QuantityChezy: chezy,
 	} {
@@ -44,7 +44,7 @@ func TestUnitFactors(t *testing.T) {
 			t.Errorf("%v: %v, want %v", q, US.ToSI(q, 1), nearest)
 		}
 	}
-	if len(units) != 13 {
+	if len(units) != 14 {
 		t.Error("a quantity is not checked")
 	}
 }

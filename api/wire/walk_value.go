@@ -43,6 +43,8 @@ func (w *walk) value(f *field, v reflect.Value) {
 		*v.Addr().Interface().(*[][4]float64) = w.rowList(f)
 	case shapePair:
 		w.pair(f, v.Addr().Interface().(*Pair))
+	case shapePositions:
+		*v.Addr().Interface().(*[]Position) = w.positions(f)
 	case shapeNamed:
 		*v.Addr().Interface().(*[]NamedNumber) = w.named(f)
 	case shapeTexts:
