@@ -32,7 +32,12 @@ func (f *curve) conjugate(depth float64) (other float64, absent Absence) {
 		return depth, Coincides
 	}
 	nearest, failed := math.Inf(1), false
+	touch := max(mirror*min(depth, s.Height()-depth), 8*(above(depth)-depth))
 	f.motion.channel.branches(f, func(b Branch) bool {
+		if !b.Last && math.Abs(b.Hi-depth) <= touch {
+			nearest, failed = min(max(b.Hi+(b.Hi-depth), above(b.Lo)), s.Height()), false
+			return false
+		}
 		if b.Lo > depth && b.Lo-depth > math.Abs(nearest-depth) {
 			return false
 		}
@@ -81,6 +86,10 @@ func (f *curve) same(b Branch, depth, want float64) (x float64, ok bool) {
 	}
 	return x, ok
 }
+
+// mirror is the relative distance to a turning point below which a depth and its conjugate are taken as each other's mirror images in it: what
+// this leaves out is the square of that, while on which side a depth so near lies is itself in doubt.
+const mirror = 1e-9
 
 // near is the relative distance of two depths below which equality of their values is judged by the mean of the derivative between them: there
 // the difference of the values themselves would drown in rounding.
