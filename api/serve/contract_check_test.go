@@ -16,6 +16,7 @@ import (
 	"strings"
 	"sync"
 	"testing"
+	"time"
 
 	"github.com/getkin/kin-openapi/openapi3"
 	"github.com/goccy/go-yaml"
@@ -89,6 +90,9 @@ func (s *Server) RouteTable() []string {
 	}
 	return out
 }
+
+// ReadWithin shortens the time for a request to arrive; it must be called before Start.
+func (s *Server) ReadWithin(limit time.Duration) { s.http.ReadTimeout = limit }
 
 // Schema says what keeps a JSON value from a schema of the document, by the schema's name.
 func (c *Contract) Schema(name string, value any) error {
