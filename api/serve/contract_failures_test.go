@@ -35,7 +35,7 @@ func troubled(waiting, release chan struct{}) []*operation.Operation {
 			case bytes.Contains(body, []byte("no_solution")):
 				return operation.Solved{}, wire.NoSolution("/depth", "asked_for", "As asked.")
 			case bytes.Contains(body, []byte("late")):
-				time.Sleep(400 * time.Millisecond)
+				time.Sleep(1200 * time.Millisecond)
 			case bytes.Contains(body, []byte("wait")):
 				waiting <- struct{}{}
 				<-release
@@ -77,7 +77,7 @@ func startTroubled(t *testing.T, read time.Duration, change func(*serve.Config))
 // TestContractFailures: what goes wrong on the service's side is told as the contract says, each answer judged on its way.
 func TestContractFailures(t *testing.T) {
 	s, server, waiting, release := startTroubled(t, time.Minute, func(c *serve.Config) {
-		c.TimeLimit = 200 * time.Millisecond
+		c.TimeLimit = time.Second
 		c.BodyBytes = 4 << 10
 		c.HeldBytes = 30 << 10 // room for one body
 		c.DrainDelay = 300 * time.Millisecond
