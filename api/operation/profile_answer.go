@@ -23,13 +23,16 @@ func (p *profileRun) answer(a *profile.Answer) *wire.ProfileAnswer {
 		out.Geometry = &p.request.Geometry
 	}
 	var w warnings
+	here := place{reach: -1}
 	for i := range a.Stations {
 		s := &a.Stations[i]
-		c, pointer := p.channel(s)
-		p.stateWarnings(&w, &c, s, pointer)
+		if s.Reach != here.reach {
+			here = p.reachPlace(s.Reach)
+		}
+		p.stateWarnings(&w, &here, s)
 		out.Stations[i] = wire.ProfileStation{
 			Chainage: s.Chainage, Reach: names[s.Reach], BedLevel: s.BedLevel, WaterLevel: s.WaterLevel, EnergyLevel: s.EnergyLevel, Curve: s.Curve,
-			State: state(&s.State, members(&c, true)|wire.WithDischarge),
+			State: state(&s.State, here.members),
 		}
 	}
 	for i, r := range a.Reaches {
@@ -65,30 +68,42 @@ func (p *profileRun) names() []wire.ID {
 	return names
 }
 
-// channel returns the channel of a place, with the bed slope there, and the pointer of the member that describes it. Between two stations it
-// is the nearer one's, of which only its kind is meant.
-func (p *profileRun) channel(s *profile.Point) (c flow.Channel, pointer string) {
-	if len(p.run.Reaches) > 0 {
-		return p.run.Reaches[s.Reach].Channel, "/reaches/" + strconv.Itoa(s.Reach)
-	}
-	from, to := &p.run.Stations[s.Reach], &p.run.Stations[s.Reach+1]
-	i := s.Reach
-	c = from.Channel
-	if s.Chainage-from.Chainage > to.Chainage-s.Chainage {
-		c, i = to.Channel, i+1
-	}
-	c.Slope = (from.BedLevel - to.BedLevel) / (to.Chainage - from.Chainage)
-	return c, "/stations/" + strconv.Itoa(i)
+// A place is what stations within one reach, or one interval, have in common.
+type place struct {
+	reach   int
+	members wire.StateMembers
+	channel *flow.Channel // of a reach
+	pointer string        // of a reach
 }
 
-// stateWarnings adds what is to be said of the flow at a place. Between two stations that differ no section is the one there.
-func (p *profileRun) stateWarnings(w *warnings, c *flow.Channel, s *profile.Point, pointer string) {
-	if len(p.run.Stations) > 0 && s.Chainage != p.run.Stations[s.Reach].Chainage && s.Chainage != p.run.Stations[s.Reach+1].Chainage {
-		return
+func (p *profileRun) reachPlace(i int) place {
+	if len(p.run.Reaches) > 0 {
+		c := &p.run.Reaches[i].Channel
+		return place{i, members(c, true) | wire.WithDischarge, c, "/reaches/" + strconv.Itoa(i) + "/section"}
 	}
-	w.state(c, &s.State, pointer+"/section")
+	from, to := &p.run.Stations[i], &p.run.Stations[i+1]
+	c := from.Channel
+	c.Slope = from.BedLevel - to.BedLevel // of which the sign is meant
+	return place{i, members(&c, true) | wire.WithDischarge, nil, ""}
+}
+
+// stateWarnings adds what is to be said of the flow at a place. Between two stations no section is the one there.
+func (p *profileRun) stateWarnings(w *warnings, here *place, s *profile.Point) {
+	c, pointer := here.channel, here.pointer
+	if c == nil {
+		i := here.reach
+		switch s.Chainage {
+		case p.run.Stations[i].Chainage:
+		case p.run.Stations[i+1].Chainage:
+			i++
+		default:
+			return
+		}
+		c, pointer = &p.run.Stations[i].Channel, "/stations/"+strconv.Itoa(i)+"/section"
+	}
+	w.state(c, &s.State, pointer)
 	if bank, known := c.BankHeight(); known && !c.Section.Closed() && s.State.Geometry.Depth > bank {
-		w.add("overtopped", pointer+"/section", "the water stands above the bank: the section overtops at this discharge")
+		w.add("overtopped", pointer, "the water stands above the bank: the section overtops at this discharge")
 	}
 }
 

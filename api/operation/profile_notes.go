@@ -29,7 +29,11 @@ func (p *profileRun) notes(notes []profile.Note) []wire.Warning {
 		out = append(out, wire.Warning{Code: n.Code, Detail: n.Detail + p.where(n.Chainage), Pointer: p.place(&n)})
 	}
 	for i, count := range others {
-		out[i].Detail += ", and at " + strconv.Itoa(count) + " other places"
+		places := " other places"
+		if count == 1 {
+			places = " other place"
+		}
+		out[i].Detail += ", and at " + strconv.Itoa(count) + places
 	}
 	return out
 }

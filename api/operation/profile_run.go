@@ -1,6 +1,7 @@
 package operation
 
 import (
+	"math"
 	"reflect"
 	"strconv"
 	"strings"
@@ -72,6 +73,10 @@ func (p *profileRun) stations(faults []wire.Fault) []wire.Fault {
 				if reflect.DeepEqual(&above.Roughness, &r.Roughness) {
 					station.Channel.Law = before.Law
 				}
+			}
+			if above := &p.run.Stations[i-1]; !(math.Abs(station.BedLevel-above.BedLevel) < station.Chainage-above.Chainage) {
+				faults = append(faults, wire.Fault{Pointer: "/stations/" + strconv.Itoa(i) + "/chainage", Code: "bed_too_steep",
+					Detail: "The bed falls or rises by as much as its own length from the station before; chainages are measured along the bed."})
 			}
 		}
 		p.run.Stations = append(p.run.Stations, station)
