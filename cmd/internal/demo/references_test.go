@@ -50,9 +50,20 @@ func TestDepthsAgreeWithReferences(t *testing.T) {
 			Normal   *float64 `json:"normal_depth"`
 			Critical *float64 `json:"critical_depth"`
 			Velocity *float64 `json:"normal_velocity"`
+			Class    string   `json:"slope_class"`
 		}
 		if err := json.Unmarshal(answer, &got); err != nil {
 			t.Fatal(err)
+		}
+		// The classes of Bakhmeteff (1932), by the references' own depths.
+		if r.Normal != nil && r.Critical != nil {
+			want := "steep"
+			if number(t, *r.Normal) > number(t, *r.Critical) {
+				want = "mild"
+			}
+			if got.Class != want {
+				t.Errorf("line %d: slope class %s, want %s", r.Line, got.Class, want)
+			}
 		}
 		for _, c := range []struct {
 			name string
@@ -70,10 +81,7 @@ func TestDepthsAgreeWithReferences(t *testing.T) {
 			if c.got == nil {
 				continue
 			}
-			want, err := strconv.ParseFloat(*c.want, 64)
-			if err != nil {
-				t.Fatal(err)
-			}
+			want := number(t, *c.want)
 			off := math.Abs(*c.got-want) / want
 			worst[c.name] = max(worst[c.name], off)
 			if !(off <= tolerance) {
@@ -82,4 +90,13 @@ func TestDepthsAgreeWithReferences(t *testing.T) {
 		}
 	}
 	t.Logf("greatest relative difference from the references: %v", worst)
+}
+
+func number(t *testing.T, text string) float64 {
+	t.Helper()
+	x, err := strconv.ParseFloat(text, 64)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return x
 }
