@@ -50,7 +50,7 @@ func (c *Channel) barrels() float64 {
 func (c *Channel) coefficients(g section.Geometry) friction.Coefficients {
 	k := friction.Coefficients{Energy: 1, Momentum: 1}
 	if c.Law != nil && (c.EnergyCoefficient == 0 || c.MomentumCoefficient == 0) {
-		k = c.Law.Coefficients(g)
+		k = c.Law.Coefficients(c.Wetted(g))
 	}
 	if c.EnergyCoefficient != 0 {
 		k.Energy, k.EnergyRate = c.EnergyCoefficient, 0
@@ -76,5 +76,13 @@ func (c *Channel) Geometry(depth float64) section.Geometry {
 	g := c.Section.Full()
 	g.Moment += g.Area * (depth - height)
 	g.Depth, g.PerimeterRate, g.TopWidthRate = depth, 0, 0
+	return g
+}
+
+// Wetted returns a geometry as its roughness sees it: under a pressure line the depth is that of the full section.
+func (c *Channel) Wetted(g section.Geometry) section.Geometry {
+	if c.Section.Closed() {
+		g.Depth = min(g.Depth, c.Section.Height())
+	}
 	return g
 }

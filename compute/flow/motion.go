@@ -53,6 +53,6 @@ func (m *Motion) ForceRate(g section.Geometry) float64 {
 
 // FrictionSlope returns (Q/K)^2 at a geometry; +Inf where the law gives no conveyance.
 func (m *Motion) FrictionSlope(g section.Geometry) float64 {
-	ratio := m.discharge / m.channel.Law.AtDischarge(g, m.discharge).K
+	ratio := m.discharge / m.channel.Law.AtDischarge(m.channel.Wetted(g), m.discharge).K
 	return ratio * ratio
 }

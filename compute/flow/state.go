@@ -59,7 +59,7 @@ func (c *Channel) State(depth, discharge float64) State {
 	}
 	if c.Law != nil && c.Slope > 0 {
 		s.UniformDischarge = c.UniformDischarge(g)
-		s.Conveyance = c.Law.AtSlope(g, c.Slope).K
+		s.Conveyance = c.Law.AtSlope(c.Wetted(g), c.Slope).K
 	}
 	if discharge > 0 {
 		c.move(&s, discharge, full)
@@ -72,7 +72,7 @@ func (c *Channel) State(depth, discharge float64) State {
 // restingConveyance returns the conveyance where there is neither a discharge nor a positive slope: known for laws
 // that need none, else NaN.
 func (c *Channel) restingConveyance(g section.Geometry) float64 {
-	if gentle, steep := c.Law.AtSlope(g, 1e-6).K, c.Law.AtSlope(g, 1e-3).K; gentle == steep {
+	if gentle, steep := c.Law.AtSlope(c.Wetted(g), 1e-6).K, c.Law.AtSlope(c.Wetted(g), 1e-3).K; gentle == steep {
 		return gentle
 	}
 	return math.NaN()
@@ -106,7 +106,7 @@ func (c *Channel) move(s *State, discharge float64, full bool) {
 	if c.Law == nil {
 		return
 	}
-	s.Conveyance = c.Law.AtDischarge(g, m.discharge).K
+	s.Conveyance = c.Law.AtDischarge(c.Wetted(g), m.discharge).K
 	if !(s.Conveyance > 0) {
 		s.Conveyance = math.NaN()
 		return

@@ -13,7 +13,7 @@ func (c *Channel) UniformDischarge(g section.Geometry) float64 {
 	if !(c.Slope > 0) {
 		return 0
 	}
-	return c.barrels() * c.Law.AtSlope(g, c.Slope).K * math.Sqrt(c.Slope)
+	return c.barrels() * c.Law.AtSlope(c.Wetted(g), c.Slope).K * math.Sqrt(c.Slope)
 }
 
 // conveyance returns the conveyance of one barrel at a depth, at the channel's slope.

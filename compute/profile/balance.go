@@ -67,7 +67,7 @@ func (l *leg) shallow(x0, y0, x1, y1 float64) bool {
 	a, b := l.side(x0), l.side(x1)
 	da := math.Abs(a.motion.EnergyRate(a.channel.Geometry(y0)))
 	db := math.Abs(b.motion.EnergyRate(b.channel.Geometry(y1)))
-	return min(da, db) < 0.3*l.side(0).channel.Cosine()
+	return min(da, db) < 0.3*a.channel.Cosine() && math.Abs(y1-y0) > 1e-3*y0
 }
 
 // workOverDepth returns the change of the specific energy between two ends of a part of a panel, and to it what friction would take over the distance by which they
@@ -78,7 +78,7 @@ func (l *leg) workOverDepth(p *panel, x0, y0, x1, y1 float64) float64 {
 	for i, node := range solve.GaussNodes {
 		for _, y := range [2]float64{middle - half*node, middle + half*node} {
 			x := x0
-			if !l.prismatic {
+			if p.chart.plain {
 				run, _ := p.s.integral(2*(p.chart.of(y)-p.u0)/(p.u1-p.u0) - 1)
 				x = p.x0 + run
 			}

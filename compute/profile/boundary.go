@@ -29,9 +29,12 @@ func (b *Boundary) downstreamHold(s side, total, bed float64, notes *notes) (hol
 	cosine, gravity := s.channel.Cosine(), s.channel.Gravity
 	h := hold{kind: kindNames[b.Kind], governs: true}
 	asks := func(energy float64) (hold, error) {
-		depth, ok := s.subcritical(energy, 0, 0)
+		depth, ok, err := s.subcritical(energy, 0, 0)
+		if err != nil {
+			return h, err
+		}
 		if !ok {
-			depth = 0
+			depth = 0 // less than the least energy
 		}
 		h.depth = depth
 		return h.atLeast(critical, brink, notes), nil
@@ -81,6 +84,9 @@ func (b *Boundary) downstreamHold(s side, total, bed float64, notes *notes) (hol
 			return h, &NoSolution{Code: "outside_rating", Detail: "the discharge lies outside the rating; give a rating that covers it", Member: "downstream/rating"}
 		}
 		h.depth = depth
+	}
+	if !s.holds(h.depth) {
+		return h, &NoSolution{Code: aboveLastRow.Code, Detail: aboveLastRow.Detail, Member: "downstream"}
 	}
 	return h.atLeast(critical, brink, notes), nil
 }

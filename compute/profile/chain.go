@@ -1,6 +1,9 @@
 package profile
 
-import "math"
+import (
+	"errors"
+	"math"
+)
 
 // A chain is a run under way.
 type chain struct {
@@ -48,7 +51,7 @@ func (c *chain) layReaches() error {
 		} else if l.stretch, err = newPrismatic(&r.Channel, total, r.Length, c.run.Checkpoint); err != nil {
 			return err
 		}
-		if l.inside, err = l.stretch.controls(); err != nil {
+		if l.inside, err = l.stretch.controls(parts); err != nil {
 			return err
 		}
 		total += r.Lateral * r.Length
@@ -194,7 +197,12 @@ func (c *chain) walk() error {
 				}
 				shooting = false
 			case !t.whole:
-				return &NoSolution{Code: "no_steady_flow", Detail: "supercritical flow reaches critical depth inside a reach where no subcritical flow meets it; give other boundaries, or look for an error in the section or the roughness"}
+				// Where both come to critical depth at one place, the flow passes through it without a jump.
+				meets := l.subBelow(t.end)
+				if meets == nil || meets.end-t.end > 1e-4*l.length {
+					return &stuck{l}
+				}
+				to, shooting = meets.end, false
 			default:
 				depth = t.last
 			}
@@ -281,14 +289,49 @@ func Solve(run *Run) (*Answer, error) {
 	if err != nil {
 		return nil, err
 	}
-	if err := c.sweepUp(); err != nil {
+	if err = c.sweepUp(); err != nil {
 		return nil, err
 	}
-	if err := c.walk(); err != nil {
+	for more := 16 * parts; ; more *= 16 {
+		var stuck *stuck
+		if err = c.walk(); !errors.As(err, &stuck) {
+			break
+		}
+		// A control inside was passed over: look closer, and begin again.
+		if more > 4096 {
+			return nil, noSteadyFlow
+		}
+		if stuck.leg.inside, err = stuck.leg.controls(more); err != nil {
+			return nil, err
+		}
+		c.restart()
+		if err = c.sweepUp(); err != nil {
+			return nil, err
+		}
+	}
+	if err != nil {
 		return nil, err
 	}
 	return c.answer()
 }
+
+// parts is how many parts of a varying stretch are looked at for a control inside.
+const parts = 4
+
+// restart forgets what the sweeps and the walk found, and keeps the legs.
+func (c *chain) restart() {
+	for _, l := range c.legs {
+		l.subs = nil
+	}
+	c.notes, c.segments, c.jumps, c.controls, c.turns = notes{}, nil, nil, nil, nil
+}
+
+// stuck tells that supercritical flow came to critical depth in a leg where no subcritical flow meets it.
+type stuck struct{ leg *leg }
+
+func (s *stuck) Error() string { return noSteadyFlow.Detail }
+
+var noSteadyFlow = &NoSolution{Code: "no_steady_flow", Detail: "supercritical flow reaches critical depth inside a reach where no subcritical flow meets it; give other boundaries, or look for an error in the section or the roughness"}
 
 // NoSolution is the physical reason why a run has no answer.
 type NoSolution struct {

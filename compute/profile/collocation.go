@@ -16,6 +16,7 @@ type collocation struct {
 	far         float64
 	trace       *trace
 	width       float64 // of the last panel accepted
+	noise       float64 // the tail of the last panel refused, before its width was halved
 	slope       float64 // ddepth/dx to begin with, where the equation cannot tell it: at a control
 }
 
@@ -33,7 +34,7 @@ var integrate = func() (m [order][order]float64) {
 }()
 
 // settled is the tail of a series below which a panel of a varying stretch counts as resolved.
-const settled = 1e-10
+const settled = 1e-12
 
 func (v *varying) sweep(x, depth, direction float64, subcritical bool) (*trace, error) {
 	c := &collocation{v: v, direction: direction, subcritical: subcritical, x: x, y: depth, slope: math.NaN(), trace: &trace{up: direction == upstream}}
@@ -86,7 +87,6 @@ func (c *collocation) leavesCritical() bool {
 // run advances to the far end or to where the branch ends.
 func (c *collocation) run() error {
 	v := c.v
-	tiny := 1e-9 * v.length
 	for range mostPanels {
 		if v.check != nil {
 			if err := v.check(); err != nil {
@@ -94,58 +94,73 @@ func (c *collocation) run() error {
 			}
 		}
 		left := math.Abs(c.far - c.x)
-		if left == 0 {
+		if left == 0 || c.atEnd() {
 			return nil
 		}
-		width := min(left, v.length)
+		if !v.a.Section.Closed() && c.y >= v.height {
+			return aboveLastRow
+		}
+		width := left
 		if c.width > 0 {
 			width = min(width, 2*c.width)
 		}
-		on := false
-		for width > tiny || width == left {
-			if p, ok := c.overChainage(width); ok {
-				if p, ok = c.stopAtBreak(p); ok {
-					c.accept(p)
-					on = true
-					break
-				}
-			}
-			if c.nearCritical() {
-				break
-			}
-			width /= 2
-			if width <= tiny && left <= tiny {
-				break
-			}
-		}
-		if on {
-			continue
-		}
-		ended, ok := c.overDepth()
-		if !ok {
+		if !c.advance(width) {
 			return unsolved("the water surface between two stations")
-		}
-		if ended {
-			return nil
 		}
 	}
 	return unsolved("the water surface between two stations")
+}
+
+// advance adds the longest panel of at most a width that can be had, over the chainage or, near critical depth, over the depth.
+func (c *collocation) advance(width float64) bool {
+	v := c.v
+	n, d := v.rates(c.x, c.y)
+	c.noise = math.Inf(1)
+	steep := math.IsNaN(c.slope) && math.Abs(d) < 0.3*v.cosine
+	for range 60 {
+		if p, ok := c.overChainage(width); ok {
+			if p, ok = c.stopAtBreak(p); ok {
+				c.accept(p)
+				return true
+			}
+		}
+		if steep {
+			if p, ok := c.overDepth(n, d, width); ok {
+				c.accept(p)
+				return true
+			}
+		}
+		width /= 2
+	}
+	return false
+}
+
+// rise returns the sign with which the depth goes as the chainage goes the way of the sweep.
+func (c *collocation) rise(numerator float64) float64 {
+	return c.direction * math.Copysign(1, numerator) * c.sign()
+}
+
+// atCritical is the size of 1 - F^2 below which a sweep has come to critical depth: what is left of the way is of the second order in it.
+const atCritical = 1e-7
+
+// atEnd reports whether the sweep has come to critical depth, where its branch ends.
+func (c *collocation) atEnd() bool {
+	n, d := c.v.rates(c.x, c.y)
+	return math.IsNaN(c.slope) && len(c.trace.panels) > 0 && math.Abs(d) <= atCritical*c.v.cosine && c.rise(n) == -c.sign()
 }
 
 func (c *collocation) accept(p panel) {
 	c.trace.panels = append(c.trace.panels, p)
 	c.width = math.Abs(p.x1 - p.x0)
 	c.x, c.y, c.slope = p.x1, p.y1, math.NaN()
+	if c.direction*(p.x1-c.far) > 0 { // the stretch ends inside
+		c.x, c.y = c.far, p.depth(c.far)
+		return
+	}
 	if math.Abs(c.far-c.x) <= 1e-13*c.v.length {
 		c.x = c.far
 		c.trace.panels[len(c.trace.panels)-1].x1 = c.far
 	}
-}
-
-// nearCritical reports whether the depth is so near critical that the chainage had better be a function of it.
-func (c *collocation) nearCritical() bool {
-	_, d := c.v.rates(c.x, c.y)
-	return math.IsNaN(c.slope) && math.Abs(d) < 0.05*c.v.cosine
 }
 
 // overChainage solves one panel of a width in chainage. ok is false where it does not converge, is not resolved, or leaves the regime.
@@ -224,8 +239,7 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 	}
 	s := newSeries(&f)
 	rise, _ := s.integral(1)
-	scale := math.Abs(rise) + 1e-3*c.y
-	if (math.Abs(s[order-1])+math.Abs(s[order-2]))/scale > settled {
+	if !c.settled((math.Abs(s[order-1]) + math.Abs(s[order-2])) / (math.Abs(rise) + 1e-3*c.y)) {
 		return p, false
 	}
 	y1 := c.y + rise
@@ -237,6 +251,15 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 		return p, false
 	}
 	return panel{x0: c.x, x1: x1, y0: c.y, y1: y1, form: overChainage, s: s, full: c.full(y[order/2])}, true
+}
+
+// settled reports whether the tail of a panel's series is small enough, or is the noise of the last places, which halving the width does not lower.
+func (c *collocation) settled(tail float64) bool {
+	if tail < settled || tail < noisy && tail > c.noise/8 {
+		return true
+	}
+	c.noise = tail
+	return false
 }
 
 func (c *collocation) full(y float64) bool {
@@ -323,57 +346,29 @@ func (c *collocation) crossed(p panel) (depth float64, crosses bool) {
 	return breaks[j-1], true
 }
 
-// overDepth goes on from near critical depth with the chainage as a function of the depth, to critical depth, where the branch ends, or away from it
-// until the depth may be a function of the chainage again. ok is false where neither works.
-func (c *collocation) overDepth() (ended, ok bool) {
-	v := c.v
-	for range 200 {
-		n, d := v.rates(c.x, c.y)
-		if n == 0 {
-			return true, true
-		}
-		// The direction in which the depth goes as the chainage goes the way of the sweep.
-		rise := c.direction * math.Copysign(1, n) * c.sign()
-		if math.Abs(d) <= 1e-9*v.cosine && rise == -c.sign() {
-			return true, true // it has come to critical depth
-		}
-		step := 0.01 * c.y
-		if rise == -c.sign() {
-			_, near := v.rates(c.x, c.y*(1-1e-6*rise))
-			gradient := (near - d) / (-1e-6 * rise * c.y)
-			if towards := math.Abs(d / gradient); gradient != 0 {
-				step = min(step, 0.9*towards)
-			}
-		}
-		accepted := false
-		for range 40 {
-			if p, fine := c.panelOverDepth(rise * step); fine {
-				if c.direction*(p.x1-c.far) >= 0 {
-					y := p.depth(c.far)
-					c.trace.panels = append(c.trace.panels, p)
-					c.x, c.y = c.far, y
-					return true, true
-				}
-				c.trace.panels = append(c.trace.panels, p)
-				c.x, c.y, c.width = p.x1, p.y1, 0
-				accepted = true
-				break
-			}
-			step /= 2
-		}
-		if !accepted {
-			return true, math.Abs(d) < 1e-4*v.cosine
-		}
-		if _, d := v.rates(c.x, c.y); math.Abs(d) > 0.06*v.cosine {
-			return false, true
+// overDepth solves one panel with the chainage as a function of the depth, of the rise that belongs to a width, at most to a break or most of the way to critical
+// depth.
+func (c *collocation) overDepth(n, d, width float64) (p panel, ok bool) {
+	rise := c.rise(n)
+	step := min(0.05*c.y, math.Abs(n/d)*width)
+	if rise == -c.sign() {
+		_, near := c.v.rates(c.x, c.y*(1+1e-7*rise))
+		gradient := (near - d) / (1e-7 * c.y) // with the way towards critical depth
+		if towards := math.Abs(d / gradient); gradient != 0 {
+			step = min(step, 0.9*towards)
 		}
 	}
-	return false, false
+	to := c.y + rise*step
+	if b, crosses := c.crossed(panel{y0: c.y, y1: to}); crosses {
+		to = b
+	}
+	return c.panelOverDepth(to)
 }
 
-// panelOverDepth solves one panel over a rise of the depth.
-func (c *collocation) panelOverDepth(rise float64) (p panel, ok bool) {
+// panelOverDepth solves one panel up to a depth.
+func (c *collocation) panelOverDepth(to float64) (p panel, ok bool) {
 	v := c.v
+	rise := to - c.y
 	half := rise / 2
 	var x, f [order]float64
 	for j := range x {
@@ -411,16 +406,11 @@ func (c *collocation) panelOverDepth(rise float64) (p panel, ok bool) {
 		f[j] *= half
 	}
 	s := newSeries(&f)
-	if !(s.tail() < settled) {
+	if !c.settled(s.tail()) {
 		return p, false
 	}
 	whole, _ := s.integral(1)
-	y1 := c.y + rise
-	p = panel{x0: c.x, x1: c.x + whole, y0: c.y, y1: y1, form: overDepth, chart: chart{plain: true}, u0: c.y, u1: y1, s: s}
-	if _, crosses := c.crossed(p); crosses {
-		return p, false
-	}
-	return p, true
+	return panel{x0: c.x, x1: c.x + whole, y0: c.y, y1: to, form: overDepth, chart: chart{plain: true}, u0: c.y, u1: to, s: s}, whole != 0
 }
 
 // eliminate solves a linear system in place by Gauss's elimination with pivots; the solution stands in b.

@@ -30,8 +30,8 @@ func (s *side) critical() (depth float64, err error) {
 }
 
 // subcritical returns the deepest subcritical depth (or pressure line) at which E - share*|change of velocity head| is a value: the depth above a joint
-// whose lower side has the velocity head other. ok is false where even the least energy is more.
-func (s *side) subcritical(want, share, other float64) (depth float64, ok bool) {
+// whose lower side has the velocity head other. ok is false where even the least energy is more. The error tells of water above the last row of a table.
+func (s *side) subcritical(want, share, other float64) (depth float64, ok bool, err error) {
 	excess := func(g section.Geometry) float64 {
 		v := s.motion.VelocityHead(g)
 		return g.Depth*s.channel.Cosine() + v - share*math.Abs(v-other) - want
@@ -39,8 +39,10 @@ func (s *side) subcritical(want, share, other float64) (depth float64, ok bool) 
 	if s.channel.Section.Closed() {
 		height := s.channel.Section.Height()
 		if short := -excess(s.channel.Geometry(height)); short >= 0 {
-			return height + short/s.channel.Cosine(), true
+			return height + short/s.channel.Cosine(), true, nil
 		}
+	} else if height := s.channel.Section.Height(); !math.IsInf(height, 1) && excess(s.channel.Geometry(height)) < 0 {
+		return 0, false, aboveLastRow
 	}
 	s.motion.EnergyBranches(func(b flow.Branch) bool {
 		if !b.Rising {
@@ -51,7 +53,15 @@ func (s *side) subcritical(want, share, other float64) (depth float64, ok bool) 
 		}
 		return true
 	})
-	return depth, ok
+	return depth, ok, nil
+}
+
+// aboveLastRow is the reason of a run whose water stands above what a table says.
+var aboveLastRow = &NoSolution{Code: "above_section", Detail: "the water rises above the last row of a tabulated section; give a table that goes on"}
+
+// holds reports whether the section is defined at a depth: any for a closed one, where it is a pressure line.
+func (s *side) holds(depth float64) bool {
+	return s.channel.Section.Closed() || depth <= s.channel.Section.Height()
 }
 
 // supercritical returns the shallowest supercritical depth at which E + share*|change of velocity head| + entry*velocity head is a value.
@@ -222,7 +232,10 @@ func (j *joint) above(below float64) (above, error) {
 			y = without
 		}
 		head := j.lower.head(y)
-		depth, ok := j.upper.subcritical(j.lower.energy(y)-j.drop+j.entry*head, j.loss, head)
+		depth, ok, err := j.upper.subcritical(j.lower.energy(y)-j.drop+j.entry*head, j.loss, head)
+		if err != nil {
+			return a, err
+		}
 		if !ok {
 			continue
 		}

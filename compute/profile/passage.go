@@ -7,8 +7,8 @@ import (
 )
 
 // controls returns the places inside the stretch at which F is 1 and the numerator of ddepth/dx passes zero from below to above: there the flow passes from
-// subcritical to supercritical by itself.
-func (v *varying) controls() ([]passage, error) {
+// subcritical to supercritical by itself, looking at the ends of so many parts.
+func (v *varying) controls(parts int) ([]passage, error) {
 	var found []passage
 	numerator := func(x float64) float64 {
 		s := v.side(x)
@@ -19,10 +19,9 @@ func (v *varying) controls() ([]passage, error) {
 		n, _ := v.rates(x, depth)
 		return n
 	}
-	const parts = 4
 	before, from := math.NaN(), 0.0
 	for i := range parts + 1 {
-		x := v.length * float64(i) / parts
+		x := v.length * float64(i) / float64(parts)
 		n := numerator(x)
 		if before < 0 && n > 0 {
 			at, _, ok := solve.RootSlopeless(numerator, from, x)

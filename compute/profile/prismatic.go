@@ -115,7 +115,7 @@ func (s *sweeper) run() error {
 		case moves == ended:
 			return nil
 		case moves == aboveTable:
-			return &NoSolution{Code: "above_section", Detail: "the water rises above the last row of a tabulated section; give a table that goes on"}
+			return aboveLastRow
 		case moves == fullFlow:
 			s.pressure()
 		default:
@@ -299,6 +299,23 @@ func (s *sweeper) chartAt(stop float64) (c chart, until float64) {
 // resolved is the tail of a series below which its panel counts as resolved.
 const resolved = 1e-12
 
+// noisy is the most that a tail may be the noise of the last places.
+const noisy = 1e-6
+
+// hop goes over a rise of the depth so small that its last places are all there is of it, with one value of dx/ddepth. It reports whether the stop was reached.
+func (s *sweeper) hop(stop float64) bool {
+	p := s.p
+	g := p.channel.Section.At(s.y + (stop-s.y)/2)
+	run := math.Abs(p.motion.EnergyRate(g) / p.steepness(g) * (stop - s.y))
+	x := s.x + s.direction*run
+	if !(s.direction*(x-s.far) < 0) {
+		s.straight(s.far, s.y, false)
+		return true
+	}
+	s.straight(x, stop, false)
+	return true
+}
+
 // step adds one panel, at most to the stop. asymptote tells that the stop is a normal depth that is never reached. It reports whether the stop was reached.
 func (s *sweeper) step(stop float64, asymptote bool) bool {
 	p := s.p
@@ -324,6 +341,10 @@ func (s *sweeper) step(stop float64, asymptote bool) bool {
 	}
 	toward := math.Copysign(1, s.rise*c.side)
 	normal := c.pole != 0 && !c.crown
+	if !toPole && math.Abs(stop-s.y) < 1e-10*s.y {
+		return s.hop(stop)
+	}
+	noise := math.Inf(1) // the tail before the width was halved
 	for {
 		u1 := u0 + toward*width
 		y1 := 0.0
@@ -349,8 +370,12 @@ func (s *sweeper) step(stop float64, asymptote bool) bool {
 			good = good && values[j]*s.direction > 0
 		}
 		series := newSeries(&values)
-		if width > 1e-9 && (!(series.tail() < resolved) || !good) && math.Abs(u1-u0) > 1e-9*math.Abs(u0) {
+		tail := series.tail()
+		// Where halving no longer helps, the tail is the noise of the last places, next to a crown or to critical depth.
+		settled := tail < resolved || tail < noisy && tail > noise/8
+		if width > 1e-9 && (!settled || !good) && math.Abs(u1-u0) > 1e-9*math.Abs(u0) {
 			width = math.Min(width, math.Abs(u1-u0)) / 2
+			noise = tail
 			continue
 		}
 		whole, _ := series.integral(1)

@@ -24,7 +24,7 @@ func (c *chain) layStations() error {
 		if err != nil {
 			return err
 		}
-		if l.inside, err = l.stretch.controls(); err != nil {
+		if l.inside, err = l.stretch.controls(parts); err != nil {
 			return err
 		}
 		c.legs = append(c.legs, l)

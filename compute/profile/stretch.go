@@ -10,8 +10,9 @@ type stretch interface {
 	total(x float64) float64
 	// rates returns the numerator and the denominator of ddepth/dx at a chainage and depth.
 	rates(x, depth float64) (numerator, denominator float64)
-	// controls returns the places inside at which the flow passes from subcritical to supercritical by itself, from upstream to downstream.
-	controls() ([]passage, error)
+	// controls returns the places inside at which the flow passes from subcritical to supercritical by itself, from upstream to downstream,
+	// as far as looking at the ends of so many parts of it can tell.
+	controls(parts int) ([]passage, error)
 }
 
 // A passage is a place and its critical depth.
@@ -46,15 +47,25 @@ func (l *leg) sub(x float64) *trace {
 	return nil
 }
 
+// subBelow returns the subcritical sweep whose upstream end is the nearest at or below a chainage, nil for none.
+func (l *leg) subBelow(x float64) *trace {
+	for i := len(l.subs) - 1; i >= 0; i-- {
+		if t := l.subs[i]; t.end >= x {
+			return t
+		}
+	}
+	return nil
+}
+
 // force returns the specific force of all barrels at a chainage and depth.
 func (l *leg) force(x, depth float64) float64 {
 	s := l.side(x)
 	return s.force(depth) * float64(max(s.channel.Barrels, 1))
 }
 
-func (p *prismatic) side(float64) side            { return side{p.channel, p.motion} }
-func (p *prismatic) total(float64) float64        { return p.discharge }
-func (p *prismatic) controls() ([]passage, error) { return nil, nil }
+func (p *prismatic) side(float64) side               { return side{p.channel, p.motion} }
+func (p *prismatic) total(float64) float64           { return p.discharge }
+func (p *prismatic) controls(int) ([]passage, error) { return nil, nil }
 
 func (p *prismatic) rates(_, depth float64) (numerator, denominator float64) {
 	g := p.channel.Geometry(depth)

@@ -73,7 +73,7 @@ func (v *varying) rates(x, y float64) (numerator, denominator float64) {
 		if v.a.MomentumCoefficient != 0 {
 			momentum = v.a.MomentumCoefficient
 		} else {
-			momentum = v.a.Law.Coefficients(g).Momentum
+			momentum = v.a.Law.Coefficients(v.a.Wetted(g)).Momentum
 		}
 		perBarrel := v.lateral / float64(max(v.a.Barrels, 1))
 		return v.slope - m.FrictionSlope(g) - 2*momentum*m.Discharge()*perBarrel/(v.a.Gravity*g.Area*g.Area), m.EnergyRate(g)
@@ -81,8 +81,9 @@ func (v *varying) rates(x, y float64) (numerator, denominator float64) {
 	w := x / v.length
 	ga, gb := v.a.Geometry(y), v.b.Geometry(y)
 	q := v.first / float64(max(v.a.Barrels, 1))
-	k := (1-w)*v.a.Law.AtDischarge(ga, q).K + w*v.b.Law.AtDischarge(gb, q).K
-	ca, cb := coefficients(v.a, ga), coefficients(v.b, gb)
+	wa, wb := v.a.Wetted(ga), v.b.Wetted(gb)
+	k := (1-w)*v.a.Law.AtDischarge(wa, q).K + w*v.b.Law.AtDischarge(wb, q).K
+	ca, cb := coefficients(v.a, wa), coefficients(v.b, wb)
 	alpha, alphaRate := (1-w)*ca.Energy+w*cb.Energy, (1-w)*ca.EnergyRate+w*cb.EnergyRate
 	alphaAlong := (cb.Energy - ca.Energy) / v.length
 	area, width := (1-w)*ga.Area+w*gb.Area, (1-w)*ga.TopWidth+w*gb.TopWidth
