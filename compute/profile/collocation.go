@@ -41,6 +41,9 @@ func (v *varying) sweep(x, depth, direction float64, subcritical bool) (*trace, 
 	if direction == downstream {
 		c.far = v.length
 	}
+	if !subcritical && v.a.Section.Closed() && depth >= v.height {
+		return c.done(), nil
+	}
 	if c.startsAtCritical() {
 		if x > 0 && x < v.length {
 			slope, ok := v.throughCritical(x, depth)
@@ -117,6 +120,7 @@ func (c *collocation) advance(width float64) bool {
 	n, d := v.rates(c.x, c.y)
 	c.noise = math.Inf(1)
 	steep := math.IsNaN(c.slope) && math.Abs(d) < 0.3*v.cosine
+	whole := width
 	for range 60 {
 		if p, ok := c.overChainage(width); ok {
 			if p, ok = c.stopAtBreak(p); ok {
@@ -125,7 +129,7 @@ func (c *collocation) advance(width float64) bool {
 			}
 		}
 		if steep {
-			if p, ok := c.overDepth(n, d, width); ok {
+			if p, ok := c.overDepth(n, d, width, width/whole); ok {
 				c.accept(p)
 				return true
 			}
@@ -146,7 +150,7 @@ const atCritical = 1e-7
 // atEnd reports whether the sweep has come to critical depth, where its branch ends.
 func (c *collocation) atEnd() bool {
 	n, d := c.v.rates(c.x, c.y)
-	return math.IsNaN(c.slope) && len(c.trace.panels) > 0 && math.Abs(d) <= atCritical*c.v.cosine && c.rise(n) == -c.sign()
+	return math.IsNaN(c.slope) && len(c.trace.panels) > 0 && d*c.sign() <= atCritical*c.v.cosine && c.rise(n) == -c.sign()
 }
 
 func (c *collocation) accept(p panel) {
@@ -346,11 +350,11 @@ func (c *collocation) crossed(p panel) (depth float64, crosses bool) {
 	return breaks[j-1], true
 }
 
-// overDepth solves one panel with the chainage as a function of the depth, of the rise that belongs to a width, at most to a break or most of the way to critical
-// depth.
-func (c *collocation) overDepth(n, d, width float64) (p panel, ok bool) {
+// overDepth solves one panel with the chainage as a function of the depth, of the rise that belongs to a width and at most a share of the
+// depth, and no further than to a break or most of the way to critical depth.
+func (c *collocation) overDepth(n, d, width, share float64) (p panel, ok bool) {
 	rise := c.rise(n)
-	step := min(0.05*c.y, math.Abs(n/d)*width)
+	step := min(0.05*share*c.y, math.Abs(n/d)*width)
 	if rise == -c.sign() {
 		_, near := c.v.rates(c.x, c.y*(1+1e-7*rise))
 		gradient := (near - d) / (1e-7 * c.y) // with the way towards critical depth
@@ -362,7 +366,17 @@ func (c *collocation) overDepth(n, d, width float64) (p panel, ok bool) {
 	if b, crosses := c.crossed(panel{y0: c.y, y1: to}); crosses {
 		to = b
 	}
+	if math.Abs(to-c.y) < 1e-11*c.y && share == 1 {
+		return c.hop(to)
+	}
 	return c.panelOverDepth(to)
+}
+
+// hop is a panel over a rise of the depth so small that its last places are all there is of it.
+func (c *collocation) hop(to float64) (p panel, ok bool) {
+	n, d := c.v.rates(c.x, c.y+(to-c.y)/2)
+	x := c.x + c.direction*math.Abs(d/n*(to-c.y))
+	return panel{x0: c.x, x1: x, y0: c.y, y1: to, form: straight}, x != c.x
 }
 
 // panelOverDepth solves one panel up to a depth.
@@ -410,6 +424,9 @@ func (c *collocation) panelOverDepth(to float64) (p panel, ok bool) {
 		return p, false
 	}
 	whole, _ := s.integral(1)
+	if _, d := v.rates(c.x+whole, to); d*c.sign() < 0 {
+		return p, false // past critical depth
+	}
 	return panel{x0: c.x, x1: c.x + whole, y0: c.y, y1: to, form: overDepth, chart: chart{plain: true}, u0: c.y, u1: to, s: s}, whole != 0
 }
 

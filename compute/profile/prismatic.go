@@ -72,12 +72,27 @@ func (p *prismatic) sweep(x, depth, direction float64, subcritical bool) (*trace
 	if direction == downstream {
 		s.far = p.length
 	}
+	s.snap()
 	if err := s.run(); err != nil {
 		return nil, err
 	}
 	s.trace.end, s.trace.last = s.x, s.y
 	s.trace.whole = s.x == s.far
 	return s.trace, nil
+}
+
+// snap moves a beginning that is critical depth but for its last places to where its branch begins, so that it is on it.
+func (s *sweeper) snap() {
+	const places = 1e-11
+	for _, b := range s.p.branches {
+		edge := b.Lo
+		if !s.subcritical {
+			edge = b.Hi
+		}
+		if b.Rising == s.subcritical && math.Abs(s.y-edge) <= places*s.y {
+			s.y = edge
+		}
+	}
 }
 
 // sweeper is a sweep under way.
