@@ -198,6 +198,10 @@ func (c *chain) walk() error {
 				shooting = false
 			case !t.whole:
 				// Where both come to critical depth at one place, the flow passes through it without a jump.
+				if s := l.sub(t.end); s != nil && math.Abs(s.depth(t.end)-t.last) <= 1e-3*t.last {
+					shooting = false
+					break
+				}
 				meets := l.subBelow(t.end)
 				if meets == nil || meets.end-t.end > 1e-4*l.length {
 					return &stuck{l}

@@ -55,6 +55,9 @@ func (v *varying) sweep(x, depth, direction float64, subcritical bool) (*trace, 
 			return c.done(), nil
 		}
 	}
+	if n, _ := v.rates(x, depth); math.IsInf(n, 0) {
+		return nil, noConveyance
+	}
 	if err := c.run(); err != nil {
 		return nil, err
 	}
@@ -66,10 +69,18 @@ func (c *collocation) done() *trace {
 	return c.trace
 }
 
-// startsAtCritical reports whether the depth at the start is critical, as far as its own last places tell.
+// startsAtCritical reports whether the depth at the start is critical, as far as the last places tell.
 func (c *collocation) startsAtCritical() bool {
 	_, d := c.v.rates(c.x, c.y)
-	return math.Abs(d) <= 1e-9*c.v.cosine
+	if d*c.sign() > 1e-3*c.v.cosine {
+		return false
+	}
+	if math.Abs(d) <= 1e-9*c.v.cosine {
+		return true
+	}
+	s := c.v.side(c.x)
+	depth, _, known := s.motion.LeastEnergy()
+	return known && math.Abs(depth-c.y) <= 1e-9*c.y
 }
 
 // sign returns the sign of the denominator in the regime of the sweep.
@@ -149,8 +160,19 @@ const atCritical = 1e-7
 
 // atEnd reports whether the sweep has come to critical depth, where its branch ends.
 func (c *collocation) atEnd() bool {
+	if !math.IsNaN(c.slope) || len(c.trace.panels) == 0 {
+		return false
+	}
 	n, d := c.v.rates(c.x, c.y)
-	return math.IsNaN(c.slope) && len(c.trace.panels) > 0 && d*c.sign() <= atCritical*c.v.cosine && c.rise(n) == -c.sign()
+	if d *= c.sign(); d > 1e-3*c.v.cosine {
+		return false
+	}
+	if d <= atCritical*c.v.cosine && (c.rise(n) == -c.sign() || math.Abs(n) <= atCritical) {
+		return true
+	}
+	// Next to a crown the last places of the depth are coarse against F.
+	_, near := c.v.rates(c.x, c.y*(1-1e-7*c.sign()))
+	return c.rise(n) == -c.sign() && near*c.sign() < d && d < 0.1*(d-near*c.sign())
 }
 
 func (c *collocation) accept(p panel) {
@@ -366,7 +388,7 @@ func (c *collocation) overDepth(n, d, width, share float64) (p panel, ok bool) {
 	if b, crosses := c.crossed(panel{y0: c.y, y1: to}); crosses {
 		to = b
 	}
-	if math.Abs(to-c.y) < 1e-11*c.y && share == 1 {
+	if math.Abs(to-c.y) < 1e-9*c.y && share == 1 {
 		return c.hop(to)
 	}
 	return c.panelOverDepth(to)

@@ -73,6 +73,9 @@ func (p *prismatic) sweep(x, depth, direction float64, subcritical bool) (*trace
 		s.far = p.length
 	}
 	s.snap()
+	if math.IsInf(p.motion.FrictionSlope(p.channel.Geometry(depth)), 1) {
+		return nil, noConveyance
+	}
 	if err := s.run(); err != nil {
 		return nil, err
 	}
@@ -356,7 +359,7 @@ func (s *sweeper) step(stop float64, asymptote bool) bool {
 	}
 	toward := math.Copysign(1, s.rise*c.side)
 	normal := c.pole != 0 && !c.crown
-	if !toPole && math.Abs(stop-s.y) < 1e-10*s.y {
+	if !toPole && math.Abs(stop-s.y) < 1e-8*s.y {
 		return s.hop(stop)
 	}
 	noise := math.Inf(1) // the tail before the width was halved
