@@ -52,10 +52,16 @@ func (b *body) release() {
 	}
 }
 
+// A bodyLimit is the most bytes that a request body may have, and the name of that limit in GET /v1/limits.
+type bodyLimit struct {
+	name  string
+	bytes int64
+}
+
 // read reads a request's body of at most limit bytes; one of exactly the limit passes. With a problem nothing is held. A client
 // that has gone gets its problem too: it may have closed its own direction only.
-func (l *larder) read(r *http.Request, limit int64) (b body, problem *wire.Problem) {
-	if r.ContentLength > limit {
+func (l *larder) read(r *http.Request, limit bodyLimit) (b body, problem *wire.Problem) {
+	if r.ContentLength > limit.bytes {
 		skip(r)
 		return body{}, tooLarge(limit)
 	}
@@ -73,7 +79,7 @@ func (l *larder) read(r *http.Request, limit int64) (b body, problem *wire.Probl
 	b.bytes = b.pooled[:0]
 	for {
 		if len(b.bytes) == cap(b.bytes) {
-			size := min(2*int64(cap(b.bytes)), limit+1) // the byte beyond the limit tells exactly full from too much
+			size := min(2*int64(cap(b.bytes)), limit.bytes+1) // the byte beyond the limit tells exactly full from too much
 			if size > int64(cap(b.bytes)) {
 				if !l.take(size - b.held) {
 					return b, fullHouse()
@@ -86,7 +92,7 @@ func (l *larder) read(r *http.Request, limit int64) (b body, problem *wire.Probl
 		}
 		n, err := r.Body.Read(b.bytes[len(b.bytes):cap(b.bytes)])
 		b.bytes = b.bytes[:len(b.bytes)+n]
-		if int64(len(b.bytes)) > limit {
+		if int64(len(b.bytes)) > limit.bytes {
 			skip(r)
 			return b, tooLarge(limit)
 		}

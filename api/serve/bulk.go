@@ -35,7 +35,7 @@ func (s *Server) bulk(op *operation.Operation) gin.HandlerFunc {
 			s.refuse(c, aboutToStop())
 			return
 		}
-		options, problem := s.admit(c, mediaNDJSON)
+		options, problem := s.admit(c, op, mediaNDJSON)
 		if problem != nil {
 			s.refuse(c, problem)
 			return
@@ -83,7 +83,7 @@ func (s *Server) pump(c *gin.Context, control *http.ResponseController, form for
 			if output.began.Load() {
 				control.SetWriteDeadline(past)
 			} else {
-				control.SetWriteDeadline(time.Now().Add(answerLimit)) // there is still a problem to write
+				control.SetWriteDeadline(time.Now().Add(answerTime)) // there is still a problem to write
 			}
 		},
 		Discard:  func() { io.Copy(io.Discard, received) },

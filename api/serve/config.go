@@ -3,18 +3,24 @@ package serve
 import (
 	"os"
 	"time"
+
+	"leat/api/wire"
 )
 
 // Config is everything an operator may set. The zero value is not useful: start from Default.
 type Config struct {
 	Listen string // TCP address, host:port; port 0 picks a free one
 
-	BodyBytes  int64         // greatest request body of a unary operation
-	LineBytes  int64         // greatest record of a bulk request, without its line end
-	HeldBytes  int64         // request bodies held in memory at once, over all unary requests
-	ArrayItems int           // greatest length of a list in a request
-	Points     int           // greatest number of points of a surveyed section, and of rows of a tabulated one
-	TimeLimit  time.Duration // longest time of one unary calculation
+	BodyBytes    int64         // greatest request body of a unary operation
+	ProfileBytes int64         // the same of a profile
+	LineBytes    int64         // greatest record of a bulk request, without its line end
+	HeldBytes    int64         // request bodies held in memory at once, over all unary requests
+	ArrayItems   int           // greatest length of a list in a request that has no limit of its own
+	Points       int           // greatest number of points of a surveyed section
+	Reaches      int           // of a profile
+	Stations     int           // of a profile
+	ReportPoints int           // places at which a profile reports
+	TimeLimit    time.Duration // longest time of one calculation
 
 	IdleLimit   time.Duration // a bulk stream without progress in either direction is cut after this
 	SpoolDir    string        // folder for answers that a bulk client does not take yet
@@ -28,20 +34,25 @@ type Config struct {
 
 // Default returns the settings of a server that was told nothing.
 func Default() Config {
+	limits := wire.DefaultLimits()
 	return Config{
-		Listen:      "127.0.0.1:8080",
-		BodyBytes:   1 << 20,
-		LineBytes:   1 << 20,
-		HeldBytes:   32 << 20,
-		ArrayItems:  10_000,
-		Points:      10_000,
-		TimeLimit:   10 * time.Second,
-		IdleLimit:   30 * time.Second,
-		SpoolDir:    os.TempDir(),
-		MemoryBytes: 4 << 20,
-		SpoolBytes:  4 << 30,
-		SpoolTotal:  16 << 30,
-		DrainDelay:  0,
-		DrainLimit:  25 * time.Second,
+		Listen:       "127.0.0.1:8080",
+		BodyBytes:    1 << 20,
+		ProfileBytes: 16 << 20,
+		LineBytes:    1 << 20,
+		HeldBytes:    32 << 20,
+		ArrayItems:   limits.ArrayItems,
+		Points:       limits.Points,
+		Reaches:      limits.Reaches,
+		Stations:     limits.Stations,
+		ReportPoints: limits.ReportPoints,
+		TimeLimit:    10 * time.Second,
+		IdleLimit:    30 * time.Second,
+		SpoolDir:     os.TempDir(),
+		MemoryBytes:  4 << 20,
+		SpoolBytes:   4 << 30,
+		SpoolTotal:   16 << 30,
+		DrainDelay:   0,
+		DrainLimit:   25 * time.Second,
 	}
 }

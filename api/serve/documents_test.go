@@ -2,12 +2,15 @@ package serve
 
 import (
 	"bytes"
+	"io"
+	"net/http/httptest"
 	"strings"
 	"testing"
 
 	"github.com/go-json-experiment/json"
 	"github.com/go-json-experiment/json/jsontext"
 
+	"leat/api/operation"
 	"leat/api/site"
 )
 
@@ -116,6 +119,32 @@ func TestLimitsAreThoseOfTheConfig(t *testing.T) {
 	for name, want := range map[string]float64{"body_bytes": 4096, "line_bytes": 2048, "array_items": 7, "points": 9, "time_limit_seconds": 10} {
 		if got[name] != want {
 			t.Errorf("%s = %v, want %v", name, got[name], want)
+		}
+	}
+}
+
+// The limits of profiles are shown where profiles are served.
+func TestLimitsOfLongOperations(t *testing.T) {
+	long := *fakeOperation("profile")
+	long.Long = true
+	for _, operations := range [][]*operation.Operation{{fakeOperation("depths")}, {&long}} {
+		config := testConfig(t)
+		config.ProfileBytes, config.BodyBytes = 4000, 2000
+		server, err := New(config, operations, testSurroundings(io.Discard))
+		if err != nil {
+			t.Fatal(err)
+		}
+		recorder := httptest.NewRecorder()
+		server.http.Handler.ServeHTTP(recorder, httptest.NewRequest("GET", "/v1/limits", nil))
+		if shown := strings.Contains(recorder.Body.String(), `"profile_body_bytes": 4000`); shown != operations[0].Long {
+			t.Errorf("%s: %s", operations[0].Name, recorder.Body)
+		}
+		request := httptest.NewRequest("POST", "/v1/"+operations[0].Name, strings.NewReader("{}"+strings.Repeat(" ", 3000)))
+		request.Header.Set("Content-Type", jsonHeader)
+		recorder = httptest.NewRecorder()
+		server.http.Handler.ServeHTTP(recorder, request)
+		if (recorder.Code == 200) != operations[0].Long {
+			t.Errorf("%s: %d %s", operations[0].Name, recorder.Code, recorder.Body)
 		}
 	}
 }

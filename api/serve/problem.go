@@ -54,8 +54,8 @@ func wrongCoding(coding string) *wire.Problem {
 	return wire.UnsupportedMediaType(fmt.Sprintf("The request's Content-Encoding is %q; send the body as it is, without that header.", clip(coding)))
 }
 
-func tooLarge(limit int64) *wire.Problem {
-	return wire.TooLarge(wire.Fault{Code: "body_bytes", Detail: fmt.Sprintf("The request body is larger than body_bytes, %d bytes; GET /v1/limits shows the limits.", limit)})
+func tooLarge(limit bodyLimit) *wire.Problem {
+	return wire.TooLarge(wire.Fault{Code: limit.name, Detail: fmt.Sprintf("The request body is larger than %s, %d bytes; GET /v1/limits shows the limits.", limit.name, limit.bytes)})
 }
 
 func slowBody() *wire.Problem {
@@ -76,6 +76,11 @@ func aboutToStop() *wire.Problem {
 
 func lateAnswer(limit time.Duration) *wire.Problem {
 	return wire.TimeLimit(fmt.Sprintf("The calculation took longer than time_limit_seconds, %v; ask for less at once.", limit.Seconds()))
+}
+
+// goneClient ends a solve; nobody is there to read it.
+func goneClient() *wire.Problem {
+	return wire.RequestTimeout("The client went away before the answer was there.")
 }
 
 func internalFault() *wire.Problem {

@@ -17,12 +17,12 @@ import (
 
 // Times that no operator needs to change.
 const (
-	headerLimit    = 5 * time.Second  // for a request's header to arrive
-	bodyLimit      = 30 * time.Second // for the body of a unary request to arrive after it
-	keepAliveLimit = 60 * time.Second // for the next request on a connection to begin
-	headerBytes    = 16 << 10
-	answerLimit    = 10 * time.Second // for an answer to be taken
-	streamsAtOnce  = 100              // of one HTTP/2 connection
+	headerTime    = 5 * time.Second  // for a request's header to arrive
+	bodyTime      = 30 * time.Second // for the body of a unary request to arrive after it
+	keepAliveTime = 60 * time.Second // for the next request on a connection to begin
+	headerBytes   = 16 << 10
+	answerTime    = 10 * time.Second // for an answer to be taken
+	streamsAtOnce = 100              // of one HTTP/2 connection
 )
 
 // Surroundings are what a server is given beside its settings and operations.
@@ -65,10 +65,12 @@ func New(config Config, operations []*operation.Operation, around Surroundings) 
 		build:      around.Build,
 		known:      around.Ready,
 		bodies:     newLarder(config.HeldBytes),
-		limits:     wire.Limits{ArrayItems: config.ArrayItems, Points: config.Points},
-		store:      stream.NewStore(config.SpoolDir, config.MemoryBytes, config.SpoolBytes, config.SpoolTotal),
-		draining:   make(chan struct{}),
-		served:     make(chan error, 1),
+		limits: wire.Limits{
+			ArrayItems: config.ArrayItems, Points: config.Points, Reaches: config.Reaches, Stations: config.Stations, ReportPoints: config.ReportPoints,
+		},
+		store:    stream.NewStore(config.SpoolDir, config.MemoryBytes, config.SpoolBytes, config.SpoolTotal),
+		draining: make(chan struct{}),
+		served:   make(chan error, 1),
 	}
 	if err := s.store.Check(); err != nil {
 		return nil, fmt.Errorf("--spool-dir %q cannot be used: %w", config.SpoolDir, err)
@@ -92,10 +94,10 @@ func New(config Config, operations []*operation.Operation, around Surroundings) 
 		Handler:           s.router(),
 		Protocols:         &protocols,
 		HTTP2:             &http.HTTP2Config{MaxConcurrentStreams: streamsAtOnce},
-		ReadHeaderTimeout: headerLimit,
-		ReadTimeout:       headerLimit + bodyLimit,
-		WriteTimeout:      bodyLimit + config.TimeLimit + answerLimit,
-		IdleTimeout:       keepAliveLimit,
+		ReadHeaderTimeout: headerTime,
+		ReadTimeout:       headerTime + bodyTime,
+		WriteTimeout:      bodyTime + config.TimeLimit + answerTime,
+		IdleTimeout:       keepAliveTime,
 		MaxHeaderBytes:    headerBytes,
 		ErrorLog:          slog.NewLogLogger(around.Log.Handler(), slog.LevelWarn),
 

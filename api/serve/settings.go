@@ -44,10 +44,14 @@ var settings = []setting{
 		func(c *Config) string { return c.Listen },
 	},
 	bytesSetting("body-bytes", "greatest request body of a unary operation", 1<<10, 64<<20, func(c *Config) *int64 { return &c.BodyBytes }),
+	bytesSetting("profile-body-bytes", "greatest request body of a profile", 1<<10, 1<<30, func(c *Config) *int64 { return &c.ProfileBytes }),
 	bytesSetting("line-bytes", "greatest record of a bulk request", 1<<10, 64<<20, func(c *Config) *int64 { return &c.LineBytes }),
 	bytesSetting("held-bytes", "request bodies held in memory at once; beyond it 503", 1<<20, 64<<30, func(c *Config) *int64 { return &c.HeldBytes }),
-	countSetting("array-items", "greatest length of a list in a request", 1, 1_000_000, func(c *Config) *int { return &c.ArrayItems }),
-	countSetting("points", "most points of a surveyed section, rows of a tabulated one", 3, 1_000_000, func(c *Config) *int { return &c.Points }),
+	countSetting("array-items", "greatest length of a list in a request that has no limit of its own", 1, 1_000_000, func(c *Config) *int { return &c.ArrayItems }),
+	countSetting("points", "most points of a surveyed section", 3, 1_000_000, func(c *Config) *int { return &c.Points }),
+	countSetting("reaches", "most reaches of a profile", 1, 1_000_000, func(c *Config) *int { return &c.Reaches }),
+	countSetting("stations", "most surveyed stations of a profile", 2, 1_000_000, func(c *Config) *int { return &c.Stations }),
+	countSetting("report-points", "most places at which a profile reports", 1, 10_000_000, func(c *Config) *int { return &c.ReportPoints }),
 	durationSetting("time-limit", "longest time of one calculation; beyond it 504", 100*time.Millisecond, 10*time.Minute, func(c *Config) *time.Duration { return &c.TimeLimit }),
 	durationSetting("idle-limit", "a bulk stream without progress is ended after this", time.Second, time.Hour, func(c *Config) *time.Duration { return &c.IdleLimit }),
 	{
@@ -208,8 +212,8 @@ func variables() []string {
 // check holds the rules that concern more than one setting.
 func (c *Config) check() []error {
 	var mistakes []error
-	if c.HeldBytes < c.BodyBytes {
-		mistakes = append(mistakes, fmt.Errorf("--held-bytes (%s) must be at least --body-bytes (%s)", showBytes(c.HeldBytes), showBytes(c.BodyBytes)))
+	if least := max(c.BodyBytes, c.ProfileBytes); c.HeldBytes < least {
+		mistakes = append(mistakes, fmt.Errorf("--held-bytes (%s) must be at least --body-bytes (%s) and --profile-body-bytes (%s)", showBytes(c.HeldBytes), showBytes(c.BodyBytes), showBytes(c.ProfileBytes)))
 	}
 	if c.SpoolTotal < c.SpoolBytes {
 		mistakes = append(mistakes, fmt.Errorf("--spool-total-bytes (%s) must be at least --spool-bytes (%s)", showBytes(c.SpoolTotal), showBytes(c.SpoolBytes)))

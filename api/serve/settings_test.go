@@ -46,7 +46,7 @@ func TestAllMistakesAtOnce(t *testing.T) {
 	for _, part := range []string{
 		`--listen: "nowhere" is not accepted: host:port`, `--points: "2" is not accepted: a whole number from 3 to`,
 		`--idle-limit: "1" is not accepted: a time from 1s`, `LEAT_BODY_BYTES: "-1" is not accepted: a whole number of bytes from 1KiB to 64MiB`,
-		"LEAT_BODYBYTES is no setting", "LEAT_BODY_BYTES, LEAT_LINE_BYTES",
+		"LEAT_BODYBYTES is no setting", "LEAT_BODY_BYTES, LEAT_PROFILE_BODY_BYTES",
 	} {
 		if !strings.Contains(err.Error(), part) {
 			t.Errorf("no %q in\n%v", part, err)

@@ -35,8 +35,12 @@ func (a *answers) put(b *[]byte) {
 
 // unary is the handler of one operation on one request object.
 func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
+	limit := bodyLimit{"body_bytes", s.config.BodyBytes}
+	if op.Long {
+		limit = bodyLimit{"profile_body_bytes", s.config.ProfileBytes}
+	}
 	return func(c *gin.Context) {
-		options, problem := s.admit(c, mediaJSON)
+		options, problem := s.admit(c, op, mediaJSON)
 		if problem != nil {
 			s.refuse(c, problem)
 			return
@@ -47,7 +51,7 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 			// this connection than we do, so there must be no further ones (RFC 9112, 6.3).
 			closeConnection(c)
 		}
-		body, problem := s.bodies.read(c.Request, s.config.BodyBytes)
+		body, problem := s.bodies.read(c.Request, limit)
 		if problem != nil {
 			closeConnection(c) // what is left of the body is not worth reading
 			s.writeProblem(c, problem)
@@ -77,9 +81,12 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 var jsonType = []string{mediaJSON}
 
 // admit checks all that a POST says before its body: query, media type, what it accepts.
-func (s *Server) admit(c *gin.Context, media string) (operation.Options, *wire.Problem) {
+func (s *Server) admit(c *gin.Context, op *operation.Operation, media string) (operation.Options, *wire.Problem) {
 	options, problem := readQuery(c.Request.URL.RawQuery)
 	options.Limits = &s.limits
+	if op.Long {
+		options.Begin = checkpoints(c.Request.Context(), s.config.TimeLimit)
+	}
 	if problem == nil {
 		problem = checkMedia(c.Request.Header, c.Writer.Header(), media)
 	}

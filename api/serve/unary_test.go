@@ -1,6 +1,7 @@
 package serve
 
 import (
+	"context"
 	"errors"
 	"strings"
 	"sync/atomic"
@@ -8,6 +9,8 @@ import (
 	"time"
 
 	"github.com/go-json-experiment/json"
+
+	"leat/api/wire"
 )
 
 const jsonHeader = "application/json"
@@ -179,6 +182,28 @@ func TestLateAnswerIs504(t *testing.T) {
 	p := r.send("POST", "/v1/depths", `{"act":"sleep"}`, "Content-Type", jsonHeader).problem(t, 504)
 	if !strings.Contains(p.Detail, "time_limit_seconds, 0.1") {
 		t.Errorf("detail %q", p.Detail)
+	}
+}
+
+func TestCheckpointEndsALongSolve(t *testing.T) {
+	ctx, cancel := context.WithCancel(t.Context())
+	begin := checkpoints(ctx, 50*time.Millisecond)
+	first := begin()
+	if err := first(); err != nil {
+		t.Errorf("at once: %v", err)
+	}
+	time.Sleep(60 * time.Millisecond)
+	second := begin()
+	if err := second(); err != nil {
+		t.Errorf("the time of one solve counts against the next: %v", err)
+	}
+	var problem *wire.Problem
+	if err := first(); !errors.As(err, &problem) || problem.Status != 504 {
+		t.Errorf("past the limit: %v", err)
+	}
+	cancel()
+	if err := second(); !errors.As(err, &problem) || problem.Status != 408 {
+		t.Errorf("without a client: %v", err)
 	}
 }
 
