@@ -23,7 +23,7 @@ func (g *segment) energyResidual(from, to float64) float64 {
 		return 0
 	}
 	l, t := g.leg, g.trace
-	sum := 0.0
+	residual, last := 0.0, math.NaN() // last is the energy at the end of the panel before
 	before := from
 	for _, knot := range g.knots() {
 		if knot <= from {
@@ -31,25 +31,32 @@ func (g *segment) energyResidual(from, to float64) float64 {
 		}
 		end := min(knot, to)
 		p := t.at(before + (end-before)/2)
+		s0, s1 := l.side(before), l.side(end)
+		// At a break of the section the energy may jump: the panel's own side of it counts.
+		y0, y1 := p.depth(before), p.depth(end)
+		e0, e1 := s0.energy(math.Nextafter(y0, y1)), s1.energy(math.Nextafter(y1, y0))
+		if !math.IsNaN(last) {
+			residual += e0 - last // the depth may change at a knot, at equal energy
+		}
+		residual += e1 - e0
 		const parts = 3
 		for k := range parts {
 			x0 := before + (end-before)*float64(k)/parts
 			x1 := before + (end-before)*float64(k+1)/parts
-			sum += l.work(p, x0, x1)
+			residual -= l.work(p, x0, x1)
 		}
-		before = end
+		before, last = end, e1
 		if before >= to {
 			break
 		}
 	}
-	s0, s1 := l.side(from), l.side(to)
-	return math.Abs(s1.energy(t.depth(to)) - s0.energy(t.depth(from)) - sum)
+	return math.Abs(residual)
 }
 
 // work returns the change of the specific energy between two chainages of one panel by quadrature: of S0 - Sf, less what an inflow takes.
 func (l *leg) work(p *panel, x0, x1 float64) float64 {
 	y0, y1 := p.depth(x0), p.depth(x1)
-	if p.form == overDepth && l.shallow(x0, y0, x1, y1) {
+	if p.form == overDepth && l.steep(x0, y0, x1, y1) {
 		return l.workOverDepth(p, x0, y0, x1, y1)
 	}
 	half, middle := (x1-x0)/2, x0+(x1-x0)/2
@@ -62,28 +69,29 @@ func (l *leg) work(p *panel, x0, x1 float64) float64 {
 	return sum
 }
 
-// shallow reports whether a part of a panel is so near critical depth that the chainage is a smooth function of the depth rather than the other way round.
-func (l *leg) shallow(x0, y0, x1, y1 float64) bool {
-	a, b := l.side(x0), l.side(x1)
-	da := math.Abs(a.motion.EnergyRate(a.channel.Geometry(y0)))
-	db := math.Abs(b.motion.EnergyRate(b.channel.Geometry(y1)))
-	return min(da, db) < 0.3*a.channel.Cosine() && math.Abs(y1-y0) > 1e-3*y0
+// steep reports whether the depth changes so much over a part of a panel that the chainage is the better function of the depth.
+func (l *leg) steep(x0, y0, x1, y1 float64) bool {
+	n0, d0 := l.rates(x0, y0)
+	n1, d1 := l.rates(x1, y1)
+	return min(math.Abs(n0/d0), math.Abs(n1/d1))*math.Abs(x1-x0) > 1e-4*y0
 }
 
 // workOverDepth returns the change of the specific energy between two ends of a part of a panel, and to it what friction would take over the distance by which they
-// lie wrong: the distance is recomputed as the integral of dx/ddepth.
+// lie wrong: the distance is recomputed as the integral of dx/ddepth, in the variable of the panel.
 func (l *leg) workOverDepth(p *panel, x0, y0, x1, y1 float64) float64 {
-	half, middle := (y1-y0)/2, y0+(y1-y0)/2
+	u0, u1 := p.chart.of(y0), p.chart.of(y1)
+	half, middle := (u1-u0)/2, u0+(u1-u0)/2
 	distance := 0.0
 	for i, node := range solve.GaussNodes {
-		for _, y := range [2]float64{middle - half*node, middle + half*node} {
+		for _, u := range [2]float64{middle - half*node, middle + half*node} {
+			y, _, rate := p.chart.depth(u)
 			x := x0
 			if p.chart.plain {
-				run, _ := p.s.integral(2*(p.chart.of(y)-p.u0)/(p.u1-p.u0) - 1)
+				run, _ := p.s.integral(2*(u-p.u0)/(p.u1-p.u0) - 1)
 				x = p.x0 + run
 			}
 			numerator, denominator := l.rates(x, y)
-			distance += solve.GaussWeights[i] * half * denominator / numerator
+			distance += solve.GaussWeights[i] * half * rate * denominator / numerator
 		}
 	}
 	s0, s1 := l.side(x0), l.side(x1)
@@ -91,14 +99,15 @@ func (l *leg) workOverDepth(p *panel, x0, y0, x1, y1 float64) float64 {
 	return s1.energy(y1) - s0.energy(y0) + friction*(x1-x0-distance)
 }
 
-// energySlope returns dE/dx by the equation of energy: S0 - Sf, less beta*Q*q/(g A^2) for a lateral inflow that brings no momentum.
+// energySlope returns dE/dx: S0 - Sf, less (2*beta - alpha)*Q*q/(g A^2) for a lateral inflow that brings no momentum.
 func (l *leg) energySlope(x, y float64) float64 {
 	s := l.side(x)
 	g := s.channel.Geometry(y)
 	slope := l.slope - s.motion.FrictionSlope(g)
 	if v, ok := l.stretch.(*varying); ok && v.fed {
 		q := v.lateral / float64(max(v.a.Barrels, 1))
-		slope -= s.motion.Discharge() * q / (v.a.Gravity * g.Area * g.Area)
+		k := coefficients(v.a, v.a.Wetted(g))
+		slope -= (2*k.Momentum - k.Energy) * s.motion.Discharge() * q / (v.a.Gravity * g.Area * g.Area)
 	}
 	return slope
 }

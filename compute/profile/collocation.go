@@ -281,7 +281,7 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 
 // settled reports whether the tail of a panel's series is small enough, or is the noise of the last places, which halving the width does not lower.
 func (c *collocation) settled(tail float64) bool {
-	if tail < settled || tail < noisy && tail > c.noise/8 {
+	if tail < settled || tail < noisy && tail > 0.5*c.noise {
 		return true
 	}
 	c.noise = tail

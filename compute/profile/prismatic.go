@@ -390,13 +390,13 @@ func (s *sweeper) step(stop float64, asymptote bool) bool {
 		series := newSeries(&values)
 		tail := series.tail()
 		// Where halving no longer helps, the tail is the noise of the last places, next to a crown or to critical depth.
-		settled := tail < resolved || tail < noisy && tail > noise/8
+		whole, _ := series.integral(1)
+		settled := tail < resolved || tail*math.Abs(whole) < 1e-14*p.length || tail < noisy && tail > noise/2
 		if width > 1e-9 && (!settled || !good) && math.Abs(u1-u0) > 1e-9*math.Abs(u0) {
 			width = math.Min(width, math.Abs(u1-u0)) / 2
 			noise = tail
 			continue
 		}
-		whole, _ := series.integral(1)
 		x1 := s.x + whole
 		pn := panel{x0: s.x, x1: x1, y0: s.y, y1: y1, form: overDepth, chart: c, u0: u0, u1: u1, s: series}
 		if s.direction*(x1-s.far) >= 0 {
