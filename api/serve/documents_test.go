@@ -110,6 +110,19 @@ func TestPageNeedsNothingFromOutside(t *testing.T) {
 	}
 }
 
+// The request that the page shows is one that works.
+func TestPageShowsARequestThatWorks(t *testing.T) {
+	_, rest, found := strings.Cut(string(site.Page()), "/v1/depths -d '")
+	body, _, ended := strings.Cut(rest, "'")
+	if !found || !ended {
+		t.Fatal("no request on the page")
+	}
+	answer, _, problem := operation.Depths.Answer(nil, []byte(body), operation.Options{})
+	if problem != nil || !strings.Contains(string(answer), `"normal_depth":0.8`) {
+		t.Errorf("%s: %s, %v", body, answer, problem)
+	}
+}
+
 func TestLimitsAreThoseOfTheConfig(t *testing.T) {
 	r := start(t, func(c *Config, _ *Surroundings) { c.BodyBytes, c.LineBytes, c.ArrayItems, c.Points = 4096, 2048, 7, 9 })
 	var got map[string]float64
