@@ -19,6 +19,7 @@ var requests = []string{
 	`{"units":"us","section":{"kind":"triangular","side_slope":2},"roughness":{"manning":0.02},"bed_slope":0.004,"discharge":9,"from_depth":0.5,"to_depth":2,"count":4,"kind":"uniform"}`,
 	`{"section":{"kind":"rectangular","bottom_width":3},"roughness":{"manning":0.03},"bed_slope":0.001,"from_depth":0.5,"to_depth":2,"count":4,"kind":"uniform"}`,
 	`{"section":{"kind":"rectangular","bottom_width":3},"depths":[0.5,1]}`,
+	`{"id":"run","discharge":3,"reaches":[{"length":100,"bed_slope":0.002,"section":{"kind":"rectangular","bottom_width":3},"roughness":{"manning":0.02}}],"downstream":{"depth":1}}`,
 	`{"id":"wrong","section":{"kind":"trapezoidal","bottom_width":-1,"side_slope":1.5},"bed_slope":2}`,
 	`{"id":"no json"`,
 	`[]`,

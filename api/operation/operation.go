@@ -54,7 +54,7 @@ func (s *Solved) AppendJSON(dst []byte, inside bool) []byte {
 }
 
 // All returns the operations in the order of the contract.
-func All() []*Operation { return []*Operation{&Section, &Depths, &Rating} }
+func All() []*Operation { return []*Operation{&Section, &Depths, &Rating, &Profile} }
 
 // defaultLimits hold where a caller sets none.
 var defaultLimits = wire.DefaultLimits()

@@ -35,7 +35,7 @@ func (s *Server) bulk(op *operation.Operation) gin.HandlerFunc {
 			s.refuse(c, aboutToStop())
 			return
 		}
-		options, problem := s.admit(c, op, mediaNDJSON)
+		options, _, problem := s.admit(c, mediaNDJSON, mediaNDJSON)
 		if problem != nil {
 			s.refuse(c, problem)
 			return
@@ -47,6 +47,10 @@ func (s *Server) bulk(op *operation.Operation) gin.HandlerFunc {
 			s.log.Error("bulk is not possible on this connection", slog.String("request_id", exchangeOf(c).requestID), slog.String("error", err.Error()))
 			s.refuse(c, internalFault())
 			return
+		}
+		if op.Long {
+			// The request's own context ends when the pump has reading stopped, too, which is no sign of a client gone.
+			options.Begin = checkpoints(context.WithoutCancel(c.Request.Context()), s.config.TimeLimit)
 		}
 		s.pump(c, control, format.NewNDJSON(op, options, int(s.config.LineBytes)), answered)
 	}

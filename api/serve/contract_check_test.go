@@ -170,7 +170,7 @@ func (c *Contract) Answer(method, target string, status int, header http.Header,
 	place := []string{"paths", address.Path, strings.ToLower(method), "responses", strconv.Itoa(status), "content", kind, "schema"}
 	var value any
 	switch kind {
-	case "application/json":
+	case "application/json", "application/geo+json":
 		value, err = decode(body)
 	case "application/yaml":
 		err = yaml.Unmarshal(body, &value)

@@ -36,6 +36,9 @@ func bases(t *testing.T, op string) map[string]map[string]any {
 		}
 		return out
 	}
+	if op == "profile" {
+		return profileBases(t)
+	}
 	sections, laws := shown("Section"), shown("Roughness")
 	request := func(section, law map[string]any) map[string]any {
 		r := map[string]any{"section": section, "roughness": law, "bed_slope": 0.004, "id": "OST-RD-0147"}
@@ -179,7 +182,7 @@ func mutants(t *testing.T, base map[string]any, only string) []mutant {
 				}
 			}
 			var others []foreign
-			switch at {
+			switch at[strings.LastIndex(at, "/"):] {
 			case "/section":
 				others = kinds
 				for _, f := range foreignKinds {
@@ -267,6 +270,7 @@ var schemaCodes = map[string]bool{
 var proseMembers = []string{
 	"side_slope", "left_side_slope", "right_side_slope", "bench_width", "left_bench_width", "right_bench_width", "gutter_width", "gutter_slope",
 	"until", "depth", "depths", "from_depth", "to_depth", "count", "discharges",
+	"reaches", "bed_level",
 }
 
 // TestContractMutations: a request that the contract forbids is never answered, one that it allows is answered or refused for a
@@ -277,7 +281,7 @@ func TestContractMutations(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	for _, op := range []string{"section", "depths", "rating"} {
+	for _, op := range []string{"section", "depths", "rating", "profile"} {
 		t.Run(op, func(t *testing.T) {
 			schema := strings.ToUpper(op[:1]) + op[1:] + "Request"
 			counts := map[string]int{}

@@ -8,6 +8,7 @@ import (
 
 	"github.com/gin-gonic/gin"
 
+	"leat/api/format"
 	"leat/api/operation"
 	"leat/api/wire"
 )
@@ -39,13 +40,20 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 	if op.Long {
 		limit = bodyLimit{"profile_body_bytes", s.config.ProfileBytes}
 	}
+	forms := format.Renderings(op)
+	offers := []string{mediaJSON}
+	for i := range forms {
+		offers = append(offers, forms[i].MediaType)
+	}
 	return func(c *gin.Context) {
-		options, problem := s.admit(c, op, mediaJSON)
+		options, accepted, problem := s.admit(c, mediaJSON, offers...)
 		if problem != nil {
 			s.refuse(c, problem)
 			return
 		}
-		options.Inside = true
+		if op.Long {
+			options.Begin = checkpoints(c.Request.Context(), s.config.TimeLimit)
+		}
 		if len(c.Request.TransferEncoding) > 0 {
 			// net/http hides a Content-Length beside chunks. A proxy that went by it would see other requests on
 			// this connection than we do, so there must be no further ones (RFC 9112, 6.3).
@@ -61,7 +69,7 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 		buffer := s.answers.get()
 		defer s.answers.put(buffer)
 		began := time.Now()
-		answer, _, problem := op.Answer((*buffer)[:0], body.bytes, options)
+		answer, media, problem := answerAs(op, forms, accepted, (*buffer)[:0], body.bytes, options)
 		*buffer = answer
 		if problem == nil && time.Since(began) > s.config.TimeLimit {
 			problem = lateAnswer(s.config.TimeLimit)
@@ -71,7 +79,7 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 			return
 		}
 		h := c.Writer.Header()
-		h["Content-Type"] = jsonType
+		h["Content-Type"] = media
 		h["Content-Length"] = []string{strconv.Itoa(len(answer))}
 		c.Writer.WriteHeader(http.StatusOK)
 		c.Writer.Write(answer)
@@ -80,22 +88,35 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 
 var jsonType = []string{mediaJSON}
 
-// admit checks all that a POST says before its body: query, media type, what it accepts.
-func (s *Server) admit(c *gin.Context, op *operation.Operation, media string) (operation.Options, *wire.Problem) {
-	options, problem := readQuery(c.Request.URL.RawQuery)
-	options.Limits = &s.limits
-	if op.Long {
-		options.Begin = checkpoints(c.Request.Context(), s.config.TimeLimit)
+// answerAs solves a request and appends its answer in the form accepted; media is its Content-Type.
+func answerAs(op *operation.Operation, forms []format.Rendering, accepted string, dst, body []byte, options operation.Options) (answer []byte, media []string, problem *wire.Problem) {
+	solved, problem := op.Solve(body, options)
+	if problem != nil {
+		return dst, nil, problem
 	}
+	for i := range forms {
+		if forms[i].MediaType == accepted {
+			answer, problem = forms[i].Append(dst, &solved)
+			return answer, []string{forms[i].ContentType}, problem
+		}
+	}
+	return solved.AppendJSON(dst, true), jsonType, nil
+}
+
+// admit checks all that a POST says before its body: query, media type, and which of the offered media types it accepts.
+func (s *Server) admit(c *gin.Context, media string, offers ...string) (options operation.Options, accepted string, problem *wire.Problem) {
+	options, problem = readQuery(c.Request.URL.RawQuery)
+	options.Limits = &s.limits
 	if problem == nil {
 		problem = checkMedia(c.Request.Header, c.Writer.Header(), media)
 	}
 	if problem == nil {
-		if _, found := negotiate(c.Request.Header, media); !found {
-			problem = notAcceptable(media)
+		var found bool
+		if accepted, found = negotiate(c.Request.Header, offers...); !found {
+			problem = notAcceptable(offers...)
 		}
 	}
-	return options, problem
+	return options, accepted, problem
 }
 
 // refuse answers with a problem before the body was read. It drops what the client is sending all the same, up to a bound, so
