@@ -39,18 +39,31 @@ func (g *segment) energyResidual(from, to float64) float64 {
 			residual += e0 - last // the depth may change at a knot, at equal energy
 		}
 		residual += e1 - e0
-		const parts = 3
-		for k := range parts {
-			x0 := before + (end-before)*float64(k)/parts
-			x1 := before + (end-before)*float64(k+1)/parts
-			residual -= l.work(p, x0, x1)
-		}
+		residual -= l.workIn(p, before, end, 1e-12*max(e0, e1))
 		before, last = end, e1
 		if before >= to {
 			break
 		}
 	}
 	return math.Abs(residual)
+}
+
+// workIn returns the change of the specific energy between two chainages of one panel, by ever more parts until it stands.
+func (l *leg) workIn(p *panel, from, to, tolerance float64) float64 {
+	work := math.Inf(1)
+	for parts := 2; parts <= 64; parts *= 2 {
+		sum := 0.0
+		for k := range parts {
+			x0 := from + (to-from)*float64(k)/float64(parts)
+			x1 := from + (to-from)*float64(k+1)/float64(parts)
+			sum += l.work(p, x0, x1)
+		}
+		if math.Abs(sum-work) <= tolerance {
+			return sum
+		}
+		work = sum
+	}
+	return work
 }
 
 // work returns the change of the specific energy between two chainages of one panel by quadrature: of S0 - Sf, less what an inflow takes.

@@ -323,7 +323,7 @@ func (c *collocation) stopAtBreak(p panel) (panel, bool) {
 		} else {
 			lo = width
 		}
-		if hi-lo <= 1e-14*c.v.length {
+		if hi-lo <= 1e-14*c.v.length && math.Abs(q.y1-b) <= 1e-9*b {
 			q.y1 = b
 			return q, true
 		}
@@ -388,7 +388,7 @@ func (c *collocation) overDepth(n, d, width, share float64) (p panel, ok bool) {
 	if b, crosses := c.crossed(panel{y0: c.y, y1: to}); crosses {
 		to = b
 	}
-	if math.Abs(to-c.y) < 1e-9*c.y && share == 1 {
+	if math.Abs(to-c.y) < 1e-8*c.y && share == 1 {
 		return c.hop(to)
 	}
 	return c.panelOverDepth(to)
@@ -398,7 +398,7 @@ func (c *collocation) overDepth(n, d, width, share float64) (p panel, ok bool) {
 func (c *collocation) hop(to float64) (p panel, ok bool) {
 	n, d := c.v.rates(c.x, c.y+(to-c.y)/2)
 	x := c.x + c.direction*math.Abs(d/n*(to-c.y))
-	return panel{x0: c.x, x1: x, y0: c.y, y1: to, form: straight}, x != c.x
+	return panel{x0: c.x, x1: x, y0: c.y, y1: to, form: straight}, true
 }
 
 // panelOverDepth solves one panel up to a depth.

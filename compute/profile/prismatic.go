@@ -270,7 +270,7 @@ func (s *sweeper) along(b flow.Branch) (on bool, err error) {
 			s.straight(s.far, pole, false)
 			return false, nil
 		}
-		reached := s.step(stop, !math.IsNaN(pole))
+		reached := s.step(b, stop, !math.IsNaN(pole))
 		if reached {
 			break
 		}
@@ -334,8 +334,8 @@ func (s *sweeper) hop(stop float64) bool {
 	return true
 }
 
-// step adds one panel, at most to the stop. asymptote tells that the stop is a normal depth that is never reached. It reports whether the stop was reached.
-func (s *sweeper) step(stop float64, asymptote bool) bool {
+// step adds one panel on a branch, at most to the stop. asymptote tells that the stop is a normal depth that is never reached. It reports whether the stop was reached.
+func (s *sweeper) step(b flow.Branch, stop float64, asymptote bool) bool {
 	p := s.p
 	c, until := s.chartAt(stop)
 	u0 := c.of(s.y)
@@ -358,7 +358,8 @@ func (s *sweeper) step(stop float64, asymptote bool) bool {
 		}
 	}
 	toward := math.Copysign(1, s.rise*c.side)
-	normal := c.pole != 0 && !c.crown
+	// The pole's own formula holds where nothing breaks between.
+	normal := c.pole != 0 && !c.crown && b.Lo <= c.pole && c.pole <= b.Hi
 	if !toPole && math.Abs(stop-s.y) < 1e-8*s.y {
 		return s.hop(stop)
 	}
