@@ -70,6 +70,10 @@ func fullHouse() *wire.Problem {
 	return wire.Saturated("Too many request bodies are held in memory at this moment; send the request again after the seconds in Retry-After.")
 }
 
+func noTurn() *wire.Problem {
+	return wire.Saturated("Too many requests are being solved at this moment; send the request again after the seconds in Retry-After.")
+}
+
 func aboutToStop() *wire.Problem {
 	return wire.Draining("The service is about to stop and takes no new bulk streams; send the request again after the seconds in Retry-After.")
 }

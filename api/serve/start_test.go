@@ -138,12 +138,17 @@ func testSurroundings(log io.Writer) Surroundings {
 // start starts a server with fake operations over a real socket, adjusted before it listens; it is stopped when the test ends.
 func start(t *testing.T, change func(*Config, *Surroundings), adjust ...func(*http.Server)) *running {
 	t.Helper()
+	return startOperations(t, []*operation.Operation{fakeOperation("section"), fakeOperation("depths"), fakeOperation("rating"), fakeOperation("profile")}, change, adjust...)
+}
+
+func startOperations(t *testing.T, operations []*operation.Operation, change func(*Config, *Surroundings), adjust ...func(*http.Server)) *running {
+	t.Helper()
 	config, log := testConfig(t), new(logBuffer)
 	around := testSurroundings(log)
 	if change != nil {
 		change(&config, &around)
 	}
-	server, err := New(config, []*operation.Operation{fakeOperation("section"), fakeOperation("depths"), fakeOperation("rating")}, around)
+	server, err := New(config, operations, around)
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -16,8 +16,8 @@ import (
 // answers are buffers for the answers of unary operations.
 type answers struct{ pool sync.Pool }
 
-// largestKeptAnswer bounds the buffers that are kept for reuse.
-const largestKeptAnswer = 256 << 10
+// largestKeptAnswer bounds the buffers that are kept for reuse: states at as many depths as a request may ask for fit.
+const largestKeptAnswer = 8 << 20
 
 func (a *answers) get() *[]byte {
 	if b, found := a.pool.Get().(*[]byte); found {
@@ -45,6 +45,7 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 	for i := range forms {
 		offers = append(offers, forms[i].MediaType)
 	}
+	turns := newTurns() // of its own, so that long solves do not keep short ones waiting
 	return func(c *gin.Context) {
 		options, accepted, problem := s.admit(c, mediaJSON, offers...)
 		if problem != nil {
@@ -66,10 +67,16 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 			return
 		}
 		defer body.release()
+		if !turns.take(c.Request.Context(), s.config.TimeLimit) {
+			s.writeProblem(c, noTurn())
+			return
+		}
 		buffer := s.answers.get()
 		defer s.answers.put(buffer)
 		began := time.Now()
-		answer, media, problem := answerAs(op, forms, accepted, (*buffer)[:0], body.bytes, options)
+		answer, media, problem := turns.use(func() ([]byte, []string, *wire.Problem) {
+			return answerAs(op, forms, accepted, (*buffer)[:0], body.bytes, options)
+		})
 		*buffer = answer
 		if problem == nil && time.Since(began) > s.config.TimeLimit {
 			problem = lateAnswer(s.config.TimeLimit)
