@@ -16,7 +16,7 @@ type collocation struct {
 	far         float64
 	trace       *trace
 	width       float64 // of the last panel accepted
-	noise       float64 // the tail of the last panel refused, before its width was halved
+	tails       floor // of the panels refused at this place
 	slope       float64 // ddepth/dx to begin with, where the equation cannot tell it: at a control
 }
 
@@ -129,7 +129,7 @@ func (c *collocation) run() error {
 func (c *collocation) advance(width float64) bool {
 	v := c.v
 	n, d := v.rates(c.x, c.y)
-	c.noise = math.Inf(1)
+	c.tails = newFloor()
 	steep := math.IsNaN(c.slope) && math.Abs(d) < 0.3*v.cosine
 	whole := width
 	for range 60 {
@@ -265,7 +265,7 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 	}
 	s := newSeries(&f)
 	rise, _ := s.integral(1)
-	if !c.settled((math.Abs(s[order-1]) + math.Abs(s[order-2])) / (math.Abs(rise) + 1e-3*c.y)) {
+	if !c.settled((math.Abs(s[order-1]) + math.Abs(s[order-2])) / (math.Abs(rise) + 0.1*c.y)) {
 		return p, false
 	}
 	y1 := c.y + rise
@@ -279,13 +279,9 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 	return panel{x0: c.x, x1: x1, y0: c.y, y1: y1, form: overChainage, s: s, full: c.full(y[order/2])}, true
 }
 
-// settled reports whether the tail of a panel's series is small enough, or is the noise of the last places, which halving the width does not lower.
+// settled reports whether the tail of a panel's series is small enough, or is the noise of the last places.
 func (c *collocation) settled(tail float64) bool {
-	if tail < settled || tail < noisy && tail > 0.5*c.noise {
-		return true
-	}
-	c.noise = tail
-	return false
+	return tail < settled || c.tails.reached(tail)
 }
 
 func (c *collocation) full(y float64) bool {

@@ -317,9 +317,6 @@ func (s *sweeper) chartAt(stop float64) (c chart, until float64) {
 // resolved is the tail of a series below which its panel counts as resolved.
 const resolved = 1e-12
 
-// noisy is the most that a tail may be the noise of the last places.
-const noisy = 1e-6
-
 // hop goes over a rise of the depth so small that its last places are all there is of it, with one value of dx/ddepth. It reports whether the stop was reached.
 func (s *sweeper) hop(stop float64) bool {
 	p := s.p
@@ -363,7 +360,7 @@ func (s *sweeper) step(b flow.Branch, stop float64, asymptote bool) bool {
 	if !toPole && math.Abs(stop-s.y) < 1e-8*s.y {
 		return s.hop(stop)
 	}
-	noise := math.Inf(1) // the tail before the width was halved
+	tails := newFloor()
 	for {
 		u1 := u0 + toward*width
 		y1 := 0.0
@@ -390,12 +387,10 @@ func (s *sweeper) step(b flow.Branch, stop float64, asymptote bool) bool {
 		}
 		series := newSeries(&values)
 		tail := series.tail()
-		// Where halving no longer helps, the tail is the noise of the last places, next to a crown or to critical depth.
 		whole, _ := series.integral(1)
-		settled := tail < resolved || tail*math.Abs(whole) < 1e-14*p.length || tail < noisy && tail > noise/2
+		settled := tail < resolved || tail*math.Abs(whole) < 1e-14*p.length || tails.reached(tail)
 		if width > 1e-9 && (!settled || !good) && math.Abs(u1-u0) > 1e-9*math.Abs(u0) {
 			width = math.Min(width, math.Abs(u1-u0)) / 2
-			noise = tail
 			continue
 		}
 		x1 := s.x + whole

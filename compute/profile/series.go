@@ -68,16 +68,6 @@ func (s *series) tail() float64 {
 	return (math.Abs(s[order-1]) + math.Abs(s[order-2])) / largest
 }
 
-// at returns the value at t.
-func (s *series) at(t float64) float64 {
-	p, below, sum := 1.0, 0.0, 0.0
-	for k := 0; k < order; k++ {
-		sum += s[k] * p
-		p, below = next(k, t, p, below), p
-	}
-	return sum
-}
-
 // next returns P_(k+1)(t) from P_k and P_(k-1).
 func next(k int, t, p, below float64) float64 {
 	return (recurrence[k][0]*t)*p - recurrence[k][1]*below
@@ -141,4 +131,28 @@ func (s *series) invert(integral float64) float64 {
 		t -= step
 	}
 	return t
+}
+
+// noisy is the most that a tail may be the noise of the last places.
+const noisy = 1e-6
+
+// A floor watches the tails of ever narrower panels. Next to a crown or to critical depth the last places of the depth are coarse, and the tail stops falling: even
+// where a function has a singular end, three halvings lower it well below half.
+type floor struct {
+	before [3]float64
+	n      int
+}
+
+func newFloor() floor {
+	none := math.Inf(1)
+	return floor{before: [3]float64{none, none, none}}
+}
+
+// reached notes a tail and reports whether it is noise.
+func (f *floor) reached(tail float64) bool {
+	i := f.n % len(f.before)
+	noise := tail < noisy && tail > f.before[i]/2
+	f.before[i] = tail
+	f.n++
+	return noise
 }
