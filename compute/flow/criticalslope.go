@@ -90,5 +90,7 @@ func (c *Channel) steepCriticalSlope(discharge float64) (slope float64, known bo
 		return 0, false
 	}
 	slope, _, known = solve.RootSlopeless(func(slope float64) float64 { return c.slopeExcess(discharge, slope) }, 0, hi)
+	// Where the lowest critical depth gives way to a higher one the excess may jump past zero: that is no root.
+	known = known && math.Abs(c.slopeExcess(discharge, slope)) <= 1e-6*slope
 	return slope, known && slope > 0 && slope < 1
 }
