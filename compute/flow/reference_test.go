@@ -486,3 +486,22 @@ func (j *judge) conjugate(member string, got float64, absent flow.Absence, w wan
 	}
 	j.root(member, got, w)
 }
+
+// TestConjugateDepthsNextToACrown holds depths on a branch so short and flat that the first guess already meets the energy to eight
+// digits, against values computed by the same program.
+func TestConjugateDepthsNextToACrown(t *testing.T) {
+	s, err := section.NewElliptical(0.34, 0.233)
+	if err != nil {
+		t.Fatal(err)
+	}
+	c := flow.Channel{Section: s, Slope: 0.000201, Gravity: 9.80665}
+	const discharge, depth = 0.9790551734972509, 0.23299576916888262
+	y, absent := c.Alternate(discharge, depth)
+	if !(math.Abs(y-0.2329980400115632699) <= 1e-14) || absent != flow.Present {
+		t.Errorf("alternate depth %v %s", y, absent)
+	}
+	y, absent = c.Sequent(discharge, depth)
+	if !(math.Abs(y-0.2329980400115314897) <= 1e-14) || absent != flow.Present {
+		t.Errorf("sequent depth %v %s", y, absent)
+	}
+}
