@@ -36,16 +36,35 @@ func newProfileRun(r *wire.ProfileRequest, options Options) (*profileRun, *wire.
 	for i := len(r.Report.At) - 1; i >= 0 && r.Report.At[i] > p.length; i-- {
 		r.Report.At[i] = p.length // what was rounded beyond the end
 	}
-	faults := p.reaches(p.stations(nil))
-	if len(faults) > 0 {
+	faults, err := p.stations(nil)
+	if err == nil {
+		faults, err = p.reaches(faults)
+	}
+	switch {
+	case err != nil:
+		return nil, p.problem(err)
+	case len(faults) > 0:
 		return nil, wire.InvalidRequest(faults...)
 	}
 	return p, nil
 }
 
+// goOn reports whether there is more to build after so many faults; the error is that of the checkpoint.
+func (p *profileRun) goOn(faults int) (bool, error) {
+	if p.run.Checkpoint != nil {
+		if err := p.run.Checkpoint(); err != nil {
+			return false, err
+		}
+	}
+	return faults < wire.MaxFaults, nil
+}
+
 // reaches builds the chain of reaches, and adds the faults of their members.
-func (p *profileRun) reaches(faults []wire.Fault) []wire.Fault {
+func (p *profileRun) reaches(faults []wire.Fault) ([]wire.Fault, error) {
 	for i := range p.request.Reaches {
+		if more, err := p.goOn(len(faults)); !more {
+			return faults, err
+		}
 		r := &p.request.Reaches[i]
 		reach := profile.Reach{
 			Length: r.Length.Value, Inflow: r.Inflow.Or(0), Lateral: r.LateralInflow.Or(0), Drop: r.Drop.Or(0), Loss: r.LossCoefficient.Or(0),
@@ -55,13 +74,16 @@ func (p *profileRun) reaches(faults []wire.Fault) []wire.Fault {
 		reach.Channel, faults = in.build("/reaches/"+strconv.Itoa(i), faults)
 		p.run.Reaches = append(p.run.Reaches, reach)
 	}
-	return faults
+	return faults, nil
 }
 
 // stations builds the surveyed stations, and adds the faults of their members. Stations that say the same share one section and one
 // law, by which the solver knows them.
-func (p *profileRun) stations(faults []wire.Fault) []wire.Fault {
+func (p *profileRun) stations(faults []wire.Fault) ([]wire.Fault, error) {
 	for i := range p.request.Stations {
+		if more, err := p.goOn(len(faults)); !more {
+			return faults, err
+		}
 		r := &p.request.Stations[i]
 		station := profile.Station{Chainage: r.Chainage.Value - p.start, BedLevel: bedLevel(r)}
 		in := inputs{&p.request.Common, r.Barrels, &r.Section, &r.Roughness, wire.Number{}}
@@ -81,7 +103,7 @@ func (p *profileRun) stations(faults []wire.Fault) []wire.Fault {
 		}
 		p.run.Stations = append(p.run.Stations, station)
 	}
-	return faults
+	return faults, nil
 }
 
 // bedLevel returns the level of a station's bed: as given, or that of the lowest of its surveyed points.

@@ -174,6 +174,18 @@ func TestProfileRefusals(t *testing.T) {
 	if problem != late || begun != 1 {
 		t.Errorf("%v after %d beginnings, want the checkpoint's problem", problem, begun)
 	}
+	calls := 0
+	_, problem = solveWith(t, oneReach(downstream), Options{Begin: func() func() error {
+		return func() error {
+			if calls++; calls > 1 {
+				return late
+			}
+			return nil
+		}
+	}}, func(r *profile.Run) (*profile.Answer, error) { return nil, r.Checkpoint() })
+	if problem != late || calls != 2 {
+		t.Errorf("%v after %d calls, want the solver's second call to end it", problem, calls)
+	}
 }
 
 // Every part of a solver's answer has its place.
