@@ -50,6 +50,10 @@ func (g *segment) energyResidual(from, to float64) float64 {
 
 // workIn returns the change of the specific energy between two chainages of one panel, by ever more parts until it stands.
 func (l *leg) workIn(p *panel, from, to, tolerance float64) float64 {
+	if p.held { // between two friction slopes any is possible, and the one that holds the depth is the true one
+		s0, s1 := l.side(from), l.side(to)
+		return s1.energy(p.y0) - s0.energy(p.y0)
+	}
 	work := math.Inf(1)
 	for parts := 2; parts <= 64; parts *= 2 {
 		sum := 0.0

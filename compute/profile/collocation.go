@@ -114,6 +114,9 @@ func (c *collocation) run() error {
 		if !v.a.Section.Closed() && c.y >= v.height {
 			return aboveLastRow
 		}
+		if c.holds() {
+			continue
+		}
 		width := left
 		if c.width > 0 {
 			width = min(width, 2*c.width)
@@ -123,6 +126,61 @@ func (c *collocation) run() error {
 		}
 	}
 	return unsolved("the water surface between two stations")
+}
+
+// breakHere returns the break at which the depth stands.
+func (c *collocation) breakHere() (depth float64, here bool) {
+	const places = 1e-13
+	i, _ := slices.BinarySearch(c.v.breaks, c.y*(1-places))
+	if i < len(c.v.breaks) && c.v.breaks[i] <= c.y*(1+places) {
+		return c.v.breaks[i], true
+	}
+	return 0, false
+}
+
+// drift returns where the depth goes from a break at a chainage: up, down, or neither where it is pushed back from both sides.
+func (c *collocation) drift(x, b float64) (up, down bool) {
+	below, d1 := c.v.rates(x, b)
+	beyond, d2 := c.v.rates(x, justAbove(b))
+	return d2*c.sign() > 0 && beyond/d2*c.direction > 0, d1*c.sign() > 0 && below/d1*c.direction < 0
+}
+
+// holds adds a panel on which the depth stands at a break where the conveyance jumps, as far as it is pushed back from both sides; it reports whether it did.
+func (c *collocation) holds() bool {
+	b, here := c.breakHere()
+	if !here {
+		return false
+	}
+	free := func(x float64) bool {
+		up, down := c.drift(x, b)
+		return up || down
+	}
+	if _, d := c.v.rates(c.x, b); d*c.sign() <= 0 || free(c.x) {
+		return false
+	}
+	const parts = 64
+	last, to := c.x, c.far
+	for i := 1; i <= parts; i++ {
+		x := c.x + (c.far-c.x)*float64(i)/parts
+		if free(x) {
+			for range 60 {
+				if middle := last + (x-last)/2; free(middle) {
+					x = middle
+				} else {
+					last = middle
+				}
+			}
+			to = x
+			break
+		}
+		last = x
+	}
+	if to == c.x {
+		return false
+	}
+	c.trace.panels = append(c.trace.panels, panel{x0: c.x, x1: to, y0: b, y1: b, form: straight, held: true})
+	c.x, c.y, c.width = to, b, 0
+	return true
 }
 
 // advance adds the longest panel of at most a width that can be had, over the chainage or, near critical depth, over the depth.
@@ -197,6 +255,12 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 	if math.IsNaN(begin) {
 		n, d := v.rates(c.x, c.y)
 		begin = n / d
+		if b, here := c.breakHere(); here {
+			if up, _ := c.drift(c.x, b); up {
+				n, d = v.rates(c.x, justAbove(b))
+				begin = n / d
+			}
+		}
 	}
 	var y, f [order]float64
 	for j, t := range rule.node {
@@ -205,8 +269,10 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 			y[j] = c.y
 		}
 	}
+	// Beyond the next break the equation stays as it is there, so that nothing jumps while the panel is sought; what lies beyond is cut off after.
+	low, high := c.piece(begin * half)
 	slopeAt := func(j int, depth float64) (float64, bool) {
-		n, d := v.rates(c.x+half*(rule.node[j]+1), depth)
+		n, d := v.rates(c.x+half*(rule.node[j]+1), min(max(depth, low), high))
 		return n / d, d*c.sign() > 0
 	}
 	converged := false
@@ -278,6 +344,29 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 	}
 	return panel{x0: c.x, x1: x1, y0: c.y, y1: y1, form: overChainage, s: s, full: c.full(y[order/2])}, true
 }
+
+// piece returns the depths of the breaks below and above the depth of the sweep, as it sets out to rise or to fall.
+func (c *collocation) piece(rise float64) (low, high float64) {
+	breaks := c.v.breaks
+	const places = 1e-13
+	low, high = 0, c.v.height
+	if c.y >= high*(1-places) && (rise > 0 || c.y > high) {
+		return high, math.Inf(1)
+	}
+	for _, b := range breaks {
+		at := math.Abs(b-c.y) <= places*b
+		switch {
+		case b < c.y && !at || at && rise > 0:
+			low = justAbove(b)
+		case b > c.y && !at || at:
+			return low, min(high, b)
+		}
+	}
+	return low, high
+}
+
+// justAbove returns the next depth above another.
+func justAbove(depth float64) float64 { return math.Nextafter(depth, math.Inf(1)) }
 
 // settled reports whether the tail of a panel's series is small enough, or is the noise of the last places.
 func (c *collocation) settled(tail float64) bool {

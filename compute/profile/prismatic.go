@@ -127,8 +127,9 @@ func (s *sweeper) run() error {
 			return nil
 		}
 		switch b, moves := s.where(); {
-		case moves == pinned:
+		case moves == pinned || moves == held:
 			s.straight(s.far, s.y, s.full())
+			s.trace.panels[len(s.trace.panels)-1].held = moves == held
 			return nil
 		case moves == ended:
 			return nil
@@ -159,7 +160,8 @@ type moves uint8
 
 const (
 	alongBranch moves = iota
-	pinned            // the depth stays: at a normal depth, or at a break towards which it moves from both sides
+	pinned            // the depth stays at a normal depth
+	held              // it stays at a break towards which it moves from both sides
 	fullFlow          // the closed section flows full
 	ended             // the sweep has no way to go
 	aboveTable        // the water stands above the last row of a table
@@ -217,7 +219,7 @@ func (s *sweeper) where() (flow.Branch, moves) {
 		s.rise = -1
 		return p.branches[below], alongBranch
 	case below >= 0 && (above >= 0 || s.full()):
-		return flow.Branch{}, pinned // it is pushed back from both sides, or stands still
+		return flow.Branch{}, held // it is pushed back from both sides, or stands still
 	case s.full() && s.subcritical:
 		return flow.Branch{}, ended
 	}
