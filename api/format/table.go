@@ -33,7 +33,7 @@ func appendTable(dst []byte, solved *operation.Solved) ([]byte, *wire.Problem) {
 // quoteCell puts the cell that begins at start into quotes, if it needs them.
 func quoteCell(dst []byte, start int) []byte {
 	cell := dst[start:]
-	if bytes.IndexAny(cell, ",\"\r\n") < 0 {
+	if !bytes.ContainsAny(cell, ",\"\r\n") {
 		return dst
 	}
 	cell = bytes.ReplaceAll(cell, []byte(`"`), []byte(`""`)) // a copy
