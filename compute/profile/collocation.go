@@ -128,26 +128,36 @@ func (c *collocation) run() error {
 	return unsolved("the water surface between two stations")
 }
 
-// breakHere returns the break at which the depth stands.
-func (c *collocation) breakHere() (depth float64, here bool) {
+// breakAt returns the break at which a depth stands.
+func (c *collocation) breakAt(y float64) (depth float64, here bool) {
 	const places = 1e-13
-	i, _ := slices.BinarySearch(c.v.breaks, c.y*(1-places))
-	if i < len(c.v.breaks) && c.v.breaks[i] <= c.y*(1+places) {
+	i, _ := slices.BinarySearch(c.v.breaks, y*(1-places))
+	if i < len(c.v.breaks) && c.v.breaks[i] <= y*(1+places) {
 		return c.v.breaks[i], true
 	}
 	return 0, false
+}
+
+// ahead returns the numerator and the denominator of the equation where the sweep stands, at a break on the side to which the depth goes.
+func (c *collocation) ahead() (numerator, denominator float64) {
+	if b, here := c.breakAt(c.y); here {
+		if up, _ := c.drift(c.x, b); up {
+			return c.v.rates(c.x, justAbove(b))
+		}
+	}
+	return c.v.rates(c.x, c.y)
 }
 
 // drift returns where the depth goes from a break at a chainage: up, down, or neither where it is pushed back from both sides.
 func (c *collocation) drift(x, b float64) (up, down bool) {
 	below, d1 := c.v.rates(x, b)
 	beyond, d2 := c.v.rates(x, justAbove(b))
-	return d2*c.sign() > 0 && beyond/d2*c.direction > 0, d1*c.sign() > 0 && below/d1*c.direction < 0
+	return d2*c.sign() >= 0 && beyond*c.sign()*c.direction > 0, d1*c.sign() >= 0 && below*c.sign()*c.direction < 0
 }
 
 // holds adds a panel on which the depth stands at a break where the conveyance jumps, as far as it is pushed back from both sides; it reports whether it did.
 func (c *collocation) holds() bool {
-	b, here := c.breakHere()
+	b, here := c.breakAt(c.y)
 	if !here {
 		return false
 	}
@@ -186,7 +196,7 @@ func (c *collocation) holds() bool {
 // advance adds the longest panel of at most a width that can be had, over the chainage or, near critical depth, over the depth.
 func (c *collocation) advance(width float64) bool {
 	v := c.v
-	n, d := v.rates(c.x, c.y)
+	n, d := c.ahead()
 	c.tails = newFloor()
 	steep := math.IsNaN(c.slope) && math.Abs(d) < 0.3*v.cosine
 	whole := width
@@ -221,7 +231,7 @@ func (c *collocation) atEnd() bool {
 	if !math.IsNaN(c.slope) || len(c.trace.panels) == 0 {
 		return false
 	}
-	n, d := c.v.rates(c.x, c.y)
+	n, d := c.ahead()
 	if d *= c.sign(); d > 1e-3*c.v.cosine {
 		return false
 	}
@@ -234,6 +244,9 @@ func (c *collocation) atEnd() bool {
 }
 
 func (c *collocation) accept(p panel) {
+	if b, here := c.breakAt(p.y1); here {
+		p.y1 = b
+	}
 	c.trace.panels = append(c.trace.panels, p)
 	c.width = math.Abs(p.x1 - p.x0)
 	c.x, c.y, c.slope = p.x1, p.y1, math.NaN()
@@ -253,14 +266,8 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 	half := c.direction * width / 2
 	begin := c.slope
 	if math.IsNaN(begin) {
-		n, d := v.rates(c.x, c.y)
+		n, d := c.ahead()
 		begin = n / d
-		if b, here := c.breakHere(); here {
-			if up, _ := c.drift(c.x, b); up {
-				n, d = v.rates(c.x, justAbove(b))
-				begin = n / d
-			}
-		}
 	}
 	var y, f [order]float64
 	for j, t := range rule.node {

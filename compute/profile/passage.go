@@ -25,7 +25,8 @@ func (v *varying) controls(parts int) ([]passage, error) {
 		n := numerator(x)
 		if before < 0 && n > 0 {
 			at, _, ok := solve.RootSlopeless(numerator, from, x)
-			if ok && at > 0 && at < v.length {
+			// Where critical depth itself jumps the numerator jumps past zero: no passage.
+			if ok && at > 0 && at < v.length && math.Abs(numerator(at)) <= 1e-6*(n-before) {
 				s := v.side(at)
 				depth, _, _ := s.motion.LeastEnergy()
 				if _, through := v.throughCritical(at, depth); through {
