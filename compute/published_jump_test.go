@@ -13,7 +13,6 @@ func init() {
 	covers(jumpClasses, "jump-class-losses")
 	covers(triangularJump, "tri-jump")
 	covers(straub, "straub-circ")
-	belongs("belongs to profiles: the length of a jump", "usbr-jump-length")
 }
 
 func jump(c *claim) {

@@ -16,8 +16,6 @@ func init() {
 	covers(diameterFull, "hec22-7-1-conc-si", "hec22-7-1-cmp-si")
 	covers(velocityFull, "hec22-7-1-v")
 	covers(widthForVelocity, "chow-7-1-velocity")
-	covers(backwaterNormal, "chow-10-1", "hwang-6-backwater")
-	covers(bresseNormal, "bresse-profile")
 	covers(cosine, "cos-correction")
 }
 
@@ -122,25 +120,6 @@ func widthForVelocity(c *claim) {
 	c.want("hydraulic_radius", state.Radius)
 }
 
-const ofProfiles = "belongs to profiles"
-
-func backwaterNormal(c *claim) {
-	channel := c.channel(c.section())
-	discharge := c.given("discharge")
-	c.want("normal_depth", c.normal(channel, discharge))
-	if critical, isNumber := c.c.Independent["critical_depth"].(float64); isNumber {
-		if got := c.critical(flat(*channel), discharge); !(math.Abs(got-critical) <= 1e-10*critical) {
-			c.Errorf("critical depth %.12g, independently %.12g", got, critical)
-		}
-	}
-	c.aside("depth_at_dam", "upstream_end_depth", "depths", "distances_upstream")
-	for name := range c.c.Expected {
-		if name != "normal_depth" {
-			c.leave(ofProfiles, name)
-		}
-	}
-}
-
 func bresseNormal(c *claim) {
 	c.is("friction", "chezy")
 	c.agreement = 1e-7 // the width is finite
@@ -150,8 +129,6 @@ func bresseNormal(c *claim) {
 	c.want("normal_depth", c.normal(channel, discharge))
 	c.agreement = 1e-10
 	c.want("critical_depth", c.critical(flat(*channel), discharge))
-	c.aside("depth_over_normal")
-	c.leave(ofProfiles, "profile_length", "profile_length_by_quadrature")
 }
 
 func cosine(c *claim) {
