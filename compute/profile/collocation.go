@@ -3,6 +3,8 @@ package profile
 import (
 	"math"
 	"slices"
+
+	"leat/compute/flow"
 )
 
 // collocation integrates a varying stretch panel by panel: on each the derivative is a polynomial that satisfies the equation at the Gauss points
@@ -44,7 +46,9 @@ func (v *varying) sweep(x, depth, direction float64, subcritical bool) (*trace, 
 	if !subcritical && v.a.Section.Closed() && depth >= v.height {
 		return c.done(), nil
 	}
-	if c.startsAtCritical() {
+	if v.a.Section.Closed() && math.Abs(depth-v.height) <= 1e-12*v.height {
+		c.y = v.height
+	} else if c.startsAtCritical() {
 		if x > 0 && x < v.length {
 			slope, ok := v.throughCritical(x, depth)
 			if !ok {
@@ -114,7 +118,10 @@ func (c *collocation) run() error {
 		if !v.a.Section.Closed() && c.y >= v.height {
 			return aboveLastRow
 		}
-		if c.holds() {
+		if !c.subcritical && v.a.Section.Closed() && c.y >= v.height*(1-1e-12) {
+			return nil // filled: the supercritical branch ends
+		}
+		if c.holds() || c.changeBranch() {
 			continue
 		}
 		width := left
@@ -122,6 +129,9 @@ func (c *collocation) run() error {
 			width = min(width, 2*c.width)
 		}
 		if !c.advance(width) {
+			if _, here := c.breakAt(c.y); here && len(c.trace.panels) > 0 {
+				return nil // its branch ends at the break, and there is none to go on
+			}
 			return unsolved("the water surface between two stations")
 		}
 	}
@@ -190,6 +200,42 @@ func (c *collocation) holds() bool {
 	}
 	c.trace.panels = append(c.trace.panels, panel{x0: c.x, x1: to, y0: b, y1: b, form: straight, held: true})
 	c.x, c.y, c.width = to, b, 0
+	return true
+}
+
+// changeBranch takes the sweep on, at equal energy, to the next branch of its regime in the direction in which the depth was moving, where its own ends at a
+// break: there the width jumps, and F past one. It reports whether it did.
+func (c *collocation) changeBranch() bool {
+	b, here := c.breakAt(c.y)
+	n := len(c.trace.panels)
+	if !here || n == 0 {
+		return false
+	}
+	if up, down := c.drift(c.x, b); up || down {
+		return false
+	}
+	was := c.trace.panels[n-1]
+	rising := was.y1 > was.y0
+	s := c.v.side(c.x)
+	y := b
+	if !rising { // it came from above the break
+		y = justAbove(b)
+	}
+	energy, found := s.motion.Energy(s.channel.Section.At(y)), math.NaN()
+	s.motion.EnergyBranches(func(e flow.Branch) bool {
+		if e.Rising != c.subcritical || rising && e.Hi <= b || !rising && e.Lo >= b {
+			return true
+		}
+		if depth, ok := onBranch(&s.motion, s.channel, e, energy); ok && (depth > b) == rising && math.Abs(depth-b) > 1e-12*b {
+			found = depth
+			return !rising // going down, the last found is the nearest
+		}
+		return true
+	})
+	if math.IsNaN(found) {
+		return false
+	}
+	c.y, c.width = found, 0
 	return true
 }
 
@@ -360,6 +406,7 @@ func (c *collocation) piece(rise float64) (low, high float64) {
 	if c.y >= high*(1-places) && (rise > 0 || c.y > high) {
 		return high, math.Inf(1)
 	}
+	high = math.Nextafter(high, 0) // at the crown itself the section is full
 	for _, b := range breaks {
 		at := math.Abs(b-c.y) <= places*b
 		switch {
