@@ -384,7 +384,7 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 	}
 	s := newSeries(&f)
 	rise, _ := s.integral(1)
-	if !c.settled((math.Abs(s[order-1]) + math.Abs(s[order-2])) / (math.Abs(rise) + 0.1*c.y)) {
+	if !c.settled((math.Abs(s[order-1]) + math.Abs(s[order-2])) / (math.Abs(rise) + 0.1*c.y), noisyOverChainage) {
 		return p, false
 	}
 	y1 := c.y + rise
@@ -423,8 +423,8 @@ func (c *collocation) piece(rise float64) (low, high float64) {
 func justAbove(depth float64) float64 { return math.Nextafter(depth, math.Inf(1)) }
 
 // settled reports whether the tail of a panel's series is small enough, or is the noise of the last places.
-func (c *collocation) settled(tail float64) bool {
-	return tail < settled || c.tails.reached(tail)
+func (c *collocation) settled(tail, noisy float64) bool {
+	return tail < settled || c.tails.reached(tail, noisy)
 }
 
 func (c *collocation) full(y float64) bool {
@@ -527,7 +527,7 @@ func (c *collocation) overDepth(n, d, width, share float64) (p panel, ok bool) {
 	if b, crosses := c.crossed(panel{y0: c.y, y1: to}); crosses {
 		to = b
 	}
-	if math.Abs(to-c.y) < 1e-8*c.y && share == 1 {
+	if dy := math.Abs(to - c.y); to == c.v.height && (dy < 1e-8*c.y || dy < 1e-9*c.v.length*math.Abs(n)) {
 		return c.hop(to)
 	}
 	return c.panelOverDepth(to)
@@ -581,7 +581,7 @@ func (c *collocation) panelOverDepth(to float64) (p panel, ok bool) {
 		f[j] *= half
 	}
 	s := newSeries(&f)
-	if !c.settled(s.tail()) {
+	if !c.settled(s.tail(), noisyOverDepth) {
 		return p, false
 	}
 	whole, _ := s.integral(1)

@@ -390,7 +390,7 @@ func (s *sweeper) step(b flow.Branch, stop float64, asymptote bool) bool {
 		series := newSeries(&values)
 		tail := series.tail()
 		whole, _ := series.integral(1)
-		settled := tail < resolved || tail*math.Abs(whole) < 1e-14*p.length || tails.reached(tail)
+		settled := tail < resolved || tail*math.Abs(whole) < 1e-14*p.length || tails.reached(tail, noisyOverDepth)
 		if width > 1e-9 && (!settled || !good) && math.Abs(u1-u0) > 1e-9*math.Abs(u0) {
 			width = math.Min(width, math.Abs(u1-u0)) / 2
 			continue

@@ -133,8 +133,11 @@ func (s *series) invert(integral float64) float64 {
 	return t
 }
 
-// noisy is the most that a tail may be the noise of the last places.
-const noisy = 1e-6
+// The most that a tail may be the noise of the last places, where the chainage is a series over the depth and where the depth is one over the chainage.
+const (
+	noisyOverDepth    = 1e-6
+	noisyOverChainage = 1e-9
+)
 
 // A floor watches the tails of ever narrower panels. Next to a crown or to critical depth the last places of the depth are coarse, and the tail stops falling: even
 // where a function has a singular end, three halvings lower it well below half.
@@ -148,8 +151,8 @@ func newFloor() floor {
 	return floor{before: [3]float64{none, none, none}}
 }
 
-// reached notes a tail and reports whether it is noise.
-func (f *floor) reached(tail float64) bool {
+// reached notes a tail and reports whether it is noise, which is at most noisy.
+func (f *floor) reached(tail, noisy float64) bool {
 	i := f.n % len(f.before)
 	noise := tail < noisy && tail > f.before[i]/2
 	f.before[i] = tail
