@@ -58,7 +58,7 @@ func (b *Boundary) downstreamHold(s side, total, bed float64, notes *notes) (hol
 	case Gate:
 		jet := b.Opening * b.Contraction
 		if jet >= critical || jet >= s.channel.Section.Height() {
-			notes.end("gate_does_not_govern", "downstream", "the jet below the gate is not shallower than critical depth, so that the gate does not hold the flow; it acts as a free overfall")
+			notes.end("gate_does_not_govern", "downstream", "The jet below the gate is not shallower than critical depth, so that the gate does not hold the flow; it acts as a free overfall.")
 			return brink, nil
 		}
 		return asks(s.energy(jet))
@@ -71,17 +71,17 @@ func (b *Boundary) downstreamHold(s side, total, bed float64, notes *notes) (hol
 		} else {
 			var ok bool
 			if head, ok = structure.RehbockHead(total, b.CrestHeight, b.CrestWidth, gravity); !ok {
-				return h, &NoSolution{Code: "weir_head", Detail: "the discharge over the weir is so small that the formula gives no head", Member: "downstream"}
+				return h, &NoSolution{Code: "weir_head", Detail: "The discharge over the weir is so small that the formula gives no head; give a discharge_coefficient, or a narrower crest.", Member: "downstream"}
 			}
 			if !structure.WithinRehbock(head, b.CrestHeight, b.CrestWidth) {
-				notes.end("weir_outside_limits", "downstream", "head or crest lies outside the limits of ISO 1438 for Rehbock's formula")
+				notes.end("weir_outside_limits", "downstream", "Head or crest lies outside the limits of ISO 1438 for Rehbock's formula, by which the weir was computed.")
 			}
 		}
 		h.depth = (b.CrestHeight + head) / cosine
 	case Rating:
 		depth, ok := rated(b.Curve, total)
 		if !ok {
-			return h, &NoSolution{Code: "outside_rating", Detail: "the discharge lies outside the rating; give a rating that covers it", Member: "downstream/rating"}
+			return h, &NoSolution{Code: "outside_rating", Detail: "The discharge lies outside the rating; give a rating that covers it.", Member: "downstream/rating"}
 		}
 		h.depth = depth
 	}
@@ -96,7 +96,7 @@ func (h hold) atLeast(critical float64, brink hold, notes *notes) hold {
 	if h.depth >= critical {
 		return h
 	}
-	notes.end("boundary_below_critical", "downstream", "the boundary asks less than critical depth; it acts as a free overfall")
+	notes.end("boundary_below_critical", "downstream", "The boundary asks less than critical depth; it acts as a free overfall.")
 	return brink
 }
 
@@ -118,7 +118,7 @@ func (b *Boundary) upstreamHold(s side, total, bed float64, notes *notes) (hold,
 	case Level:
 		h.depth = (b.Value - bed) / s.channel.Cosine()
 		if !(h.depth > 0) {
-			return h, &NoSolution{Code: "level_below_bed", Detail: "the level at the upstream end lies below the bed", Member: "upstream/level"}
+			return h, &NoSolution{Code: "level_below_bed", Detail: "The level at the upstream end does not lie above the bed there; give a higher one, or leave upstream out.", Member: "upstream/level"}
 		}
 	case Normal:
 		if h.depth, err = normalAt(s, total, "upstream"); err != nil {
@@ -128,7 +128,7 @@ func (b *Boundary) upstreamHold(s side, total, bed float64, notes *notes) (hold,
 		h.depth = b.Opening * b.Contraction
 	}
 	if !(h.depth < critical) {
-		notes.end("boundary_does_not_govern", "upstream", "the upstream boundary is not below critical depth, and subcritical flow is governed from downstream; it counts as left out")
+		notes.end("boundary_does_not_govern", "upstream", "The upstream boundary is not below critical depth, and subcritical flow is governed from downstream; it counts as left out.")
 		return hold{}, nil
 	}
 	return h, nil
@@ -142,7 +142,7 @@ func normalAt(s side, total float64, end string) (float64, error) {
 	case absent == flow.Unsolved:
 		return 0, unsolved("normal depth")
 	case absent != flow.Present:
-		return 0, &NoSolution{Code: absent.Code(), Detail: "there is no normal depth at this end: " + absent.String(), Member: end + "/control"}
+		return 0, &NoSolution{Code: absent.Code(), Detail: "There is no normal depth at this end. " + absent.String(), Member: end + "/control"}
 	}
 	return depths[0], nil
 }

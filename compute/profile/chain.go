@@ -180,7 +180,7 @@ func (c *chain) walk() error {
 				if to > x || !jumps {
 					c.control(l, 0, begin.kind, begin.depth)
 				} else {
-					c.notes.end("boundary_drowned", "upstream", "the subcritical force at the upstream end is greater than that of what the boundary sends in; it is drowned and does not govern")
+					c.notes.end("boundary_drowned", "upstream", "The subcritical force at the upstream end is greater than that of what the boundary sends in; it is drowned and does not govern.")
 				}
 				fromBoundary = false
 			}
@@ -193,7 +193,7 @@ func (c *chain) walk() error {
 				shooting = false
 			case jumps:
 				if i > 0 && x == 0 && c.arrived(i) {
-					c.notes.at("turns_at_joint", l.start, "supercritical flow turns subcritical at this joint, where its force is the larger above and the smaller below")
+					c.notes.at("turns_at_joint", l.start, "Supercritical flow turns subcritical at this joint, where its force is the larger above and the smaller below.")
 				}
 				shooting = false
 			case !t.whole:
@@ -240,7 +240,7 @@ func (c *chain) cross(i int, shooting bool, depth float64) (bool, float64, error
 		if below, ok := l.joint.pass(depth); ok {
 			return true, below, nil
 		}
-		c.notes.at("turns_at_joint", next.start, "supercritical flow has too little energy or force to pass this joint and turns subcritical there")
+		c.notes.at("turns_at_joint", next.start, "Supercritical flow has too little energy or force to pass this joint and turns subcritical there.")
 	}
 	sweeps := next.sub(0) != nil && !(next.length > 0 && next.sub(0).panels[0].x0 == 0)
 	switch {
@@ -276,7 +276,7 @@ func (c *chain) finish(l *leg, shooting bool) {
 	c.controls = c.controls[1:]
 	if shooting {
 		if c.run.Downstream.Kind != FreeOverfall {
-			c.notes.end("boundary_does_not_govern", "downstream", "supercritical flow arrives at the downstream end with the larger force, so that the boundary there does not govern")
+			c.notes.end("boundary_does_not_govern", "downstream", "Supercritical flow arrives at the downstream end with the larger force, so that the boundary there does not govern.")
 		}
 		return
 	}
@@ -335,7 +335,7 @@ type stuck struct{ leg *leg }
 
 func (s *stuck) Error() string { return noSteadyFlow.Detail }
 
-var noSteadyFlow = &NoSolution{Code: "no_steady_flow", Detail: "supercritical flow reaches critical depth inside a reach where no subcritical flow meets it; give other boundaries, or look for an error in the section or the roughness"}
+var noSteadyFlow = &NoSolution{Code: "no_steady_flow", Detail: "Supercritical flow reaches critical depth inside a reach where no subcritical flow meets it; give other boundaries, or look for an error in the section or the roughness."}
 
 // NoSolution is the physical reason why a run has no answer.
 type NoSolution struct {

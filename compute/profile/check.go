@@ -16,7 +16,7 @@ func check(run *Run) compute.Faults {
 		fault("discharge", "not_positive", "The discharge must be greater than 0.")
 	}
 	if (len(run.Reaches) == 0) == (len(run.Stations) < 2) {
-		fault("reaches", "missing_member", "Either reaches or at least two stations must be given, and not both.")
+		fault("reaches", "missing_member", "Give either reaches or at least two stations, not both.")
 	}
 	for i := range run.Reaches {
 		r, at := &run.Reaches[i], "reaches/"+strconv.Itoa(i)
@@ -24,16 +24,16 @@ func check(run *Run) compute.Faults {
 			fault(at+"/length", "not_positive", "The length must be greater than 0.")
 		}
 		if r.Channel.Law == nil {
-			fault(at+"/roughness", "missing_member", "A reach needs a roughness.")
+			fault(at+"/roughness", "missing_member", "A reach needs a roughness; give one.")
 		}
 		if r.Inflow < 0 || r.Lateral < 0 {
-			fault(at, "negative", "Inflows must not be negative.")
+			fault(at, "negative", "Inflows must be 0 or more.")
 		}
 		if i == 0 && (r.Inflow != 0 || r.Entry != 0) {
-			fault(at, "first_reach", "The first reach has no inflow at its upstream end and no entry loss: there is nothing above it.")
+			fault(at, "first_reach", "The first reach has no inflow at its upstream end and no entry loss: there is nothing above it. Leave them out.")
 		}
 		if i == len(run.Reaches)-1 && (r.Drop != 0 || r.Loss != 0) {
-			fault(at, "last_reach", "The last reach has no drop and no loss at its downstream end: there is nothing below it.")
+			fault(at, "last_reach", "The last reach has no drop and no loss at its downstream end: there is nothing below it. Leave them out.")
 		}
 	}
 	for i := 1; i < len(run.Stations); i++ {

@@ -8,4 +8,4 @@ func (u *Unsolved) Error() string { return "the search for " + u.What + " did no
 func unsolved(what string) error { return &Unsolved{what} }
 
 // noConveyance is the reason of a run with flow so shallow that its friction law gives no conveyance.
-var noConveyance = &NoSolution{Code: "no_conveyance", Detail: "the flow is so shallow against its roughness that the friction law gives no conveyance; give a smaller sand roughness or a deeper boundary"}
+var noConveyance = &NoSolution{Code: "no_conveyance", Detail: "The flow is so shallow against its roughness that the friction law gives no conveyance; give a smaller sand roughness or a deeper boundary."}

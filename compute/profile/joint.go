@@ -24,7 +24,7 @@ func (s *side) force(depth float64) float64  { return s.motion.Force(s.channel.G
 func (s *side) critical() (depth float64, err error) {
 	depth, _, known := s.motion.LeastEnergy()
 	if !known {
-		return 0, &NoSolution{Code: "no_critical_depth", Detail: "a section on the way has no critical depth at this discharge, so that it cannot be told which flow it lets through"}
+		return 0, &NoSolution{Code: "no_critical_depth", Detail: "A section on the way has no critical depth at this discharge, so that it cannot be told which flow it lets through; give another section there, or another discharge."}
 	}
 	return depth, nil
 }
@@ -57,7 +57,7 @@ func (s *side) subcritical(want, share, other float64) (depth float64, ok bool, 
 }
 
 // aboveLastRow is the reason of a run whose water stands above what a table says.
-var aboveLastRow = &NoSolution{Code: "above_section", Detail: "the water rises above the last row of a tabulated section; give a table that goes on"}
+var aboveLastRow = &NoSolution{Code: "above_section", Detail: "The water rises above the last row of a tabulated section; give a table that goes on."}
 
 // holds reports whether the section is defined at a depth: any for a closed one, where it is a pressure line.
 func (s *side) holds(depth float64) bool {
