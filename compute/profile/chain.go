@@ -43,6 +43,9 @@ func (c *chain) layReaches() error {
 	total, at := c.run.Discharge, 0.0
 	for i := range reaches {
 		r := &reaches[i]
+		if err := c.check(); err != nil {
+			return err
+		}
 		total += r.Inflow
 		l := &leg{reach: i, start: at, length: r.Length, slope: r.Channel.Slope, prismatic: true}
 		var err error
@@ -78,6 +81,14 @@ func (c *chain) layReaches() error {
 	return nil
 }
 
+// check calls the run's checkpoint.
+func (c *chain) check() error {
+	if c.run.Checkpoint == nil {
+		return nil
+	}
+	return c.run.Checkpoint()
+}
+
 // sweepUp follows the subcritical flow from the downstream end to the upstream end, through every joint and from every control inside.
 func (c *chain) sweepUp() error {
 	last := c.legs[len(c.legs)-1]
@@ -89,6 +100,9 @@ func (c *chain) sweepUp() error {
 	c.controls = append(c.controls, Control{Chainage: last.start + last.length, Kind: end.kind, Depth: end.depth})
 	for i := len(c.legs) - 1; i >= 0; i-- {
 		l := c.legs[i]
+		if err := c.check(); err != nil {
+			return err
+		}
 		if i < len(c.legs)-1 {
 			lower := c.legs[i+1]
 			below := math.NaN()
@@ -141,6 +155,9 @@ func (c *chain) walk() error {
 	shooting, depth := begin.governs, begin.depth
 	fromBoundary := begin.governs
 	for i, l := range c.legs {
+		if err := c.check(); err != nil {
+			return err
+		}
 		x := 0.0
 		for x < l.length || l.length == 0 {
 			if !shooting {
@@ -296,13 +313,13 @@ func Solve(run *Run) (*Answer, error) {
 	if err = c.sweepUp(); err != nil {
 		return nil, err
 	}
-	for more := 16 * parts; ; more *= 16 {
+	for more := 64 * parts; ; more *= 16 {
 		var stuck *stuck
 		if err = c.walk(); !errors.As(err, &stuck) {
 			break
 		}
 		// A control inside was passed over: look closer, and begin again.
-		if more > 4096 {
+		if more > 1024 {
 			return nil, noSteadyFlow
 		}
 		if stuck.leg.inside, err = stuck.leg.controls(more); err != nil {
@@ -320,7 +337,7 @@ func Solve(run *Run) (*Answer, error) {
 }
 
 // parts is how many parts of a varying stretch are looked at for a control inside.
-const parts = 4
+const parts = 1
 
 // restart forgets what the sweeps and the walk found, and keeps the legs.
 func (c *chain) restart() {

@@ -18,7 +18,7 @@ type collocation struct {
 	far         float64
 	trace       *trace
 	width       float64 // of the last panel accepted
-	tails       floor // of the panels refused at this place
+	tails       floor   // of the panels refused at this place
 	slope       float64 // ddepth/dx to begin with, where the equation cannot tell it: at a control
 }
 
@@ -384,7 +384,7 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 	}
 	s := newSeries(&f)
 	rise, _ := s.integral(1)
-	if !c.settled((math.Abs(s[order-1]) + math.Abs(s[order-2])) / (math.Abs(rise) + 0.1*c.y), noisyOverChainage) {
+	if !c.settled((math.Abs(s[order-1])+math.Abs(s[order-2]))/(math.Abs(rise)+0.1*c.y), noisyOverChainage) {
 		return p, false
 	}
 	y1 := c.y + rise

@@ -28,19 +28,20 @@ func (c *chain) meet(l *leg, t *trace, from float64) (to float64, jumps bool, er
 			return lo, true, nil
 		}
 		places := meetingPlaces(s, t, lo, hi)
-		before := lo
+		before, below := lo, true // the supercritical force is the larger
 		for _, x := range places {
-			if excess(x) >= 0 {
+			holds := excess(x) < 0
+			if below && !holds {
 				at, _, ok := solve.RootSlopeless(excess, before, x)
 				if !ok {
-					if excess(before) >= 0 {
-						return before, true, nil
-					}
 					return 0, false, unsolved("the place of a jump")
 				}
-				return at, true, nil
+				// A jump loses energy; where it would gain some, forces are equal for nothing.
+				if side := l.side(at); side.energy(t.depth(at)) >= side.energy(s.depth(at))*(1-1e-12) {
+					return at, true, nil
+				}
 			}
-			before = x
+			before, below = x, holds
 		}
 	}
 	return t.end, false, nil
@@ -74,6 +75,11 @@ func (c *chain) jump(l *leg, t *trace, x float64) {
 	down := l.sub(x).depth(x)
 	state := s.channel.State(up, l.total(x))
 	before, after := s.force(up), s.force(down)
+	if math.Abs(after-before) > 1e-6*before {
+		// One of the two depths changes here to another branch of its energy, and the forces pass each other without being equal.
+		c.notes.at("turns_at_break", l.start+x, "supercritical flow turns subcritical where a depth changes at a break of the section, without the forces being equal")
+		return
+	}
 	c.turns = append(c.turns, turn{force: before, residual: math.Abs(before - after)})
 	c.jumps = append(c.jumps, Jump{Chainage: l.start + x, Reach: l.reach, UpstreamDepth: up, DownstreamDepth: down,
 		FroudeNumber: state.FroudeNumber, EnergyLoss: s.energy(up) - s.energy(down), Length: jumpLength(up, state.FroudeNumber), Form: jumpForm(state.FroudeNumber)})

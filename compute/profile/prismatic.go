@@ -267,7 +267,7 @@ func (s *sweeper) along(b flow.Branch) (on bool, err error) {
 				return false, err
 			}
 		}
-		if !math.IsNaN(pole) && math.Abs(s.y-pole) <= 2e-16*pole {
+		if !math.IsNaN(pole) && (math.Abs(s.y-pole) <= 2e-16*pole || s.criticallyNear(pole)) {
 			s.y = pole
 			s.straight(s.far, pole, false)
 			return false, nil
@@ -284,6 +284,12 @@ func (s *sweeper) along(b flow.Branch) (on bool, err error) {
 		return false, nil
 	}
 	return s.beyond(b), nil
+}
+
+// criticallyNear reports whether the depth is as good as a normal depth that is critical too: there numerator and denominator vanish together, the curve
+// runs straight into it, and nearer by the last places are noise.
+func (s *sweeper) criticallyNear(pole float64) bool {
+	return math.Abs(s.y-pole) <= 1e-10*pole && math.Abs(s.p.motion.EnergyRate(s.p.channel.Section.At(s.y))) <= 1e-8*s.p.channel.Cosine()
 }
 
 // chartAt chooses the chart at a depth on the way to a stop: the nearer of the poles on both sides, or the crown.
@@ -390,7 +396,7 @@ func (s *sweeper) step(b flow.Branch, stop float64, asymptote bool) bool {
 		series := newSeries(&values)
 		tail := series.tail()
 		whole, _ := series.integral(1)
-		settled := tail < resolved || tail*math.Abs(whole) < 1e-14*p.length || tails.reached(tail, noisyOverDepth)
+		settled := tail < resolved || tail*math.Abs(whole) < 1e-13*p.length || tails.reached(tail, noisyOverDepth)
 		if width > 1e-9 && (!settled || !good) && math.Abs(u1-u0) > 1e-9*math.Abs(u0) {
 			width = math.Min(width, math.Abs(u1-u0)) / 2
 			continue

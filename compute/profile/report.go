@@ -43,10 +43,8 @@ func (c *chain) answer() (*Answer, error) {
 // summaries describes every reach by the discharge at its downstream end, and every interval by its downstream station's.
 func (c *chain) summaries(a *Answer) error {
 	for _, l := range c.legs {
-		if c.run.Checkpoint != nil {
-			if err := c.run.Checkpoint(); err != nil {
-				return err
-			}
+		if err := c.check(); err != nil {
+			return err
 		}
 		s := l.side(l.length)
 		n, err := newNaming(s, l.total(l.length))
@@ -123,10 +121,8 @@ func (c *chain) point(g *segment, x float64) (Point, error) {
 func (c *chain) points(a *Answer) error {
 	for i := range c.segments {
 		g := &c.segments[i]
-		if c.run.Checkpoint != nil {
-			if err := c.run.Checkpoint(); err != nil {
-				return err
-			}
+		if err := c.check(); err != nil {
+			return err
 		}
 		places := c.places(g)
 		for _, x := range places {
@@ -226,22 +222,63 @@ func (g *segment) knots() []float64 {
 func (c *chain) curves(a *Answer) error {
 	for i := range c.segments {
 		g := &c.segments[i]
+		if err := c.check(); err != nil {
+			return err
+		}
+		name := func(x float64) (string, error) {
+			p, err := c.point(g, x)
+			return p.Curve, err
+		}
 		knots := g.knots()
+		at := knots[0]
+		here, err := name(at)
+		if err != nil {
+			return err
+		}
 		for k := 1; k < len(knots); k++ {
-			middle := knots[k-1] + (knots[k]-knots[k-1])/2
-			p, err := c.point(g, middle)
-			if err != nil {
-				return err
+			for _, x := range [2]float64{knots[k-1] + (knots[k]-knots[k-1])/2, knots[k]} {
+				end, err := name(x)
+				if err != nil {
+					return err
+				}
+				// The name may change between, more than once: a normal depth is come within reach of, or passed.
+				for changes := 0; end != here && changes < 8; changes++ {
+					lo, hi, next := at, x, end
+					for range 60 {
+						middle := lo + (hi-lo)/2
+						if n, err := name(middle); err != nil {
+							return err
+						} else if n == here {
+							lo = middle
+						} else {
+							hi, next = middle, n
+						}
+					}
+					a.span(g.leg, at, hi, here)
+					at = hi
+					here = next
+				}
+				a.span(g.leg, at, x, here)
+				at = x
 			}
-			span := CurveSpan{From: g.leg.start + knots[k-1], To: g.leg.start + knots[k], Reach: g.leg.reach, Curve: p.Curve}
-			if n := len(a.Curves); n > 0 && a.Curves[n-1].Reach == span.Reach && a.Curves[n-1].Curve == span.Curve && a.Curves[n-1].To == span.From {
-				a.Curves[n-1].To = span.To
-				continue
-			}
-			a.Curves = append(a.Curves, span)
 		}
 	}
 	return nil
+}
+
+// span adds a stretch of a curve to the one before it, where that has the same name.
+func (a *Answer) span(l *leg, from, to float64, curve string) {
+	from, to = l.start+from, l.start+to
+	if n := len(a.Curves); n > 0 {
+		last := &a.Curves[n-1]
+		if last.Reach == l.reach && last.Curve == curve && last.To == from {
+			last.To = to
+			return
+		}
+	}
+	if from < to || len(a.Curves) == 0 {
+		a.Curves = append(a.Curves, CurveSpan{From: from, To: to, Reach: l.reach, Curve: curve})
+	}
 }
 
 // extent looks from the downstream end for the first place within 1 % of its own reach's normal depth.

@@ -8,6 +8,9 @@ func (c *chain) layStations() error {
 	n := len(stations) - 1
 	channels := make([]flow.Channel, 2*n)
 	for i := range n {
+		if err := c.check(); err != nil {
+			return err
+		}
 		a, b := &stations[i], &stations[i+1]
 		length := b.Chainage - a.Chainage
 		slope := (a.BedLevel - b.BedLevel) / length

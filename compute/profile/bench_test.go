@@ -1,0 +1,36 @@
+package profile_test
+
+import (
+	"testing"
+
+	"leat/compute/flow"
+	"leat/compute/friction"
+	"leat/compute/profile"
+	"leat/compute/section"
+)
+
+// BenchmarkSolveM1 is a backwater curve of a prismatic trapezoid at 100 chainages. testdata/references/profiles_pace.py times SciPy's solve_ivp with the same
+// run; its constants are these.
+func BenchmarkSolveM1(b *testing.B) {
+	s, err := section.NewTrapezoidal(6, 1.5, 1.5)
+	if err != nil {
+		b.Fatal(err)
+	}
+	law, err := friction.NewManning(0.025)
+	if err != nil {
+		b.Fatal(err)
+	}
+	const length = 5000.0
+	run := &profile.Run{Discharge: 20, Reaches: []profile.Reach{{Channel: flow.Channel{Section: s, Law: law, Slope: 0.001, Gravity: gravity}, Length: length}},
+		Downstream: profile.Boundary{Kind: profile.Depth, Value: 3}}
+	for k := range 100 {
+		run.Report.At = append(run.Report.At, length*float64(k)/99)
+	}
+	b.ReportAllocs()
+	for b.Loop() {
+		answer, err := profile.Solve(run)
+		if err != nil || len(answer.Stations) < 100 {
+			b.Fatal(err)
+		}
+	}
+}
