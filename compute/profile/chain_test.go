@@ -22,7 +22,7 @@ func show(t *testing.T, name, story string, run *Run) *Answer {
 		if len(jumps) > 0 && jumps[0].Chainage == c.From {
 			told, jumps = append(told, "jump"), jumps[1:]
 		}
-		for len(controls) > 0 && controls[0].Chainage <= c.From+1e-6 {
+		for len(controls) > 0 && controls[0].Chainage <= c.From+1e-3 {
 			if controls[0].Kind == "critical" {
 				told = append(told, "control")
 			}
