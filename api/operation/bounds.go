@@ -10,9 +10,9 @@ func aboveSection(c *flow.Channel, depth float64, pointer string) (wire.Fault, b
 	if depth <= c.Section.Height() {
 		return wire.Fault{}, false
 	}
-	detail := "the depth lies above the last row of the table; give one within it, or a table that goes on"
+	detail := "The depth lies above the last row of the table; give one within it, or a table that goes on."
 	if c.Section.Closed() {
-		detail = "the depth lies above the crown of the closed section; give one not above its height, at which it is full"
+		detail = "The depth lies above the crown of the closed section; give one not above its height, at which it is full."
 	}
 	return wire.Fault{Pointer: pointer, Code: "above_section", Detail: detail}, true
 }

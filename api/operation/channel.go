@@ -2,6 +2,7 @@ package operation
 
 import (
 	"errors"
+	"slices"
 
 	"leat/api/wire"
 	"leat/compute"
@@ -39,12 +40,13 @@ func (in inputs) build(place string, faults []wire.Fault) (flow.Channel, []wire.
 		Bank:                in.section.BankHeight.Or(0),
 	}
 	built, err := newSection(in.section)
+	err = asGiven(in.section, err)
 	faults = gather(faults, place, "/section", err)
 	if err == nil {
 		c.Section = built
 		if c.Bank > c.Section.Height() {
 			faults = append(faults, wire.Fault{Pointer: place + "/section/bank_height", Code: "above_section",
-				Detail: "bank_height lies above the section's greatest depth; leave it out or give one not above the last row"})
+				Detail: "bank_height lies above the section's greatest depth; leave it out, or give one not above the last row."})
 		}
 	}
 	if in.roughness.Given && err == nil {
@@ -62,6 +64,32 @@ func gather(all []wire.Fault, place, member string, err error) []wire.Fault {
 		return append(all, wire.FaultsUnder(place+member, faults)...)
 	}
 	return all
+}
+
+// asGiven returns the faults of a section under the members that the request gives: where one member stands for both sides, those of
+// its two sides are one fault of that member.
+func asGiven(s *wire.Section, err error) error {
+	var faults compute.Faults
+	if err == nil || !errors.As(err, &faults) {
+		return err
+	}
+	both := map[string]string{}
+	if s.SideSlope.Given {
+		both["left_side_slope"], both["right_side_slope"] = "side_slope", "side_slope"
+	}
+	if s.BenchWidth.Given {
+		both["left_bench_width"], both["right_bench_width"] = "bench_width", "bench_width"
+	}
+	var out compute.Faults
+	for _, fault := range faults {
+		if given, ok := both[fault.Member]; ok {
+			fault.Member = given
+		}
+		if !slices.Contains(out, fault) {
+			out = append(out, fault)
+		}
+	}
+	return out
 }
 
 // newSection compiles a section. The error is compute.Faults.
@@ -101,7 +129,7 @@ func newSection(s *wire.Section) (section.Section, error) {
 	case wire.Tabulated:
 		return section.NewTabulated(s.Rows)
 	}
-	return nil, compute.Faults{{Member: "kind", Code: "unknown_value", Detail: "The kind is not known."}}
+	return nil, compute.Faults{{Member: "kind", Code: "unknown_value", Detail: "This kind of section is not known; the contract lists those that are."}}
 }
 
 // waterViscosity is the kinematic viscosity in m2/s of water at 15 degrees C, for which the contract stands unless told otherwise.
@@ -129,14 +157,14 @@ func newLaw(r *wire.Roughness, s section.Section, gravity float64) (friction.Law
 		bedded, ok := s.(section.Bedded)
 		if !ok {
 			return nil, compute.Faults{{Member: "bed", Code: "no_distinct_bed",
-				Detail: "this kind of section has no bed distinct from its sides; give one roughness for all"}}
+				Detail: "This kind of section has no bed distinct from its sides; give one roughness for all."}}
 		}
 		return friction.NewBedAndSides(bedded, r.Bed.Manning.Value, r.Sides.Manning.Value, combinations[r.Combine])
 	case wire.Zones:
 		zoned, ok := s.(section.Zoned)
 		if !ok {
 			return nil, compute.Faults{{Member: "zones", Code: "no_zones",
-				Detail: "zones are for surveyed and two_stage sections; give one roughness for all"}}
+				Detail: "Zones are for surveyed and two_stage sections; give one roughness for all."}}
 		}
 		var untils, n []float64
 		for i, zone := range r.Zones {
@@ -147,5 +175,5 @@ func newLaw(r *wire.Roughness, s section.Section, gravity float64) (friction.Law
 		}
 		return friction.NewZones(zoned, untils, n, combinations[r.Combine])
 	}
-	return nil, compute.Faults{{Code: "unknown_law", Detail: "The friction law is not known."}}
+	return nil, compute.Faults{{Code: "unknown_law", Detail: "This friction law is not known; the contract lists those that are."}}
 }

@@ -29,7 +29,7 @@ func solveDepths(r *wire.DepthsRequest, brief bool) (wire.Answer, *wire.Problem)
 	var room flow.Room
 	d := c.Depths(q, &room)
 	if d.NormalAbsent == flow.Unsolved || d.CriticalAbsent == flow.Unsolved {
-		return nil, wire.Internal("the solver did not converge on this request; nothing is given rather than a guess")
+		return nil, wire.Internal("The solver did not converge on this request; nothing is given rather than a guess.")
 	}
 	var w warnings
 	a := &wire.DepthsAnswer{
@@ -71,16 +71,16 @@ func solveDepths(r *wire.DepthsRequest, brief bool) (wire.Answer, *wire.Problem)
 // depths adds what is to be said of the characteristic depths.
 func (w *warnings) depths(c *flow.Channel, d *flow.Depths) {
 	if len(d.Normal) > 0 && d.Normal[0] > d.Bank {
-		w.add("overtopped", "/section", "the normal depth lies above the bank: the section overtops at this discharge")
+		w.add("overtopped", "/section", "The normal depth lies above the bank: the section overtops at this discharge.")
 	}
 	if d.Surcharged {
-		w.add("surcharged", "/discharge", "the discharge is more than the closed section carries with a free surface; under pressure its depth is governed from downstream")
+		w.add("surcharged", "/discharge", "The discharge is more than the closed section carries with a free surface; under pressure its depth is governed from downstream.")
 	}
 	if len(d.Normal) > 1 {
-		w.add("several_normal_depths", "/discharge", "the discharge flows uniformly at more than one depth; the lowest is meant by normal_depth")
+		w.add("several_normal_depths", "/discharge", "The discharge flows uniformly at more than one depth; normal_depth is the lowest.")
 	}
 	if len(d.Critical) > 1 {
-		w.add("several_critical_depths", "/discharge", "the specific energy has more than one minimum; the lowest depth is meant by critical_depth")
+		w.add("several_critical_depths", "/discharge", "The specific energy has more than one minimum; critical_depth is the lowest of their depths.")
 	}
 }
 
@@ -93,24 +93,24 @@ func given(c *flow.Channel, d *flow.Depths, depth, q float64, w *warnings) (wire
 		Curve: c.CurveName(&s, d.Class, d.Normal),
 	}
 	if s.Regime == flow.FullFlow {
-		w.add("no_conjugate_depths", "/depth", "the section is full at the given depth: it has no alternate or sequent depth there")
+		w.add("no_conjugate_depths", "/depth", "The section is full at the depth given: it has no alternate or sequent depth there.")
 		return g, nil
 	}
 	alternate, absent := c.Alternate(q, depth)
 	if absent == flow.Unsolved {
-		return g, wire.Internal("the search for the alternate depth did not converge; nothing is given rather than a guess")
+		return g, wire.Internal("The search for the alternate depth did not converge; nothing is given rather than a guess.")
 	}
 	g.AlternateDepth = alternate
 	if math.IsNaN(alternate) {
-		w.add("alternate_depth_absent", "/depth", "no alternate depth: "+absent.String())
+		w.add("alternate_depth_absent", "/depth", "There is no alternate depth. "+absent.String())
 	}
 	sequent, absent := c.Sequent(q, depth)
 	if absent == flow.Unsolved {
-		return g, wire.Internal("the search for the sequent depth did not converge; nothing is given rather than a guess")
+		return g, wire.Internal("The search for the sequent depth did not converge; nothing is given rather than a guess.")
 	}
 	g.SequentDepth = sequent
 	if math.IsNaN(sequent) {
-		w.add("sequent_depth_absent", "/depth", "no sequent depth: "+absent.String())
+		w.add("sequent_depth_absent", "/depth", "There is no sequent depth. "+absent.String())
 	}
 	return g, nil
 }

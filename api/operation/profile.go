@@ -49,7 +49,7 @@ func (p *profileRun) problem(err error) *wire.Problem {
 		}
 		return wire.InvalidRequest(list...)
 	}
-	return wire.Internal("the solver did not converge on this run; nothing is given rather than a guess")
+	return wire.Internal("The solver did not converge on this run; nothing is given rather than a guess.")
 }
 
 // tooManyStations is the solver's code of a run that needs more stations than it may report.

@@ -14,13 +14,13 @@ func (p *profileRun) notes(notes []profile.Note) []wire.Warning {
 	out := []wire.Warning{}
 	if p.start != 0 {
 		out = append(out, wire.Warning{Code: "chainages_shifted", Pointer: "/stations/0/chainage",
-			Detail: "the chainages of this answer count from the upstream end, where the first station is given another chainage than 0"})
+			Detail: "The chainages of this answer count from the upstream end, where the first station is given another chainage than 0."})
 	}
-	type key struct{ code, end string }
+	type key struct{ code, end, detail string }
 	first := map[key]int{}
 	others := map[int]int{}
 	for _, n := range notes {
-		k := key{n.Code, n.End}
+		k := key{n.Code, n.End, n.Detail}
 		if i, known := first[k]; known {
 			others[i]++
 			continue
@@ -29,11 +29,7 @@ func (p *profileRun) notes(notes []profile.Note) []wire.Warning {
 		out = append(out, wire.Warning{Code: n.Code, Detail: n.Detail + p.where(n.Chainage), Pointer: p.place(&n)})
 	}
 	for i, count := range others {
-		places := " other places"
-		if count == 1 {
-			places = " other place"
-		}
-		out[i].Detail += ", and at " + strconv.Itoa(count) + places
+		out[i].Detail += alsoAt(count)
 	}
 	return out
 }
@@ -58,11 +54,11 @@ func (p *profileRun) place(n *profile.Note) string {
 	return ""
 }
 
-// where tells a chainage in the units of the request, as part of a sentence; nothing where none is meant.
+// where tells a chainage in the units of the request, as a sentence; nothing where none is meant.
 func (p *profileRun) where(chainage float64) string {
 	if math.IsNaN(chainage) {
 		return ""
 	}
 	system := p.request.System
-	return " (at chainage " + strconv.FormatFloat(system.FromSI(wire.QuantityLength, chainage), 'g', 6, 64) + " " + system.Unit(wire.QuantityLength) + ")"
+	return " This is at chainage " + strconv.FormatFloat(system.FromSI(wire.QuantityLength, chainage), 'g', 6, 64) + " " + system.Unit(wire.QuantityLength) + "."
 }

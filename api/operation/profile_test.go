@@ -205,9 +205,9 @@ func TestProfileAnswer(t *testing.T) {
 			Controls: []profile.Control{{Chainage: 0, Kind: "gate", Depth: 0.183}},
 			Extent:   nan, Balance: profile.Balance{Energy: 1e-12, Momentum: 2e-12},
 			Notes: []profile.Note{
-				{Code: "boundary_does_not_govern", Detail: "it does not govern", Chainage: nan, End: "downstream"},
-				{Code: "not_rectangular", Detail: "the length is for rectangular sections", Chainage: 310},
-				{Code: "not_rectangular", Detail: "the length is for rectangular sections", Chainage: 320},
+				{Code: "boundary_does_not_govern", Detail: "It does not govern.", Chainage: nan, End: "downstream"},
+				{Code: "not_rectangular", Detail: "The length is for rectangular sections.", Chainage: 310},
+				{Code: "not_rectangular", Detail: "The length is for rectangular sections.", Chainage: 320},
 			},
 		}, nil
 	})
@@ -239,8 +239,8 @@ func TestProfileAnswer(t *testing.T) {
 		"curves":[{"from":0,"to":300,"reach":"upper","curve":"M3"},{"from":300,"to":380,"reach":1,"curve":null}],
 		"jumps":[{"chainage":300,"reach":1,"upstream_depth":0.25,"downstream_depth":1,"froude_number":3,"energy_loss":0.4,"length":6,"form":"oscillating"}],
 		"controls":[{"chainage":0,"kind":"gate","depth":0.183}],"extent":null,"balance":{"energy":1e-12,"momentum":2e-12},
-		"warnings":[{"code":"boundary_does_not_govern","detail":"it does not govern","pointer":"/downstream/weir"},
-			{"code":"not_rectangular","detail":"the length is for rectangular sections (at chainage 310 m), and at 1 other place","pointer":"/reaches/1"}]}`), &want); err != nil {
+		"warnings":[{"code":"boundary_does_not_govern","detail":"It does not govern.","pointer":"/downstream/weir"},
+			{"code":"not_rectangular","detail":"The length is for rectangular sections. This is at chainage 310 m. The same holds at 1 other place of this answer.","pointer":"/reaches/1"}]}`), &want); err != nil {
 		t.Fatal(err)
 	}
 	if diff := cmp.Diff(want, got); diff != "" {

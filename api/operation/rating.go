@@ -45,7 +45,7 @@ func rateDepths(c *flow.Channel, r *wire.RatingRequest) (wire.Answer, *wire.Prob
 		}
 		s := c.State(depth, q)
 		if absent != flow.Present {
-			w.add("discharge_absent", "/kind", "no discharge can be given: "+absent.String())
+			w.add("discharge_absent", "/kind", "There is no "+string(r.Kind)+" flow at this depth. "+absent.String())
 			a.States[i] = withoutFlow(state(&s, members(c, true)|wire.WithDischarge))
 			continue
 		}
@@ -79,16 +79,16 @@ func rateDischarges(c *flow.Channel, r *wire.RatingRequest) (wire.Answer, *wire.
 	m := members(c, true) | wire.WithDischarge
 	a := &wire.RatingAnswer{States: make([]wire.State, len(r.Discharges))}
 	for i, q := range r.Discharges {
-		find := c.Normal
+		find, name := c.Normal, "normal"
 		if r.Kind == wire.RatingCritical {
-			find = c.Critical
+			find, name = c.Critical, "critical"
 		}
 		depths, absent := find(q, room[:0])
 		if absent == flow.Unsolved {
-			return nil, wire.Internal("the solver did not converge on one of the discharges; nothing is given rather than a guess")
+			return nil, wire.Internal("The solver did not converge on one of the discharges; nothing is given rather than a guess.")
 		}
 		if absent != flow.Present {
-			w.add("depth_absent", "/discharges/"+strconv.Itoa(i), "no depth: "+absent.String())
+			w.add("depth_absent", "/discharges/"+strconv.Itoa(i), "There is no "+name+" depth at this discharge. "+absent.String())
 			a.States[i] = withoutDepth(q, m)
 			continue
 		}

@@ -55,7 +55,7 @@ func TestProblemJSON(t *testing.T) {
 	p.Instance = "urn:uuid:1"
 	got := string(p.AppendJSON(nil))
 	want := `{"type":"/docs/problems/invalid_request","title":"The request breaks a rule","status":422,` +
-		`"detail":"/section/kind: Not \"so\"\n. (and 3 other faults)","instance":"urn:uuid:1","errors":[` +
+		`"detail":"/section/kind: Not \"so\"\n. There are 3 other faults.","instance":"urn:uuid:1","errors":[` +
 		`{"pointer":"/section/kind","code":"unknown_value","detail":"Not \"so\"\n."},` +
 		`{"parameter":"units","code":"c","detail":"d"},{"column":"bed_slope","code":"c","detail":"d"},{"pointer":"","code":"not_an_object","detail":"` + "\ufffd" + `"}]}`
 	if got != want {

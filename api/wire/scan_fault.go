@@ -58,7 +58,8 @@ func (f *scanFault) problem(data []byte) *Problem {
 	b.WriteString(" (byte ")
 	b.WriteString(strconv.Itoa(f.offset))
 	b.WriteString("): ")
-	b.WriteString(f.detail)
+	b.WriteString(strings.ToUpper(f.detail[:1]))
+	b.WriteString(f.detail[1:])
 	b.WriteString(".")
 	fault := Fault{Pointer: f.pointer, Code: f.code, Detail: b.String()}
 	if f.size {

@@ -12,11 +12,11 @@ func TestSyntaxFaults(t *testing.T) {
 	for _, c := range []struct {
 		body, code, pointer, detail string
 	}{
-		{``, codeEmptyBody, ``, `Line 1, column 1 (byte 0): there is no JSON value`},
+		{``, codeEmptyBody, ``, `Line 1, column 1 (byte 0): There is no JSON value`},
 		{" \n ", codeEmptyBody, ``, `Line 2, column 2 (byte 3)`},
 		{"\xef\xbb\xbf{}", codeByteOrderMark, ``, `byte order mark`},
-		{`{"a":1}{"b":2}`, codeTrailingData, ``, `column 8 (byte 7): there is something after the end`},
-		{"{\"a\":1,\n \"é\":x}", codeSyntaxError, `/é`, `Line 2, column 6 (byte 14): a JSON value is expected, not the character 'x'`},
+		{`{"a":1}{"b":2}`, codeTrailingData, ``, `column 8 (byte 7): There is something after the end`},
+		{"{\"a\":1,\n \"é\":x}", codeSyntaxError, `/é`, `Line 2, column 6 (byte 14): A JSON value is expected, not the character 'x'`},
 		{`{"a":NaN}`, codeNotFinite, `/a`, `leave the member out or give null`},
 		{`{"a":[1,-Infinity]}`, codeNotFinite, `/a/1`, `leave the member out or give null`},
 		{`{"a":inf}`, codeNotFinite, `/a`, ``},

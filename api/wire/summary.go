@@ -2,7 +2,7 @@ package wire
 
 import "strconv"
 
-// summary returns the one sentence that stands for all faults: the first, with where it is and how many others there are.
+// summary returns what stands for all faults: the first, with where it is and how many others there are.
 func summary(faults []Fault) string {
 	if len(faults) == 0 {
 		return ""
@@ -12,8 +12,8 @@ func summary(faults []Fault) string {
 	case 0:
 		return first
 	case 1:
-		return first + " (and 1 other fault)"
+		return first + " There is 1 other fault."
 	default:
-		return first + " (and " + strconv.Itoa(n) + " other faults)"
+		return first + " There are " + strconv.Itoa(n) + " other faults."
 	}
 }

@@ -22,23 +22,23 @@ const (
 
 var absences = [...]struct{ code, detail string }{
 	Present:      {"", ""},
-	Horizontal:   {"horizontal_bed", "the bed is horizontal, so that no depth makes its slope balance friction"},
-	Adverse:      {"adverse_bed", "the bed rises downstream, so that no depth makes its slope balance friction"},
-	BeyondCrown:  {"beyond_crown", "the discharge is more than the section carries with a free surface at any depth below its crown"},
-	BeyondTable:  {"beyond_table", "the discharge is more than the section carries at any depth up to its last row"},
-	NoConveyance: {"no_conveyance", "the roughness is so large against the hydraulic radius that the friction law gives no conveyance at any depth"},
-	Jumped:       {"conveyance_jumps", "the conveyance jumps past the discharge at a depth where wetted perimeter is added at once, so that no depth balances friction"},
-	FillsFirst:   {"fills_first", "the flow stays supercritical up to the crown or the last row, so that the specific energy has no minimum below it"},
-	Kinked:       {"minimum_at_kink", "the specific energy has its minimum at a kink of the section or its roughness, where its derivative jumps past zero"},
-	Above:        {"above_section", "the depth would lie above the crown or the last row"},
-	Filled:       {"full", "the section is full there, without a free surface"},
-	NoMinimum:    {"no_minimum", "the specific energy of no discharge has its minimum there"},
-	Coincides:    {"at_the_minimum", "the depth given is where the curve turns, so that the two depths coincide"},
-	Unsolved:     {"not_converged", "the solver did not converge"},
+	Horizontal:   {"horizontal_bed", "The bed is horizontal, so that no depth makes its slope balance friction."},
+	Adverse:      {"adverse_bed", "The bed rises downstream, so that no depth makes its slope balance friction."},
+	BeyondCrown:  {"beyond_crown", "The discharge is more than the section carries with a free surface at any depth below its crown."},
+	BeyondTable:  {"beyond_table", "The discharge is more than the section carries at any depth up to its last row."},
+	NoConveyance: {"no_conveyance", "The roughness is so large against the hydraulic radius that the friction law gives no conveyance."},
+	Jumped:       {"conveyance_jumps", "The conveyance jumps past the discharge at a depth where wetted perimeter is added at once, so that no depth balances friction."},
+	FillsFirst:   {"fills_first", "The flow stays supercritical up to the crown or the last row, so that the specific energy has no minimum below it."},
+	Kinked:       {"minimum_at_kink", "The specific energy has its minimum at a kink of the section or its roughness, where its derivative jumps past zero."},
+	Above:        {"above_section", "It would lie above the crown or the last row."},
+	Filled:       {"full", "The section is full at this depth, without a free surface."},
+	NoMinimum:    {"no_minimum", "The specific energy has its minimum at this depth for no discharge."},
+	Coincides:    {"at_the_minimum", "The depth given is where the curve turns, so that the two depths coincide."},
+	Unsolved:     {"not_converged", "The solver did not converge."},
 }
 
 // Code returns a stable name in snake_case, empty for Present.
 func (a Absence) Code() string { return absences[a].code }
 
-// String returns the reason as part of a sentence.
+// String returns the reason as a sentence, empty for Present.
 func (a Absence) String() string { return absences[a].detail }
