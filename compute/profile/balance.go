@@ -6,46 +6,28 @@ import (
 	"leat/compute/solve"
 )
 
-// balance recomputes the energy between neighbouring stations of a segment from depths alone: the fall of the energy level must be what friction takes,
-// by a quadrature of its own along the chainage, or, next to critical depth where the depth has no slope, over the depth.
-func (c *chain) balance(a *Answer, g *segment, places []float64) {
-	for i := 1; i < len(places); i++ {
-		residual := g.energyResidual(places[i-1], places[i])
+// balance recomputes the energy along a segment from depths alone, piece by piece: the fall of the energy level must be what friction takes, by a quadrature
+// of its own along the chainage, or, where the depth changes fast, over the depth.
+func (c *chain) balance(a *Answer, g *segment) {
+	l, t := g.leg, g.trace
+	knots := g.knots()
+	last := math.NaN() // the energy at the end of the piece before
+	for i := 1; i < len(knots); i++ {
+		from, to := knots[i-1], knots[i]
+		p := t.at(from + (to-from)/2)
+		s0, s1 := l.side(from), l.side(to)
+		// At a break of the section the energy may jump: the piece's own side of it counts.
+		y0, y1 := p.depth(from), p.depth(to)
+		e0, e1 := s0.energy(math.Nextafter(y0, y1)), s1.energy(math.Nextafter(y1, y0))
+		residual := math.Abs(e1 - e0 - l.workIn(p, from, to, 1e-12*max(e0, e1)))
+		if !math.IsNaN(last) {
+			residual = max(residual, math.Abs(e0-last)) // the depth may change between two pieces, at equal energy
+		}
 		if !(residual <= a.Balance.Energy) {
 			a.Balance.Energy = residual
 		}
+		last = e1
 	}
-}
-
-// energyResidual returns by how much the energy levels at two chainages of a segment differ from what the slope and friction between make of them.
-func (g *segment) energyResidual(from, to float64) float64 {
-	if from == to {
-		return 0
-	}
-	l, t := g.leg, g.trace
-	residual, last := 0.0, math.NaN() // last is the energy at the end of the panel before
-	before := from
-	for _, knot := range g.knots() {
-		if knot <= from {
-			continue
-		}
-		end := min(knot, to)
-		p := t.at(before + (end-before)/2)
-		s0, s1 := l.side(before), l.side(end)
-		// At a break of the section the energy may jump: the panel's own side of it counts.
-		y0, y1 := p.depth(before), p.depth(end)
-		e0, e1 := s0.energy(math.Nextafter(y0, y1)), s1.energy(math.Nextafter(y1, y0))
-		if !math.IsNaN(last) {
-			residual += e0 - last // the depth may change at a knot, at equal energy
-		}
-		residual += e1 - e0
-		residual -= l.workIn(p, before, end, 1e-12*max(e0, e1))
-		before, last = end, e1
-		if before >= to {
-			break
-		}
-	}
-	return math.Abs(residual)
 }
 
 // workIn returns the change of the specific energy between two chainages of one panel, by ever more parts until it stands.
@@ -55,7 +37,7 @@ func (l *leg) workIn(p *panel, from, to, tolerance float64) float64 {
 		return s1.energy(p.y0) - s0.energy(p.y0)
 	}
 	work := math.Inf(1)
-	for parts := 2; parts <= 64; parts *= 2 {
+	for parts := 1; parts <= 64; parts *= 2 {
 		sum := 0.0
 		for k := range parts {
 			x0 := from + (to-from)*float64(k)/float64(parts)

@@ -142,11 +142,7 @@ func (c *chain) points(a *Answer) error {
 					Detail: "The water surface needs more stations than the limit report_points; ask for fewer by report."}}
 			}
 		}
-		if c.run.Report.Spacing == 0 && c.run.Report.At == nil || len(places) > 1 {
-			c.balance(a, g, places)
-		} else {
-			c.balance(a, g, []float64{g.from, g.to})
-		}
+		c.balance(a, g)
 	}
 	for _, t := range c.turns {
 		a.Balance.Momentum = max(a.Balance.Momentum, t.residual)
