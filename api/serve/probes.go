@@ -6,6 +6,8 @@ import (
 
 	"github.com/gin-gonic/gin"
 	"github.com/prometheus/client_golang/prometheus/promhttp"
+
+	"leat/api/wire"
 )
 
 var (
@@ -19,12 +21,12 @@ func (s *Server) livez(c *gin.Context) { writeProbe(c, aliveBody) }
 // readyz says whether to send requests here: not while draining, and not if the known answer comes out wrong.
 func (s *Server) readyz(c *gin.Context) {
 	if s.unready.Load() {
-		s.writeProblem(c, notReady("The service is about to stop; send requests elsewhere."))
+		s.writeProblem(c, wire.NotReady("The service is about to stop; send requests elsewhere."))
 		return
 	}
 	if err := s.known(); err != nil {
 		s.log.Error("the known answer came out wrong", "error", err.Error(), "request_id", exchangeOf(c).requestID)
-		s.writeProblem(c, notReady("A calculation with a known answer came out wrong; the log says how."))
+		s.writeProblem(c, wire.NotReady("A calculation with a known answer came out wrong; the log says how."))
 		return
 	}
 	writeProbe(c, readyBody)

@@ -91,16 +91,13 @@ func internalFault() *wire.Problem {
 	return wire.Internal("The service failed; the fault is ours, and its log holds it under the request id in instance.")
 }
 
-// notReady is for probes alone.
-func notReady(detail string) *wire.Problem {
-	return &wire.Problem{Type: "/docs/problems/not_ready", Title: "The service is not ready", Status: http.StatusServiceUnavailable, Detail: detail}
-}
-
 // kinds are the values of the problem label.
-var kinds = []string{
-	"malformed_json", "bad_parameter", "not_found", "method_not_allowed", "not_acceptable", "request_timeout", "too_large",
-	"unsupported_media_type", "invalid_request", "no_solution", "internal_error", "non_finite_result", "saturated", "draining", "time_limit", "not_ready", "other",
-}
+var kinds = func() (names []string) {
+	for _, t := range wire.ProblemTypes() {
+		names = append(names, t.Name)
+	}
+	return append(names, "other")
+}()
 
 func kindLabel(p *wire.Problem) string {
 	kind := p.Type[strings.LastIndexByte(p.Type, '/')+1:]

@@ -9,7 +9,10 @@ import (
 // TestProblems holds the table of problems: each constructor with its type and status, each type and title once.
 func TestProblems(t *testing.T) {
 	fault := Fault{Pointer: "/a", Code: "c", Detail: "D."}
-	titles := map[string]bool{}
+	titles, known := map[string]bool{}, map[string]string{}
+	for _, row := range ProblemTypes() {
+		known[row.Name] = row.Title
+	}
 	for _, c := range []struct {
 		problem *Problem
 		name    string
@@ -31,9 +34,14 @@ func TestProblems(t *testing.T) {
 		{NonFiniteResult("D."), "non_finite_result", 500},
 		{Saturated("D."), "saturated", 503},
 		{Draining("D."), "draining", 503},
+		{NotReady("D."), "not_ready", 503},
 		{TimeLimit("D."), "time_limit", 504},
 	} {
 		p := c.problem
+		if known[c.name] != p.Title {
+			t.Errorf("%s is not in the table of types: %v", c.name, known)
+		}
+		delete(known, c.name)
 		if p.Type != "/docs/problems/"+c.name || p.Status != c.status || !strings.HasSuffix(p.Detail, "D.") {
 			t.Errorf("%s: %+v", c.name, p)
 		}
@@ -42,6 +50,9 @@ func TestProblems(t *testing.T) {
 		}
 		titles[p.Title] = true
 		memberNames(t, p.AppendJSON(nil))
+	}
+	if len(known) > 0 {
+		t.Errorf("types that no constructor makes: %v", known)
 	}
 }
 

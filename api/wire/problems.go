@@ -1,36 +1,54 @@
 package wire
 
-import "net/http"
-
-// A problemType is one row of the table of problems. Its title never changes.
-type problemType struct {
-	name, title string
-	status      int
-}
-
-// The table of problems. A type's reference is /docs/problems/ and its name.
-var (
-	malformedJSON        = problemType{"malformed_json", "The body is not acceptable JSON", http.StatusBadRequest}
-	badParameter         = problemType{"bad_parameter", "A query parameter is not accepted", http.StatusBadRequest}
-	unauthorized         = problemType{"unauthorized", "A key is needed", http.StatusUnauthorized}
-	notFound             = problemType{"not_found", "There is nothing at this path", http.StatusNotFound}
-	methodNotAllowed     = problemType{"method_not_allowed", "The method is not accepted at this path", http.StatusMethodNotAllowed}
-	notAcceptable        = problemType{"not_acceptable", "None of the accepted media types can be given", http.StatusNotAcceptable}
-	requestTimeout       = problemType{"request_timeout", "The request did not arrive in time", http.StatusRequestTimeout}
-	tooLarge             = problemType{"too_large", "The request is larger than a limit", http.StatusRequestEntityTooLarge}
-	unsupportedMediaType = problemType{"unsupported_media_type", "The media type of the body is not accepted", http.StatusUnsupportedMediaType}
-	invalidRequest       = problemType{"invalid_request", "The request breaks a rule", http.StatusUnprocessableEntity}
-	noSolution           = problemType{"no_solution", "The request has no solution", http.StatusUnprocessableEntity}
-	tooManyRequests      = problemType{"too_many_requests", "Too many requests", http.StatusTooManyRequests}
-	internalError        = problemType{"internal_error", "The service failed", http.StatusInternalServerError}
-	nonFiniteResult      = problemType{"non_finite_result", "A result is not a finite number", http.StatusInternalServerError}
-	saturated            = problemType{"saturated", "The service is busy", http.StatusServiceUnavailable}
-	draining             = problemType{"draining", "The service is shutting down", http.StatusServiceUnavailable}
-	timeLimit            = problemType{"time_limit", "The calculation took too long", http.StatusGatewayTimeout}
+import (
+	"net/http"
+	"slices"
 )
 
-func (t problemType) problem(detail string, faults ...Fault) *Problem {
-	return &Problem{Type: "/docs/problems/" + t.name, Title: t.title, Status: t.status, Detail: detail, Errors: faults}
+// ProblemType is one row of the table of problems: what problems of one kind have in common.
+type ProblemType struct {
+	Name, Title string // neither ever changes
+	Status      int
+}
+
+// Reference is the type's URI reference, at which the service's own documents tell of it.
+func (t ProblemType) Reference() string { return "/docs/problems/" + t.Name }
+
+// ProblemTypes returns the table of problems, in the order of the statuses.
+func ProblemTypes() []ProblemType { return slices.Clone(problemTypes) }
+
+var problemTypes []ProblemType
+
+func newProblemType(name, title string, status int) ProblemType {
+	t := ProblemType{name, title, status}
+	problemTypes = append(problemTypes, t)
+	return t
+}
+
+// The table of problems.
+var (
+	malformedJSON        = newProblemType("malformed_json", "The body is not acceptable JSON", http.StatusBadRequest)
+	badParameter         = newProblemType("bad_parameter", "A query parameter is not accepted", http.StatusBadRequest)
+	unauthorized         = newProblemType("unauthorized", "A key is needed", http.StatusUnauthorized)
+	notFound             = newProblemType("not_found", "There is nothing at this path", http.StatusNotFound)
+	methodNotAllowed     = newProblemType("method_not_allowed", "The method is not accepted at this path", http.StatusMethodNotAllowed)
+	notAcceptable        = newProblemType("not_acceptable", "None of the accepted media types can be given", http.StatusNotAcceptable)
+	requestTimeout       = newProblemType("request_timeout", "The request did not arrive in time", http.StatusRequestTimeout)
+	tooLarge             = newProblemType("too_large", "The request is larger than a limit", http.StatusRequestEntityTooLarge)
+	unsupportedMediaType = newProblemType("unsupported_media_type", "The media type of the body is not accepted", http.StatusUnsupportedMediaType)
+	invalidRequest       = newProblemType("invalid_request", "The request breaks a rule", http.StatusUnprocessableEntity)
+	noSolution           = newProblemType("no_solution", "The request has no solution", http.StatusUnprocessableEntity)
+	tooManyRequests      = newProblemType("too_many_requests", "Too many requests", http.StatusTooManyRequests)
+	internalError        = newProblemType("internal_error", "The service failed", http.StatusInternalServerError)
+	nonFiniteResult      = newProblemType("non_finite_result", "A result is not a finite number", http.StatusInternalServerError)
+	saturated            = newProblemType("saturated", "The service is busy", http.StatusServiceUnavailable)
+	draining             = newProblemType("draining", "The service is shutting down", http.StatusServiceUnavailable)
+	notReady             = newProblemType("not_ready", "The service is not ready", http.StatusServiceUnavailable)
+	timeLimit            = newProblemType("time_limit", "The calculation took too long", http.StatusGatewayTimeout)
+)
+
+func (t ProblemType) problem(detail string, faults ...Fault) *Problem {
+	return &Problem{Type: t.Reference(), Title: t.Title, Status: t.Status, Detail: detail, Errors: faults}
 }
 
 // InvalidRequest is 422: valid JSON that breaks rules. It names every fault.
@@ -86,6 +104,9 @@ func Saturated(detail string) *Problem { return saturated.problem(detail) }
 
 // Draining is 503: the service is shutting down.
 func Draining(detail string) *Problem { return draining.problem(detail) }
+
+// NotReady is 503, for probes alone.
+func NotReady(detail string) *Problem { return notReady.problem(detail) }
 
 // TimeLimit is 504.
 func TimeLimit(detail string) *Problem { return timeLimit.problem(detail) }
