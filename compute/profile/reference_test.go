@@ -58,22 +58,33 @@ type referenceReach struct {
 }
 
 type referenceSection struct {
-	BottomWidth    float64      `json:"bottom_width"`
-	LeftSideSlope  float64      `json:"left_side_slope"`
-	RightSideSlope float64      `json:"right_side_slope"`
-	TopWidth       float64      `json:"top_width"`
-	Width          float64      `json:"width"`
-	Height         float64      `json:"height"`
-	Diameter       float64      `json:"diameter"`
-	Points         [][2]float64 `json:"points"`
+	BottomWidth     float64      `json:"bottom_width"`
+	SideSlope       float64      `json:"side_slope"`
+	LeftSideSlope   float64      `json:"left_side_slope"`
+	RightSideSlope  float64      `json:"right_side_slope"`
+	TopWidth        float64      `json:"top_width"`
+	Width           float64      `json:"width"`
+	Height          float64      `json:"height"`
+	Diameter        float64      `json:"diameter"`
+	BenchHeight     float64      `json:"bench_height"`
+	LeftBenchWidth  float64      `json:"left_bench_width"`
+	RightBenchWidth float64      `json:"right_bench_width"`
+	UpperSideSlope  float64      `json:"upper_side_slope"`
+	Points          [][2]float64 `json:"points"`
 }
 
 type referenceLaw struct {
-	Manning            float64 `json:"manning"`
-	Strickler          float64 `json:"strickler"`
-	Chezy              float64 `json:"chezy"`
-	SandRoughness      float64 `json:"sand_roughness"`
-	KinematicViscosity float64 `json:"kinematic_viscosity"`
+	Manning            float64      `json:"manning"`
+	Strickler          float64      `json:"strickler"`
+	Chezy              float64      `json:"chezy"`
+	SandRoughness      float64      `json:"sand_roughness"`
+	KinematicViscosity float64      `json:"kinematic_viscosity"`
+	ManningByDepth     [][2]float64 `json:"manning_by_depth"`
+	Bed                float64      `json:"bed"`
+	Sides              float64      `json:"sides"`
+	Until              []float64    `json:"until"`
+	Zones              []float64    `json:"zones"`
+	Combine            string       `json:"combine"`
 }
 
 type referenceBoundary struct {
@@ -149,12 +160,21 @@ func (s *referenceSection) build(kind string) (section.Section, error) {
 		return section.NewBox(s.Width, s.Height, 0)
 	case "surveyed":
 		return section.NewSurveyed(s.Points)
+	case "two_stage":
+		return section.NewTwoStage(section.TwoStage{BottomWidth: s.BottomWidth, LeftSideSlope: s.SideSlope, RightSideSlope: s.SideSlope, BenchHeight: s.BenchHeight,
+			LeftBenchWidth: s.LeftBenchWidth, RightBenchWidth: s.RightBenchWidth, UpperSideSlope: s.UpperSideSlope})
 	}
 	return nil, fmt.Errorf("unknown kind %q", kind)
 }
 
-func (l *referenceLaw) build() (friction.Law, error) {
+func (l *referenceLaw) build(s section.Section) (friction.Law, error) {
 	switch {
+	case l.ManningByDepth != nil:
+		return friction.NewManningByDepth(l.ManningByDepth)
+	case l.Bed > 0 && l.Combine == "horton_einstein":
+		return friction.NewBedAndSides(s.(section.Bedded), l.Bed, l.Sides, friction.HortonEinstein)
+	case l.Zones != nil && l.Combine == "divided":
+		return friction.NewZones(s.(section.Zoned), l.Until, l.Zones, friction.Divided)
 	case l.Manning > 0:
 		return friction.NewManning(l.Manning)
 	case l.Strickler > 0:
@@ -172,7 +192,7 @@ func (r *referenceReach) channel() (flow.Channel, error) {
 	if err != nil {
 		return flow.Channel{}, err
 	}
-	law, err := r.Law.build()
+	law, err := r.Law.build(s)
 	return flow.Channel{Section: s, Law: law, Slope: r.BedSlope, Gravity: gravity, Barrels: r.Barrels, EnergyCoefficient: r.Alpha, MomentumCoefficient: r.Beta}, err
 }
 

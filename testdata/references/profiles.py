@@ -9,6 +9,7 @@ A line holds `discharge`, `reaches` or `stations`, `upstream`, `downstream`; `ex
 [chainage, upstream depth, downstream depth]; `controls` with [chainage, depth, kind]. Numbers are float64 in SI units.
 
     /usr/bin/python3 profiles.py > profiles.jsonl        (needs numpy and scipy; about a minute)
+    /usr/bin/python3 profiles.py jump 7                  (only the runs with "jump" in their names, of another series)
 """
 import json
 import math
@@ -20,6 +21,7 @@ from scipy.integrate import solve_ivp
 
 from profiles_flow import GRAVITY, Channel, Reject, Sweep, march, need, root
 
+SERIES = ""  # another one draws other runs
 WORST = {"quadrature against DOP853": 0.0, "DOP853 against another method": 0.0}
 
 
@@ -877,7 +879,7 @@ def lateral_control(r, name):
         y = yc + s * step * m
         results[side] = (x, y)
     up = [xc * k / 6 for k in (5.2, 4, 3, 2, 1, 0)]
-    down = [xc + (length - xc) * k / 6 for k in (0.8, 2, 3, 4, 5, 6)]
+    down = [xc + (length - xc) * k / 6 for k in (0.8, 2, 3, 4, 5)] + [length]
     got = march(flow.rate, *results["up"], up) + march(flow.rate, *results["down"], down)
     # the same with a start five times farther off: what is left of the start must be nothing
     step *= 5
@@ -1129,6 +1131,240 @@ def stations_jump(r, name, count):
     return case.jump(x, ya, yb).control(0.0, y1, "depth").control(river.xs[-1], y2, "depth").done()
 
 
+def stations_control(r, name, count):
+    """Surveyed, mild first and steep then: critical depth at the station between, without being told."""
+    mild = draw_river(r, "M", count)
+    at = r.randrange(1, count - 1)
+    xs, zs = mild.xs, [mild.zs[0]]
+    yc = mild.channels[0].critical(mild.q)
+    sc = mild.channels[0].friction(yc, mild.q)
+    need(all(c.kind != "surveyed" for c in mild.channels), "levels of their own")
+    for i in range(1, count):
+        zs.append(round(zs[-1] - (xs[i] - xs[i - 1]) * sc * (r.uniform(0.1, 0.4) if i <= at else r.uniform(3, 6)), 4))
+    river = River(mild.channels, xs, zs, mild.q, mild.alpha)
+    for p in river.parts:
+        for k in range(21):
+            x = p.xa + (p.xb - p.xa) * min(max(k / 20, 1e-9), 1 - 1e-9)
+            n = p.parts(x, p.critical(x))[1]
+            need(n < 0 if p.xb <= xs[at] else n > 0, "a control elsewhere")
+    upper, lower, x = river.parts[at - 1], river.parts[at], xs[at]
+    y = upper.critical(x)
+    need(upper.E(x, y) > lower.E(x, lower.critical(x)) * (1 + 1e-9))
+    to = y * 1.05
+    got = solve_ivp(lambda v, t: [upper.parts(t[0], v)[0] / upper.parts(t[0], v)[1]], (y, to), [x], method="DOP853", rtol=1e-13, atol=1e-13)
+    x_off = got.y[0][-1]
+    need(x_off > upper.xa + 0.2 * (upper.xb - upper.xa))
+    points = [v for v in inner_points(r, river) if v < x_off - 1e-3 or v > x]
+    up = river.sweep(x_off, to, -1, [v for v in points if v < x], margin=1.03)
+    y_in = river.step_across(upper, lower, x, y, False)
+    v = y_in * 0.97
+    got = solve_ivp(lambda v, t: [lower.parts(t[0], v)[0] / lower.parts(t[0], v)[1]], (y_in, v), [x], method="DOP853", rtol=1e-13, atol=1e-13)
+    x_in = got.y[0][-1]
+    need(x_in < lower.xb - 0.1 * (lower.xb - lower.xa))
+    down = river.sweep(x_in, v, 1, [w for w in points if w > x_in], margin=1.015)
+    case = Case(name, river.q, {"kind": "free_overfall"}).control(x, y, "critical")
+    case.d["stations"] = river.stations()
+    del case.d["datum"]
+    for w in points:
+        if w in up or w in down:
+            case.d["expect"].append([w, up.get(w, down.get(w)), None])
+    return case.done()
+
+
+# ------------------------------------------------------------------------------------------------ longer chains and other laws
+
+def odd_law(r, name, letter, number, which):
+    """A single reach with a law that varies with depth, or with zones."""
+    size = figures(r.uniform(2, 10), 3)
+    if which == "zones":
+        kind = "two_stage"
+        section = {"bottom_width": size, "side_slope": figures(r.uniform(0.5, 2), 2), "bench_height": figures(r.uniform(0.6, 1.5), 2),
+                   "left_bench_width": figures(r.uniform(1, 3) * size, 2), "right_bench_width": figures(r.uniform(1, 3) * size, 2), "upper_side_slope": figures(r.uniform(1, 3), 2)}
+        half = size / 2 + section["side_slope"] * section["bench_height"]
+        law = {"zones": [figures(r.uniform(0.03, 0.07), 2), figures(r.uniform(0.02, 0.035), 2), figures(r.uniform(0.03, 0.07), 2)], "until": [-half, half], "combine": "divided"}
+    else:
+        kind = r.choice(["rectangular", "trapezoidal"])
+        section = draw_section(r, kind)
+        if which == "bed":
+            law = {"bed": figures(r.uniform(0.02, 0.04), 2), "sides": figures(r.uniform(0.01, 0.03), 2), "combine": "horton_einstein"}
+        else:
+            law = {"manning_by_depth": [[0.3, figures(r.uniform(0.03, 0.05), 2)], [0.8, figures(r.uniform(0.02, 0.03), 2)], [1.7, figures(r.uniform(0.02, 0.04), 2)]]}
+    slope = figures(10 ** (r.uniform(-3.5, -2.7) if letter == "M" else r.uniform(-1.8, -1.2)), 3)
+    ch = Channel(kind, section, law, slope)
+    yn = r.uniform(0.4, 2.5)
+    q = figures(ch.conveyance(*ch.sec.at(yn)[:2], 1.0, yn) * math.sqrt(slope), 4)
+    yc, yn = ch.critical(q), ch.normal(q)
+    need(ch.slope_class(q) == letter and len(ch.normals(q)) == 1)
+    if number == "1":
+        y0, end = yn * r.uniform(1.2, 2), None
+    elif number == "2" and letter == "M":
+        y0 = yc + (yn - yc) * r.uniform(0.1, 0.5)
+    elif number == "2":
+        y0 = yn + (yc - yn) * r.uniform(0.3, 0.9)
+    else:
+        y0 = yn * r.uniform(0.4, 0.8)
+    length = figures(distance(ch, q, y0, yn + (y0 - yn) * 10 ** -r.uniform(0.7, 3)), 4)
+    if letter == "M":
+        sweep = Sweep(ch, q, length, y0, -1, 0.0)
+        case = Case(name, q, {"kind": "depth", "value": y0}).control(length, y0, "depth")
+    else:
+        sweep = Sweep(ch, q, 0.0, y0, 1, length)
+        case = Case(name, q, {"kind": "free_overfall"}, {"kind": "depth", "value": y0}).control(0.0, y0, "depth")
+    return case.reaches(reach(ch, length)).along(sweep, spread(r, 0.0, length), lambda y: ch.curve(y, q)).done()
+
+
+def tranquil_chain(r, name, count):
+    """Subcritical through many joints with everything that a joint may have, and inflow along some reaches."""
+    channels, q = [], [figures(math.exp(r.uniform(math.log(0.5), math.log(20))), 4)]
+    inflows, laterals, lengths = [], [], []
+    for i in range(count):
+        kind = r.choice(["rectangular", "trapezoidal", "triangular", "parabolic", "u_shaped", "circular", "box", "egg"])
+        section = draw_section(r, kind)
+        law = draw_law(r)
+        ch = Channel(kind, section, law, r.choice([0.0, figures(10 ** r.uniform(-4, -2.7), 3), -figures(10 ** r.uniform(-5, -3.5), 3)]), r.choice([1, 1, 2, 3]))
+        inflow = figures(q[-1] * r.uniform(0.05, 0.3), 3) if i and r.random() < 0.3 else 0.0
+        length = figures(r.uniform(10, 300), 3)
+        lat = figures(q[-1] * r.uniform(0.05, 0.3) / length, 3) if r.random() < 0.25 and kind not in CLOSED else 0.0
+        start = q[-1] + inflow
+        end = start + lat * length
+        yc = ch.critical(end)
+        need(0.1 < yc < 3 and (kind not in CLOSED or yc < 0.6 * ch.sec.height))
+        channels.append(ch)
+        inflows.append(inflow)
+        laterals.append(lat)
+        lengths.append(length)
+        q += [start, end]
+    ends = [sum(lengths[:i + 1]) for i in range(count)]
+    starts = [0.0] + ends[:-1]
+    last = channels[-1]
+    y = last.critical(q[-1]) * r.uniform(1.2, 2.5)
+    need(y < 0.93 * last.sec.height)
+    case = Case(name, q[0], {"kind": "depth", "value": y}, None, figures(r.uniform(0, 100), 4)).control(ends[-1], y, "depth")
+    reaches = []
+    joint = {}
+    for i in reversed(range(count)):
+        ch, qa, qb = channels[i], q[2 * i + 1], q[2 * i + 2]
+        points = spread(r, starts[i], ends[i], 5, ends=False)
+        if laterals[i]:
+            flow = Lateral(ch, qa, laterals[i])
+            def tame(x, v):
+                need(1.05 * ch.critical(flow.q(x)) < v < 0.93 * ch.sec.height, "leaves its branch")
+                return flow.rate(x, v)
+            march(tame, lengths[i], y, [0.0], rtol=1e-7)
+            got = depths_of(flow, lengths[i], y, [p - starts[i] for p in reversed(points)] + [0.0])
+            for p, v in zip(reversed(points), got):
+                case.d["expect"].append([p, v, None])
+            y = got[-1]
+        else:
+            sub = Sweep(ch, qb, ends[i], y, -1, starts[i])
+            need(sub.end == starts[i])
+            y = sub(starts[i])
+            need(all(sub(p) < 0.93 * ch.sec.height or ch.is_full(sub(p)) for p in [starts[i]] + points), "near the crown")
+            need(all(sub(p) > 1.02 * ch.critical(qb) for p in [starts[i]] + points))
+            case.along(sub, points, lambda v: ch.curve(v, qb))
+        d = reach(ch, lengths[i], inflow=inflows[i], lateral=laterals[i], **joint)
+        if "entry" in d:
+            pass
+        reaches.insert(0, d)
+        if i:
+            drop = r.choice([0.0, 0.0, figures(0.2 * y, 2)])
+            loss, entry = r.choice([0.0, 0.0, 0.3, 1.0]), r.choice([0.0, 0.0, 0.5, 1.5])
+            if entry:
+                reaches[0]["entry"] = entry
+            yu, who = join_up(channels[i - 1], ch, q[2 * i], qa, y, drop, loss, entry)
+            need(who == "sweep", who)
+            need(yu > 1.05 * channels[i - 1].critical(q[2 * i]) and (yu < 0.93 * channels[i - 1].sec.height or channels[i - 1].sec.closed and yu > 1.02 * channels[i - 1].sec.height), "near the crown")
+            joint = {"drop": drop, "loss": loss}
+            y = yu
+    # a first reach that is steep would start at critical depth; only mild ones come here
+    need(channels[0].slope_class(q[2]) != "S")
+    return case.reaches(*reaches).done()
+
+
+def turns_at_joint(r, name):
+    """A supercritical stream stronger than the water below above a joint, and weaker below it: it turns there, and no jump is told."""
+    a, b, q = pair(r, "SM", False)
+    ya, yb = a.critical(q), b.critical(q)
+    y2 = b.normal(q) * r.uniform(0.9, 1.6)
+    need(1.1 * yb < y2 < 0.93 * b.sec.height)
+    la, lb = figures(r.uniform(20, 100) * ya, 3), figures(r.uniform(20, 100) * yb, 3)
+    super_a, sub_b = Sweep(a, q, 0.0, ya, 1, la), Sweep(b, q, la + lb, y2, -1, la)
+    need(sub_b.end == la)
+    y_in = join_down(a, b, q, q, super_a(la))
+    need(b.M(y_in, q) < 0.98 * b.M(sub_b(la), q))
+    y_out, who = join_up(a, b, q, q, sub_b(la))
+    need(who == "sweep")
+    sub_a = Sweep(a, q, la, y_out, -1, 0.0)
+    need(a.M(super_a(la), q) > 1.02 * a.M(y_out, q) and crossing(super_a, sub_a, 0.0, la) is None)
+    pa, pb = spread(r, 0.0, la, 6)[:-1], spread(r, la, la + lb, 6)[1:]
+    return Case(name, q, {"kind": "depth", "value": y2}).reaches(reach(a, la), reach(b, lb)).along(super_a, pa, lambda y: a.curve(y, q)).along(
+        sub_b, pb, lambda y: b.curve(y, q)).control(0.0, ya, "critical").control(la + lb, y2, "depth").done()
+
+
+def culvert(r, name):
+    """A channel, a culvert that runs full below a drowned outlet, a channel."""
+    a, q = draw_channel(r, "M", r.choice(["rectangular", "trapezoidal"]), extras=False)
+    kind = r.choice(["box", "circular"])
+    ch = Channel(kind, draw_section(r, kind), draw_law(r), figures(10 ** r.uniform(-3.5, -2), 3), r.choice([1, 2, 3]))
+    need(ch.critical(q) < 0.8 * ch.sec.height)
+    h = ch.sec.height
+    y3 = figures(h * r.uniform(1.1, 2), 4)
+    l1, l2, l3 = figures(r.uniform(30, 200), 3), figures(r.uniform(10, 60), 3), figures(r.uniform(20, 100), 3)
+    entry, loss1, loss2 = r.choice([0.2, 0.5, 0.9]), r.choice([0.0, 0.1]), r.choice([0.3, 1.0])
+    need(a.critical(q) * 1.3 < y3)
+    sub3 = Sweep(a, q, l1 + l2 + l3, y3, -1, l1 + l2)
+    y2, who = join_up(ch, a, q, q, sub3(l1 + l2), 0.0, loss2, 0.0)
+    need(who == "sweep" and y2 > 1.01 * h)
+    sub2 = Sweep(ch, q, l1 + l2, y2, -1, l1)
+    need(sub2(l1) > 1.01 * h)
+    y1, who = join_up(a, ch, q, q, sub2(l1), 0.0, loss1, entry)
+    need(who == "sweep" and y1 > a.critical(q) * 1.1)
+    sub1 = Sweep(a, q, l1, y1, -1, 0.0)
+    f = lambda y: a.curve(y, q)
+    return Case(name, q, {"kind": "depth", "value": y3}).reaches(reach(a, l1, loss=loss1), reach(ch, l2, entry=entry, loss=loss2), reach(a, l3)).along(
+        sub1, spread(r, 0.0, l1, 5)[:-1], f).along(sub2, spread(r, l1, l1 + l2, 5)[1:-1], lambda y: "").along(sub3, spread(r, l1 + l2, l1 + l2 + l3, 5)[1:], f).control(
+        l1 + l2 + l3, y3, "depth").done()
+
+
+def lateral_jump(r, name):
+    """A jump in a reach with inflow along it."""
+    ch, q2 = draw_channel(r, "M", r.choice(["rectangular", "trapezoidal", "parabolic", "triangular"]), extras=False)
+    q0 = figures(q2 * r.uniform(0.7, 0.95), 4)
+    y1 = ch.critical(q0) * r.uniform(0.3, 0.6)
+    length = figures(r.uniform(20, 120) * y1, 3)
+    lat = figures((q2 - q0) / length, 3)
+    flow = Lateral(ch, q0, lat)
+    y2 = ch.critical(flow.q(length)) * r.uniform(1.2, 2)
+    grid = [length * k / 100 for k in range(101)]
+    def tame(low, high):
+        def rate(x, v):
+            need(low * ch.critical(flow.q(x)) < v < high * ch.critical(flow.q(x)), "leaves its branch")
+            return flow.rate(x, v)
+        return rate
+    sub = dict(zip(grid[::-1], march(tame(1.03, 50), length, y2, grid[::-1])))
+    sup, y = {}, y1
+    for a, b in zip(grid, grid[1:]):
+        sup[a] = y
+        try:
+            y = march(tame(0.0, 0.97), a, y, [b])[0]
+        except Reject:
+            break
+    gaps = [(x, ch.M(sup[x], flow.q(x)) - ch.M(sub[x], flow.q(x))) for x in grid if x in sup]
+    need(gaps[0][1] > 0, "drowned")
+    k = next((i for i, g in enumerate(gaps) if g[1] < 0), None)
+    need(k is not None and 3 < k < 95, "no jump")
+    a, b = gaps[k - 1][0], gaps[k][0]
+    up = lambda x: march(flow.rate, a, sup[a], [x])[0]
+    down = lambda x: march(flow.rate, b, sub[b], [x])[0]
+    x = root(lambda x: ch.M(up(x), flow.q(x)) - ch.M(down(x), flow.q(x)), a, b)
+    case = Case(name, q0, {"kind": "depth", "value": y2}, {"kind": "depth", "value": y1}).reaches(reach(ch, length, lateral=lat)).jump(x, up(x), down(x))
+    case.control(0.0, y1, "depth").control(length, y2, "depth")
+    for v in grid[::9] + [length]:
+        if abs(v - x) > 0.005 * length and v not in [e[0] for e in case.d["expect"]]:
+            case.d["expect"].append([v, sup[v] if v < x else sub[v], None])
+    return case.done()
+
+
 # ------------------------------------------------------------------------------------------------ closed conduits
 
 def full_throughout(r, name, kind):
@@ -1305,6 +1541,19 @@ def plan():
         add(f"{count} stations, supercritical {i}", stations, "S", count)
     for i, count in enumerate([2, 3, 4, 6, 10]):
         add(f"{count} stations with a jump {i}", stations_jump, count)
+    for i, count in enumerate([3, 4, 6, 10]):
+        add(f"{count} stations with a control {i}", stations_control, count)
+    for which in ("zones", "bed", "manning_by_depth"):
+        for letter, number in ("M1", "M2", "S2", "S3"):
+            for i in range(2):
+                add(f"{letter}{number} with {which} {i}", odd_law, letter, number, which)
+    for i, count in enumerate([3, 3, 4, 4, 5, 6, 8]):
+        add(f"{count} reaches, tranquil {i}", tranquil_chain, count)
+    for i in range(3):
+        add(f"turns at a joint {i}", turns_at_joint)
+        add(f"lateral inflow with a jump {i}", lateral_jump)
+    for i in range(4):
+        add(f"culvert running full {i}", culvert)
     for kind in ("circular", "egg", "horseshoe", "box"):
         add(f"full throughout, {kind}", full_throughout, kind)
         add(f"full, then free, {kind}", full_to_free, kind)
@@ -1317,7 +1566,7 @@ def plan():
 
 def make(name, f, a, k):
     for attempt in range(4000):
-        r = random.Random(f"{name}/{attempt}")
+        r = random.Random(f"{SERIES}{name}/{attempt}")
         try:
             if f is fixed:
                 return f(name, *a, r=r, **k)
@@ -1326,11 +1575,13 @@ def make(name, f, a, k):
             last = reason
             if f is fixed:
                 raise
-    raise SystemExit(f"{name}: nothing drawn ({last})")
+    raise AssertionError(f"{name}: nothing drawn ({last})")
 
 
 def main():
+    global SERIES
     only = sys.argv[1] if len(sys.argv) > 1 else ""
+    SERIES = sys.argv[2] if len(sys.argv) > 2 else ""
     print(json.dumps({"about": "Runs of gradually varied flow with their depths, jumps and controls, made by profiles.py; float64 numbers in SI units, gravity 9.80665 m/s2."}))
     count = values = 0
     for name, f, a, k in plan():
@@ -1340,7 +1591,7 @@ def main():
             case = make(name, f, a, k)
         except AssertionError as e:
             print(f"{name}: {e}", file=sys.stderr)
-            if not only:
+            if not only and not SERIES:
                 raise
             continue
         count += 1

@@ -65,14 +65,13 @@ class Arcs:
         self.height = arcs[-1][1]
         self.breaks = [a[0] for a in arcs[1:]]
 
-    @staticmethod
-    def primitive(arc, y):
+    def primitive(self, arc, y):
         """Integrals of half-width, half-width times height, and half the perimeter."""
         _, _, cx, cy, r = arc
         if r == 0:
             return cx * y, cx * y * y / 2, y, cx
-        t = y - cy
-        root_ = math.sqrt(max(0.0, r * r - t * t))
+        t = r if y == self.height else y - cy
+        root_ = math.sqrt(max(0.0, (r - t) * (r + t)))
         angle = math.atan2(t, root_)
         disc = (t * root_ + r * r * angle) / 2
         return cx * t + disc, cx * y * y / 2 + cy * disc - root_ ** 3 / 3, r * angle, cx + root_
@@ -168,12 +167,56 @@ def build(kind, s):
 
 # ------------------------------------------------------------------------------------------------ one channel
 
+class Zoned:
+    """A two-stage section of which each stage is a zone with a Manning's n of its own: a trapezoid below its benches, and what stands above each bench.
+
+    Gives area, perimeter, top width, first moment, conveyance, alpha, beta and dalpha/ddepth."""
+
+    def __init__(self, section, law):
+        self.b, self.z, self.h = section["bottom_width"], section["side_slope"], section["bench_height"]
+        self.left, self.right, self.zu = section["left_bench_width"], section["right_bench_width"], section["upper_side_slope"]
+        self.n = law["zones"]
+        self.closed, self.height, self.breaks = False, math.inf, [self.h]
+
+    def zones(self, y):
+        """(area, dA, perimeter, dP, first moment) of the main channel and of the two plains."""
+        slant = math.hypot(1, self.z)
+        if y <= self.h:
+            return [((self.b + self.z * y) * y, self.b + 2 * self.z * y, self.b + 2 * slant * y, 2 * slant, (self.b / 2 + self.z * y / 3) * y * y, self.n[1])]
+        top, over = self.b + 2 * self.z * self.h, y - self.h
+        main = (self.b + self.z * self.h) * self.h
+        moment = (self.b / 2 + self.z * self.h / 3) * self.h ** 2
+        out = [(main + top * over, top, self.b + 2 * slant * self.h, 0.0, moment + main * over + top * over * over / 2, self.n[1])]
+        for width, n in ((self.left, self.n[0]), (self.right, self.n[2])):
+            u = math.hypot(1, self.zu)
+            out.append(((width + self.zu * over / 2) * over, width + self.zu * over, width + u * over, u, (width / 2 + self.zu * over / 6) * over * over, n))
+        return out
+
+    def at(self, y):
+        z = self.zones(y)
+        return sum(v[0] for v in z), sum(v[2] for v in z), sum(v[1] for v in z), sum(v[4] for v in z)
+
+    def motion(self, y):
+        a = da = k = dk = s3 = ds3 = s2 = 0.0
+        for area, darea, p, dp, _, n in self.zones(y):
+            ki = area * (area / p) ** (2 / 3) / n
+            dki = ki * (5 / 3 * darea / area - 2 / 3 * dp / p)
+            a, da, k, dk = a + area, da + darea, k + ki, dk + dki
+            s3 += ki ** 3 / area ** 2
+            ds3 += ki ** 3 / area ** 2 * (3 * dki / ki - 2 * darea / area)
+            s2 += ki ** 2 / area
+        alpha = s3 * a * a / k ** 3
+        return k, alpha, s2 * a / k ** 2, alpha * (ds3 / s3 + 2 * da / a - 3 * dk / k)
+
+
 class Channel:
     """What one barrel of a channel does; discharges handed in are totals."""
 
     def __init__(self, kind, section, law, slope, barrels=1, alpha=1.0, beta=1.0):
         self.kind, self.section, self.law, self.slope, self.barrels, self.alpha, self.beta = kind, section, law, slope, barrels, alpha, beta
-        self.sec = build(kind, section)
+        self.sec = Zoned(section, law) if "zones" in law else build(kind, section)
+        if "manning_by_depth" in law:
+            self.sec.breaks = sorted(set(self.sec.breaks) | {row[0] for row in law["manning_by_depth"]})
         self.cos = math.sqrt((1 - slope) * (1 + slope))
         self.known = {}
 
@@ -186,8 +229,21 @@ class Channel:
             return a, p, t, m + a * (y - self.sec.height)
         return self.sec.at(y)
 
-    def conveyance(self, a, p, q):
+    def conveyance(self, a, p, q, y=None):
         r = a / p
+        if "zones" in self.law:
+            return self.sec.motion(y)[0]
+        if "manning_by_depth" in self.law:
+            rows = self.law["manning_by_depth"]
+            n = rows[0][1] if y <= rows[0][0] else rows[-1][1]
+            for (ya, na), (yb, nb) in zip(rows, rows[1:]):
+                if ya < y <= yb:
+                    n = na + (nb - na) * (y - ya) / (yb - ya)
+            return a * r ** (2 / 3) / n
+        if "bed" in self.law:  # Horton and Einstein
+            b, s = self.law["bed"], self.law["sides"]
+            n = ((self.sec.b * b ** 1.5 + (p - self.sec.b) * s ** 1.5) / p) ** (2 / 3)
+            return a * r ** (2 / 3) / n
         if "manning" in self.law:
             return a * r ** (2 / 3) / self.law["manning"]
         if "strickler" in self.law:
@@ -210,7 +266,7 @@ class Channel:
     def friction(self, y, total):
         q = total / self.barrels
         a, p, _, _ = self.geometry(y)
-        return (q / self.conveyance(a, p, q)) ** 2
+        return (q / self.conveyance(a, p, q, y)) ** 2
 
     def N(self, y, total):
         return self.slope - self.friction(y, total)
@@ -219,11 +275,15 @@ class Channel:
         """dE/ddepth = cos*(1 - F^2)."""
         q = total / self.barrels
         a, _, t, _ = self.geometry(y)
-        return self.cos - self.alpha * q * q * t / (GRAVITY * a ** 3)
+        alpha, rate = self.alpha, 0.0
+        if "zones" in self.law:
+            _, alpha, _, rate = self.sec.motion(y)
+        return self.cos - q * q / (GRAVITY * a * a) * (alpha * t / a - rate / 2)
 
     def head(self, y, total):
         q = total / self.barrels
-        return self.alpha * q * q / (2 * GRAVITY * self.geometry(y)[0] ** 2)
+        alpha = self.sec.motion(y)[1] if "zones" in self.law else self.alpha
+        return alpha * q * q / (2 * GRAVITY * self.geometry(y)[0] ** 2)
 
     def E(self, y, total):
         return y * self.cos + self.head(y, total)
@@ -231,7 +291,8 @@ class Channel:
     def M(self, y, total):
         q = total / self.barrels
         a, _, _, m = self.geometry(y)
-        return self.beta * q * q / (GRAVITY * a) + self.cos * m
+        beta = self.sec.motion(y)[2] if "zones" in self.law else self.beta
+        return beta * q * q / (GRAVITY * a) + self.cos * m
 
     def top(self):
         return self.sec.height * (1 - 1e-13) if self.sec.closed else 1e4
