@@ -204,24 +204,27 @@ func (c *collocation) holds() bool {
 }
 
 // changeBranch takes the sweep on, at equal energy, to the next branch of its regime in the direction in which the depth was moving, where its own ends at a
-// break: there the width jumps, and F past one. It reports whether it did.
+// break: there the width jumps, and F past one, or the coefficient alpha jumps, and the energy with it. It reports whether it did.
 func (c *collocation) changeBranch() bool {
 	b, here := c.breakAt(c.y)
 	n := len(c.trace.panels)
 	if !here || n == 0 {
 		return false
 	}
-	if up, down := c.drift(c.x, b); up || down {
-		return false
-	}
 	was := c.trace.panels[n-1]
 	rising := was.y1 > was.y0
 	s := c.v.side(c.x)
-	y := b
+	own, beyond := b, justAbove(b)
 	if !rising { // it came from above the break
-		y = justAbove(b)
+		own, beyond = beyond, own
 	}
-	energy, found := s.motion.Energy(s.channel.Section.At(y)), math.NaN()
+	energy, found := s.motion.Energy(s.channel.Section.At(own)), math.NaN()
+	if up, down := c.drift(c.x, b); up || down {
+		there := s.motion.Energy(s.channel.Section.At(beyond))
+		if up != rising || math.Abs(there-energy) <= 1e-12*energy {
+			return false
+		}
+	}
 	s.motion.EnergyBranches(func(e flow.Branch) bool {
 		if e.Rising != c.subcritical || rising && e.Hi <= b || !rising && e.Lo >= b {
 			return true

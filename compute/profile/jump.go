@@ -24,8 +24,8 @@ func (c *chain) meet(l *leg, t *trace, from float64) (to float64, jumps bool, er
 			side := l.side(x)
 			return side.force(s.depth(x)) - side.force(t.depth(x))
 		}
-		if lo == from && excess(lo) >= 0 {
-			return lo, true, nil
+		if excess(lo) >= 0 {
+			return lo, true, nil // drowned from the beginning, or where the subcritical sweep ends at a break
 		}
 		places := meetingPlaces(s, t, lo, hi)
 		before, below := lo, true // the supercritical force is the larger

@@ -55,9 +55,6 @@ func (p *prismatic) steepness(g section.Geometry) float64 {
 
 // steepnessNear returns S0 - Sf at a depth a distance from a normal depth, without the cancellation: from the mean of dK/ddepth between.
 func (p *prismatic) steepnessNear(g section.Geometry, normal, distance float64) float64 {
-	if math.Abs(distance) > 1e-2*normal {
-		return p.steepness(g)
-	}
 	const node = 0.38729833462074168852 // half of sqrt(3/5): Gauss's rule of three points
 	q := p.motion.Discharge()
 	rate := func(y float64) float64 { return p.channel.Law.AtDischarge(p.channel.Section.At(y), q).Rate }
@@ -363,8 +360,11 @@ func (s *sweeper) step(b flow.Branch, stop float64, asymptote bool) bool {
 		}
 	}
 	toward := math.Copysign(1, s.rise*c.side)
-	// The pole's own formula holds where nothing breaks between.
-	normal := c.pole != 0 && !c.crown && b.Lo <= c.pole && c.pole <= b.Hi
+	// How near a normal depth its own formula holds: where nothing breaks between, nor near by.
+	near := 0.0
+	if c.pole != 0 && !c.crown && b.Lo <= c.pole && c.pole <= b.Hi {
+		near = min(1e-2*c.pole, 0.2*(c.pole-b.Lo), 0.2*(b.Hi-c.pole))
+	}
 	if !toPole && math.Abs(stop-s.y) < 1e-8*s.y {
 		return s.hop(stop)
 	}
@@ -385,7 +385,7 @@ func (s *sweeper) step(b flow.Branch, stop float64, asymptote bool) bool {
 			y, distance, rate := c.depth(u0 + half*(t+1))
 			g := p.channel.Section.At(y)
 			steepness := 0.0
-			if normal {
+			if math.Abs(distance) <= near {
 				steepness = p.steepnessNear(g, c.pole, distance)
 			} else {
 				steepness = p.steepness(g)

@@ -14,11 +14,10 @@ import (
 
 	"leat/compute"
 	"leat/compute/flow"
-	"leat/compute/friction"
 	"leat/compute/friction/frictiontest"
 )
 
-var randomChains = flag.Int("chains", 3000, "how many random chains TestRandomChains solves")
+var randomChains = flag.Int("chains", 1500, "how many random chains TestRandomChains solves")
 
 // dice returns a channel whose size fits a discharge, so that most chains have a story to tell.
 func dice(r *rand.Rand) (flow.Channel, error) {
@@ -29,13 +28,6 @@ func dice(r *rand.Rand) (flow.Channel, error) {
 	law, err := frictiontest.Law(r, s)
 	if err != nil {
 		return flow.Channel{}, err
-	}
-	// Where a zone's own perimeter jumps (a bench inside a zone) alpha and the energy jump with the depth, and a sweep that passes there in a varying stretch
-	// does not yet keep its energy: the random chains leave such zones out.
-	if !friction.UnitCoefficients(law) {
-		if law, err = friction.NewManning(0.03); err != nil {
-			return flow.Channel{}, err
-		}
 	}
 	c := flow.Channel{Section: s, Law: law, Slope: math.Exp(math.Log(1e-5) + r.Float64()*math.Log(1e4)), Gravity: 9.80665, Barrels: 1 + r.IntN(2)}
 	switch r.IntN(12) {
