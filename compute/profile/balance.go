@@ -95,7 +95,7 @@ func (l *leg) workOverDepth(p *panel, x0, y0, x1, y1 float64) float64 {
 	}
 	s0, s1 := l.side(x0), l.side(x1)
 	friction := s0.motion.FrictionSlope(s0.channel.Geometry(y0))
-	return s1.energy(y1) - s0.energy(y0) + friction*(x1-x0-distance)
+	return s1.energy(math.Nextafter(y1, y0)) - s0.energy(math.Nextafter(y0, y1)) + friction*(x1-x0-distance)
 }
 
 // energySlope returns dE/dx: S0 - Sf, less (2*beta - alpha)*Q*q/(g A^2) for a lateral inflow that brings no momentum.
