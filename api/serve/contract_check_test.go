@@ -11,6 +11,7 @@ import (
 	"mime"
 	"net/http"
 	"net/url"
+	"regexp"
 	"slices"
 	"strconv"
 	"strings"
@@ -82,11 +83,14 @@ func (c *Contract) judge(value any, place ...string) error {
 	return schema.Validate(value)
 }
 
-// RouteTable lists the routes of a server as METHOD path.
+// anyName is a part of a path that stands for any.
+var anyName = regexp.MustCompile(`:(\w+)`)
+
+// RouteTable lists the routes of a server as METHOD path, in the contract's way to write them.
 func (s *Server) RouteTable() []string {
 	var out []string
 	for _, r := range s.routes {
-		out = append(out, r.method+" "+r.path)
+		out = append(out, r.method+" "+anyName.ReplaceAllString(r.path, "{$1}"))
 	}
 	return out
 }
@@ -99,6 +103,18 @@ func (c *Contract) Schema(name string, value any) error {
 	return c.judge(value, "components", "schemas", name)
 }
 
+// route returns the path of the document that a path of a request is one of: itself, or one with a part in braces.
+func (c *Contract) route(path string) string {
+	for template := range c.Document.Paths.Map() {
+		head, _, braced := strings.Cut(template, "{")
+		rest, within := strings.CutPrefix(path, head)
+		if braced && within && rest != "" && !strings.Contains(rest, "/") {
+			return template
+		}
+	}
+	return path
+}
+
 // Answer says what in an answer the contract does not have: to a method and target (path and query) with a status, header and body.
 // A bulk body must be whole, its end line right.
 func (c *Contract) Answer(method, target string, status int, header http.Header, body []byte) error {
@@ -109,7 +125,8 @@ func (c *Contract) Answer(method, target string, status int, header http.Header,
 	if header.Get("Request-Id") == "" {
 		return errors.New("no Request-Id")
 	}
-	item := c.Document.Paths.Value(address.Path)
+	route := c.route(address.Path)
+	item := c.Document.Paths.Value(route)
 	if item == nil {
 		if status != http.StatusNotFound {
 			return fmt.Errorf("the contract has no path %s, and the status is %d", address.Path, status)
@@ -167,7 +184,7 @@ func (c *Contract) Answer(method, target string, status int, header http.Header,
 	if response.Value.Content[kind] == nil {
 		return fmt.Errorf("%s %s: the contract has no %s for %d", method, address.Path, kind, status)
 	}
-	place := []string{"paths", address.Path, strings.ToLower(method), "responses", strconv.Itoa(status), "content", kind, "schema"}
+	place := []string{"paths", route, strings.ToLower(method), "responses", strconv.Itoa(status), "content", kind, "schema"}
 	var value any
 	switch kind {
 	case "application/json", "application/geo+json":
@@ -409,6 +426,9 @@ func TestContractJudgeRefuses(t *testing.T) {
 		{"a wrong hash", "POST", "/v1/bulk/section", 200, ndjson, strings.Replace(end(1, line), `"line":1,`, `"line":2,`, 1), false},
 		{"a line of both", "POST", "/v1/bulk/section", 200, ndjson, end(1, strings.Replace(line, `"line"`, `"problem":`+problem+`,"line"`, 1)), false},
 		{"lines out of order", "POST", "/v1/bulk/section", 200, ndjson, end(2, line+line), false},
+		{"a page", "GET", "/docs/problems/saturated", 200, "text/html", "<!doctype html>", true},
+		{"a page as another type", "GET", "/docs/problems/saturated", 200, "application/json", "{}", false},
+		{"a page below a page", "GET", "/docs/problems/saturated/x", 200, "text/html", "<!doctype html>", false},
 		{"HEAD with a body", "HEAD", "/v1/limits", 200, "application/json", "{}", false},
 	} {
 		err := contract.Answer(row.method, row.target, row.status, header(row.media), []byte(row.body))

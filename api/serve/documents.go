@@ -54,15 +54,47 @@ func (s *Server) documents(contract []byte) ([]route, error) {
 	if err != nil {
 		return nil, err
 	}
-	page := newDocument(mediaHTML+"; charset=utf-8", keepAWhile, site.Page())
-	page.rules = site.ContentSecurityPolicy()
-	return []route{
+	problems, err := s.problemPages()
+	if err != nil {
+		return nil, err
+	}
+	return append([]route{
 		s.get("/v1/limits", newDocument(mediaJSON, keepAndAsk, limits)),
 		s.get("/v1/units", newDocument(mediaJSON, keepAWhile, append(units, '\n'))),
 		s.get("/version", newDocument(mediaJSON, keepAndAsk, version)),
 		s.get("/openapi.yaml", newDocument(mediaYAML, keepAWhile, contract)),
 		s.get("/openapi.json", newDocument(mediaJSON, keepAWhile, contractJSON)),
-		s.get("/", page, newDocument(mediaJSON, keepAWhile, site.Links())),
+		s.get("/", newPage(site.Page()), newDocument(mediaJSON, keepAWhile, site.Links())),
+	}, problems...), nil
+}
+
+// newPage is a page for people.
+func newPage(text []byte) document {
+	d := newDocument(mediaHTML+"; charset=utf-8", keepAWhile, text)
+	d.rules = site.ContentSecurityPolicy()
+	return d
+}
+
+// problemPages are the routes that the types of problems lead to.
+func (s *Server) problemPages() ([]route, error) {
+	list, each, err := site.Problems()
+	if err != nil {
+		return nil, err
+	}
+	shown := make(map[string]gin.HandlerFunc, len(each))
+	for name, text := range each {
+		shown[name] = s.show(newPage(text))
+	}
+	return []route{
+		s.get("/docs/problems", newPage(list)),
+		{method: http.MethodGet, path: "/docs/problems/:name", handle: func(c *gin.Context) {
+			show, known := shown[c.Param("name")]
+			if !known {
+				s.writeProblem(c, wire.NotFound("There is no problem of this name; GET /docs/problems lists those that there are."))
+				return
+			}
+			show(c)
+		}},
 	}, nil
 }
 
@@ -74,11 +106,16 @@ func encode(v any) ([]byte, error) {
 
 // get is the route of a document with one or more representations, the preferred one first.
 func (s *Server) get(path string, representations ...document) route {
+	return route{method: http.MethodGet, path: path, handle: s.show(representations...)}
+}
+
+// show answers with one of some representations, the preferred one first.
+func (s *Server) show(representations ...document) gin.HandlerFunc {
 	offers := make([]string, len(representations))
 	for i, d := range representations {
 		offers[i], _, _ = strings.Cut(d.media, ";")
 	}
-	handle := func(c *gin.Context) {
+	return func(c *gin.Context) {
 		h := c.Writer.Header()
 		if len(offers) > 1 {
 			h["Vary"] = []string{"Accept"}
@@ -95,7 +132,6 @@ func (s *Server) get(path string, representations ...document) route {
 			}
 		}
 	}
-	return route{method: http.MethodGet, path: path, handle: handle}
 }
 
 func (d document) write(c *gin.Context) {

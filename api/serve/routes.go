@@ -11,8 +11,8 @@ import (
 // A route is one row of the table that the router, the metrics and the tests are made from.
 type route struct {
 	method string
-	path   string
-	silent bool // no access-log line and no metrics: probes and the metrics themselves
+	path   string // a last part that begins with a colon stands for any
+	silent bool   // no access-log line and no metrics: probes and the metrics themselves
 	handle gin.HandlerFunc
 }
 
@@ -65,11 +65,21 @@ func (s *Server) router() http.Handler {
 	return engine
 }
 
+// leads reports whether a path is one of the route's.
+func (r *route) leads(path string) bool {
+	head, _, any := strings.Cut(r.path, ":")
+	if !any {
+		return path == r.path
+	}
+	rest, found := strings.CutPrefix(path, head)
+	return found && rest != "" && !strings.Contains(rest, "/")
+}
+
 // allowed lists the methods of a path, in a fixed order.
 func (s *Server) allowed(path string) string {
 	var names []string
 	for _, r := range s.routes {
-		if r.path != path {
+		if !r.leads(path) {
 			continue
 		}
 		names = append(names, r.method)

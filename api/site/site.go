@@ -21,7 +21,7 @@ func Page() []byte { return page }
 // Links is the same for programs: what there is, and where.
 func Links() []byte { return links }
 
-// ContentSecurityPolicy is the header under which Page may be shown: its own style and nothing else.
+// ContentSecurityPolicy is the header under which Page and Problems may be shown: its own style and nothing else.
 func ContentSecurityPolicy() string {
 	sum := sha256.Sum256(style(page))
 	return fmt.Sprintf("default-src 'none'; style-src 'sha256-%s'; base-uri 'none'; form-action 'none'; frame-ancestors 'none'",
