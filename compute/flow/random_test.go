@@ -119,8 +119,12 @@ func (x *examiner) roots(name string, depths []float64, value func(float64) floa
 // changes reports whether a function changes its sign within four units in the last place of a depth.
 func changes(value func(float64) float64, y, height float64) bool {
 	ulp := above(y) - y
-	a, b := value(y-4*ulp), value(min(y+4*ulp, height))
-	return a <= 0 && b >= 0 || a >= 0 && b <= 0
+	negative, positive := false, false
+	for k := -4.0; k <= 4; k++ {
+		v := value(min(y+k*ulp, height))
+		negative, positive = negative || v <= 0, positive || v >= 0
+	}
+	return negative && positive
 }
 
 // scan looks densely for sign changes inside smooth pieces (direction 0: any, 1: rising through zero) and checks that a depth was given for each.
