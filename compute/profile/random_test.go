@@ -15,6 +15,7 @@ import (
 	"leat/compute"
 	"leat/compute/flow"
 	"leat/compute/friction/frictiontest"
+	"leat/compute/solve"
 )
 
 var randomChains = flag.Int("chains", 1500, "how many random chains TestRandomChains solves")
@@ -29,7 +30,7 @@ func dice(r *rand.Rand) (flow.Channel, error) {
 	if err != nil {
 		return flow.Channel{}, err
 	}
-	c := flow.Channel{Section: s, Law: law, Slope: math.Exp(math.Log(1e-5) + r.Float64()*math.Log(1e4)), Gravity: 9.80665, Barrels: 1 + r.IntN(2)}
+	c := flow.Channel{Section: s, Law: law, Slope: solve.Exp(math.Log(1e-5) + r.Float64()*math.Log(1e4)), Gravity: 9.80665, Barrels: 1 + r.IntN(2)}
 	switch r.IntN(12) {
 	case 0:
 		c.Slope = 0
@@ -40,7 +41,7 @@ func dice(r *rand.Rand) (flow.Channel, error) {
 }
 
 func randomBoundary(r *rand.Rand, upstream bool) Boundary {
-	depth := math.Exp(math.Log(0.05) + r.Float64()*math.Log(100))
+	depth := solve.Exp(math.Log(0.05) + r.Float64()*math.Log(100))
 	if upstream {
 		switch r.IntN(5) {
 		case 0:
@@ -73,7 +74,7 @@ func randomBoundary(r *rand.Rand, upstream bool) Boundary {
 
 // randomRun returns a chain of one to five reaches, or of stations.
 func randomRun(r *rand.Rand) (*Run, error) {
-	run := &Run{Discharge: math.Exp(math.Log(0.01) + r.Float64()*math.Log(1e4)), Upstream: randomBoundary(r, true), Downstream: randomBoundary(r, false)}
+	run := &Run{Discharge: solve.Exp(math.Log(0.01) + r.Float64()*math.Log(1e4)), Upstream: randomBoundary(r, true), Downstream: randomBoundary(r, false)}
 	n := 1 + r.IntN(5)
 	first, err := dice(r)
 	if err != nil {
@@ -90,7 +91,7 @@ func randomRun(r *rand.Rand) (*Run, error) {
 			}
 			c.Barrels = first.Barrels
 			run.Stations = append(run.Stations, Station{Channel: c, Chainage: at, BedLevel: bed})
-			length := math.Exp(math.Log(5) + r.Float64()*math.Log(100))
+			length := solve.Exp(math.Log(5) + r.Float64()*math.Log(100))
 			at += length
 			bed -= length * 0.02 * (r.Float64() - 0.2) * r.Float64()
 		}
@@ -104,9 +105,9 @@ func randomRun(r *rand.Rand) (*Run, error) {
 				return nil, err
 			}
 		case 1:
-			c.Slope = math.Exp(math.Log(1e-5) + r.Float64()*math.Log(1e4))
+			c.Slope = solve.Exp(math.Log(1e-5) + r.Float64()*math.Log(1e4))
 		}
-		reach := Reach{Channel: c, Length: math.Exp(math.Log(1) + r.Float64()*math.Log(5000))}
+		reach := Reach{Channel: c, Length: solve.Exp(math.Log(1) + r.Float64()*math.Log(5000))}
 		if i > 0 {
 			if r.IntN(4) == 0 {
 				reach.Inflow = run.Discharge * r.Float64()

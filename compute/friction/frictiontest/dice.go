@@ -7,6 +7,7 @@ import (
 
 	"leat/compute/friction"
 	"leat/compute/section"
+	"leat/compute/solve"
 )
 
 // Kinds are all kinds of section, each with dice of its own sizes.
@@ -34,7 +35,7 @@ var Kinds = []struct {
 	{"egg", func(r *rand.Rand) (section.Section, error) { return section.NewEgg(size(r), r.IntN(2) == 0) }},
 	{"horseshoe", func(r *rand.Rand) (section.Section, error) { return section.NewHorseshoe(size(r)) }},
 	{"gutter", func(r *rand.Rand) (section.Section, error) {
-		cross := math.Exp(-1 - 4*r.Float64())
+		cross := solve.Exp(-1 - 4*r.Float64())
 		if r.IntN(2) == 0 {
 			return section.NewGutter(cross, 0.1+0.2*r.Float64(), 0, 0)
 		}
@@ -50,7 +51,7 @@ var Kinds = []struct {
 }
 
 // size returns a length from 0.1 to 50 m.
-func size(r *rand.Rand) float64 { return math.Exp(math.Log(0.1) + r.Float64()*math.Log(500)) }
+func size(r *rand.Rand) float64 { return solve.Exp(math.Log(0.1) + r.Float64()*math.Log(500)) }
 
 // side returns a side slope.
 func side(r *rand.Rand) float64 {
@@ -106,7 +107,7 @@ func table(r *rand.Rand) [][4]float64 {
 
 // Law binds a random law to a section.
 func Law(r *rand.Rand, s section.Section) (friction.Law, error) {
-	n := func() float64 { return math.Exp(math.Log(0.008) + r.Float64()*math.Log(20)) }
+	n := func() float64 { return solve.Exp(math.Log(0.008) + r.Float64()*math.Log(20)) }
 	rules := []friction.Combination{friction.Divided, friction.HortonEinstein, friction.Lotter, friction.Pavlovskii}
 	switch r.IntN(8) {
 	case 0:
@@ -114,7 +115,7 @@ func Law(r *rand.Rand, s section.Section) (friction.Law, error) {
 	case 1:
 		return friction.NewChezy(20 + 60*r.Float64())
 	case 2:
-		return friction.NewSandRoughness(math.Exp(math.Log(1e-5)+r.Float64()*math.Log(1e4)), 1.14e-6, 9.80665)
+		return friction.NewSandRoughness(solve.Exp(math.Log(1e-5)+r.Float64()*math.Log(1e4)), 1.14e-6, 9.80665)
 	case 3:
 		d := 0.1 + r.Float64()
 		return friction.NewManningByDepth([][2]float64{{d, n()}, {d + 0.1 + r.Float64(), n()}, {d + 2 + r.Float64(), n()}})
