@@ -11,13 +11,7 @@ import (
 
 func depths(t *testing.T) *operation.Operation {
 	t.Helper()
-	for _, o := range operation.All() {
-		if o.Name == "depths" {
-			return o
-		}
-	}
-	t.Fatal("there is no operation `depths`")
-	return nil
+	return operationNamed(t, "depths")
 }
 
 // The rows that are wrong on purpose get the problem that the table promises, at the place that it promises; every other row
