@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"leat/compute"
+	"leat/compute/friction"
 	"leat/compute/section"
 )
 
@@ -58,8 +59,8 @@ func (c *Channel) State(depth, discharge float64) State {
 		s.HydraulicDepth = g.Area / g.TopWidth
 	}
 	if c.Law != nil && c.Slope > 0 {
-		s.UniformDischarge = c.UniformDischarge(g)
 		s.Conveyance = c.Law.AtSlope(c.Wetted(g), c.Slope).K
+		s.UniformDischarge = c.barrels() * s.Conveyance * math.Sqrt(c.Slope)
 	}
 	if discharge > 0 {
 		c.move(&s, discharge, full)
@@ -106,7 +107,9 @@ func (c *Channel) move(s *State, discharge float64, full bool) {
 	if c.Law == nil {
 		return
 	}
-	s.Conveyance = c.Law.AtDischarge(c.Wetted(g), m.discharge).K
+	if _, power := c.Law.(friction.Power); !power || math.IsNaN(s.Conveyance) { // a power law's conveyance is one at every slope and discharge
+		s.Conveyance = c.Law.AtDischarge(c.Wetted(g), m.discharge).K
+	}
 	if !(s.Conveyance > 0) {
 		s.Conveyance = math.NaN()
 		return
