@@ -484,3 +484,64 @@ func TestDocumentShowsTheExampleFiles(t *testing.T) {
 		t.Errorf("the document shows %s, which is no file", name)
 	}
 }
+
+// TestTextsAreThoseOfTheService: what the schemas show of problems, faults, warnings and reasons stands in an answer that an example
+// file holds, and those are the service's own.
+func TestTextsAreThoseOfTheService(t *testing.T) {
+	doc := document(t)
+	written := map[string]bool{} // each value of the answers as JSON, by its member
+	var note func(member string, v any)
+	note = func(member string, v any) {
+		text, err := json.Marshal(v)
+		if err != nil {
+			t.Fatal(err)
+		}
+		written[member+" "+string(text)] = true
+		switch v := v.(type) {
+		case map[string]any:
+			for k, e := range v {
+				note(k, e)
+			}
+		case []any:
+			for _, e := range v {
+				note(member, e)
+			}
+		}
+	}
+	files, err := fs.Glob(openapi.Examples, "examples/*.answer.json")
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, file := range files {
+		data, err := openapi.Examples.ReadFile(file)
+		if err != nil {
+			t.Fatal(err)
+		}
+		var v any
+		if err := json.Unmarshal(data, &v); err != nil {
+			t.Fatal(err)
+		}
+		note("", v)
+	}
+	judged := 0
+	for name, members := range map[string][]string{
+		"Fault": {"pointer", "parameter", "code", "detail"}, "Warning": {"code", "detail", "pointer"},
+		"Problem": {"type", "title", "status", "detail", "instance", "errors"}, "DepthsAnswer": {"normal_absent", "critical_absent"},
+	} {
+		for _, member := range members {
+			for _, example := range at(t, doc, "components", "schemas", name, "properties", member).(map[string]any)["examples"].([]any) {
+				text, err := json.Marshal(example)
+				if err != nil {
+					t.Fatal(err)
+				}
+				judged++
+				if !written[member+" "+string(text)] {
+					t.Errorf("%s: no answer has the %s %s", name, member, text)
+				}
+			}
+		}
+	}
+	if judged < 15 {
+		t.Errorf("only %d texts judged", judged)
+	}
+}
