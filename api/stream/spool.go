@@ -1,14 +1,10 @@
 package stream
 
 import (
-	"errors"
 	"io"
 	"os"
 	"sync"
 )
-
-// errFull says that a spool has no room for what was to be put.
-var errFull = errors.New("spool: full")
 
 // A spool is a queue of bytes between one goroutine that puts and one that takes: pages in memory up to a bound, then in
 // a file up to a bound. The youngest page, still being filled, is always in memory.
@@ -41,15 +37,6 @@ type waiting struct {
 
 func newSpool(store *Store) *spool {
 	return &spool{store: store, filled: make(chan struct{}, 1), emptied: make(chan struct{}, 1)}
-}
-
-// put appends all of data or, with errFull, nothing.
-func (s *spool) put(data []byte) error {
-	if !s.fits(int64(len(data))) {
-		return errFull
-	}
-	s.append(data)
-	return nil
 }
 
 // end appends the last bytes, within the bounds or not, and ends the queue.

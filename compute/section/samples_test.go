@@ -117,9 +117,8 @@ func TestMethodsDoNotAllocate(t *testing.T) {
 		depth := 0.0
 		if n := testing.AllocsPerRun(50, func() {
 			depth += reach(s.section) / 60
-			g := s.section.At(depth)
-			g = s.section.Full()
-			_ = g.Radius()
+			g, full := s.section.At(depth), s.section.Full()
+			_, _ = g.Radius(), full.Radius()
 			_, _ = s.section.Bank()
 			_ = s.section.Breaks()
 			_ = s.section.Form()
