@@ -3,6 +3,8 @@ package section
 import (
 	"math"
 	"strconv"
+
+	"leat/compute"
 )
 
 // SurveyedLine is a section from surveyed points. It implements Surveyed and Zoned.
@@ -69,6 +71,10 @@ func NewSurveyed(points [][2]float64) (Section, error) {
 		}
 	}
 	s.bands = compile(s.line)
+	if first := s.all[0]; first.width == 0 && first.widthRate == 0 {
+		return nil, compute.Faults{{Member: pointMember(lowestPoint(points)), Code: "no_width",
+			Detail: "The lowest point is an end of the line from which a wall goes straight up, so that nothing is enclosed beside it; leave that point out or give the ground beyond it."}}
+	}
 	s.left, s.right = points[0][1]-s.invert, points[len(points)-1][1]-s.invert
 	if s.bank = math.Min(s.left, s.right); s.bank > 0 {
 		s.bankKnown = true
@@ -100,4 +106,15 @@ func (s *SurveyedLine) Part(offsets []float64) ([]Section, error) {
 		return nil, err
 	}
 	return zones(s.line, offsets), nil
+}
+
+// lowestPoint returns the index of the first lowest point.
+func lowestPoint(points [][2]float64) int {
+	lowest := 0
+	for i, p := range points {
+		if p[1] < points[lowest][1] {
+			lowest = i
+		}
+	}
+	return lowest
 }
