@@ -12,12 +12,14 @@ import (
 
 	"leat/api/operation"
 	"leat/api/site"
+	"leat/api/wire"
 )
 
 func TestDocuments(t *testing.T) {
 	r := start(t, nil)
 	for path, media := range map[string]string{
 		"/": "text/html; charset=utf-8", "/v1/limits": "application/json", "/v1/units": "application/json",
+		"/docs/problems": "text/html; charset=utf-8", "/docs/problems/saturated": "text/html; charset=utf-8",
 		"/version": "application/json", "/openapi.yaml": "application/yaml", "/openapi.json": "application/json",
 	} {
 		got := r.send("GET", path, "")
@@ -59,6 +61,35 @@ func TestPageByAccept(t *testing.T) {
 		if got.header.Get("Content-Type") != media || got.header.Get("Vary") != "Accept" {
 			t.Errorf("Accept %q: %v", accept, got.header)
 		}
+	}
+}
+
+// The type of every problem is the address of its page; other names there are problems themselves.
+func TestProblemTypesLeadToTheirPages(t *testing.T) {
+	r := start(t, nil)
+	for _, kind := range wire.ProblemTypes() {
+		got := r.send("GET", kind.Reference(), "")
+		if got.status != 200 || got.header.Get("Content-Type") != "text/html; charset=utf-8" || !strings.Contains(string(got.body), kind.Title) ||
+			got.header.Get("Content-Security-Policy") != site.ContentSecurityPolicy() {
+			t.Errorf("%s: %d %v", kind.Reference(), got.status, got.header)
+		}
+	}
+	for _, path := range []string{"/docs/problems/dry_ditch", "/docs/problems/", "/docs/problems/saturated/", "/docs/problems/saturated/x", "/docs/problems/%2e%2e", "/docs/problems/Saturated"} {
+		got := r.send("GET", path, "")
+		if got.status != 404 || got.header.Get("Content-Type") != "application/problem+json" {
+			t.Errorf("%s: %d %v", path, got.status, got.header)
+		}
+	}
+	for _, path := range []string{"/docs/problems", "/docs/problems/saturated"} {
+		if got := r.send("POST", path, ""); got.status != 405 || got.header.Get("Allow") != "GET, HEAD" {
+			t.Errorf("POST %s: %d %v", path, got.status, got.header)
+		}
+		if got := r.send("GET", path, "", "Accept", "application/json"); got.status != 406 {
+			t.Errorf("%s as JSON: %d", path, got.status)
+		}
+	}
+	if got := r.send("GET", "/metrics", ""); !strings.Contains(string(got.body), `route="/docs/problems/:name"`) || strings.Contains(string(got.body), "dry_ditch") {
+		t.Error("the metrics do not have the page's route, or have a caller's value")
 	}
 }
 
