@@ -8,7 +8,7 @@ prismatic curve is integrated a second time by DOP853, and every other one a sec
 A line holds `discharge`, `reaches` or `stations`, `upstream`, `downstream`; `expect` with [chainage, depth, curve or null]; `jumps` with
 [chainage, upstream depth, downstream depth]; `controls` with [chainage, depth, kind]. Numbers are float64 in SI units.
 
-    /usr/bin/python3 profiles.py > profiles.jsonl        (needs numpy and scipy; about a minute)
+    /usr/bin/python3 profiles.py > profiles.jsonl        (needs numpy and scipy; a few minutes)
     /usr/bin/python3 profiles.py jump 7                  (only the runs with "jump" in their names, of another series)
 """
 import json

@@ -436,10 +436,16 @@ class Sweep:
         behind = [st for st in stops if st[1] == "normal" and (y - st[0]) * direction > 0]
         near_crown = ch.sec.closed and not isinstance(ch.sec, Box)
 
+        log_up = lambda pole, side: (lambda v: math.log(side * (v - pole)), lambda u: pole + side * math.exp(u), lambda u, v: v - pole)
+        crown = (lambda v: math.sqrt(max(0.0, h - v)), lambda u: h - u * u, lambda u, v: -2 * u)
+        plain = (lambda v: v, lambda u: u, lambda u, v: 1.0)
+
         def integrate(y0, y1, chart):
             nonlocal x
             u0, u1 = chart[0](y0), chart[0](y1)
-            stack = [(u0, u1)]
+            # no panel is wider than half a unit of a logarithm, so that each has the noise of its own distance from the pole only
+            n = max(1, math.ceil(abs(u1 - u0) / 0.5)) if chart is not plain and chart is not crown else 1
+            stack = [(u0 + (u1 - u0) * k / n, u0 + (u1 - u0) * (k + 1) / n if k + 1 < n else u1) for k in reversed(range(n))]
             while stack:
                 a, b = stack.pop()
                 m = a + (b - a) / 2
@@ -461,9 +467,6 @@ class Sweep:
                     return True
             return False
 
-        log_up = lambda pole, side: (lambda v: math.log(side * (v - pole)), lambda u: pole + side * math.exp(u), lambda u, v: v - pole)
-        crown = (lambda v: math.sqrt(max(0.0, h - v)), lambda u: h - u * u, lambda u, v: -2 * u)
-        plain = (lambda v: v, lambda u: u, lambda u, v: 1.0)
         cuts = sorted([b for b in ch.sec.breaks if min(y, target) < b < max(y, target)], reverse=direction < 0)
         start = y
         if near_crown and y == h:  # off the crown first
