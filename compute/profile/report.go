@@ -284,7 +284,7 @@ func (c *chain) extent(a *Answer) {
 	whole := end.start + end.length
 	for i := len(c.segments) - 1; i >= 0; i-- {
 		g := &c.segments[i]
-		normal := a.Reaches[slices.Index(c.legs, g.leg)].NormalDepth
+		normal := a.Reaches[g.leg.reach].NormalDepth
 		if math.IsNaN(normal) {
 			continue
 		}
