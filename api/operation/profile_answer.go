@@ -103,7 +103,7 @@ func (p *profileRun) stateWarnings(w *warnings, here *place, s *profile.Point) {
 	}
 	w.state(c, &s.State, pointer)
 	if bank, known := c.BankHeight(); known && !c.Section.Closed() && s.State.Geometry.Depth > bank {
-		w.add("overtopped", pointer, "the water stands above the bank: the section overtops at this discharge")
+		w.add("overtopped", pointer, "The water stands above the bank: the section overtops at this discharge.")
 	}
 }
 
