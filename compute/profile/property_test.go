@@ -604,3 +604,65 @@ func TestSurveyedCopyConverges(t *testing.T) {
 		t.Errorf("still off by %g", last)
 	}
 }
+
+// TestBoundariesThatDoNotGovern: what asks for less than critical depth downstream acts as a free overfall, what is not shallower than critical upstream as
+// left out, and each is said.
+func TestBoundariesThatDoNotGovern(t *testing.T) {
+	s, err := section.NewTrapezoidal(3, 1, 1)
+	if err != nil {
+		t.Fatal(err)
+	}
+	law, err := friction.NewManning(0.025)
+	if err != nil {
+		t.Fatal(err)
+	}
+	const discharge = 6.0
+	for _, slope := range []float64{0.001, 0, -0.0005, 0.04} {
+		channel := flow.Channel{Section: s, Law: law, Slope: slope, Gravity: gravity}
+		depths, _ := channel.Critical(discharge, nil)
+		critical := depths[0]
+		with := func(up, down profile.Boundary) *profile.Run {
+			return &profile.Run{Discharge: discharge, Reaches: []profile.Reach{{Channel: channel, Length: 150}}, Upstream: up, Downstream: down, Datum: 10,
+				Report: profile.Report{At: []float64{0, 20, 75, 140}}}
+		}
+		overfall := profile.Boundary{Kind: profile.FreeOverfall}
+		plain := solved(t, "overfall", with(profile.Boundary{}, overfall))
+		for name, down := range map[string]profile.Boundary{
+			"a depth below critical":         {Kind: profile.Depth, Value: 0.7 * critical},
+			"a level below critical":         {Kind: profile.Level, Value: 10 + 0.5*critical},
+			"a level below the bed":          {Kind: profile.Level, Value: 9},
+			"a low, wide broad crest":        {Kind: profile.BroadCrested, CrestHeight: 0.01, CrestWidth: 60},
+			"a low, wide sharp crest":        {Kind: profile.SharpCrested, CrestHeight: 0.01, CrestWidth: 60},
+			"a rating of less than critical": {Kind: profile.Rating, Curve: [][2]float64{{0.1 * critical, 1}, {0.8 * critical, 12}}},
+		} {
+			answer := solved(t, name, with(profile.Boundary{}, down))
+			same(t, name, "overfall", with(profile.Boundary{}, overfall), plain, answer)
+			if len(answer.Notes) == 0 {
+				t.Errorf("%s at slope %g is not said", name, slope)
+			}
+		}
+		for name, up := range map[string]profile.Boundary{
+			"a subcritical depth":  {Kind: profile.Depth, Value: 1.3 * critical},
+			"a subcritical level":  {Kind: profile.Level, Value: 10 + slope*150 + 1.5*critical},
+			"a gate drawn up high": {Kind: profile.Gate, Opening: 2 * critical, Contraction: 0.61},
+		} {
+			answer := solved(t, name, with(up, overfall))
+			same(t, name, "left out", with(profile.Boundary{}, overfall), plain, answer)
+			if len(answer.Notes) == 0 {
+				t.Errorf("%s at slope %g is not said", name, slope)
+			}
+		}
+		if slope <= 0 {
+			_, err := profile.Solve(with(profile.Boundary{}, profile.Boundary{Kind: profile.Normal}))
+			if _, physical := err.(*profile.NoSolution); !physical {
+				t.Errorf("normal depth at slope %g: %v", slope, err)
+			}
+		}
+		for _, beyond := range [][][2]float64{{{0.5, 1}, {1, 5}}, {{0.5, 7}, {1, 20}}} {
+			_, err := profile.Solve(with(profile.Boundary{}, profile.Boundary{Kind: profile.Rating, Curve: beyond}))
+			if _, physical := err.(*profile.NoSolution); !physical {
+				t.Errorf("a rating that does not hold the discharge: %v", err)
+			}
+		}
+	}
+}
