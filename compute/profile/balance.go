@@ -7,12 +7,15 @@ import (
 )
 
 // balance recomputes the energy along a segment from depths alone, piece by piece: the fall of the energy level must be what friction takes, by a quadrature
-// of its own along the chainage, or, where the depth changes fast, over the depth.
-func (c *chain) balance(a *Answer, g *segment) {
+// of its own along the chainage, or, where the depth changes fast, over the depth. Its error is the checkpoint's.
+func (c *chain) balance(a *Answer, g *segment) error {
 	l, t := g.leg, g.trace
 	knots := g.knots()
 	last := math.NaN() // the energy at the end of the piece before
 	for i := 1; i < len(knots); i++ {
+		if err := c.check(); err != nil {
+			return err
+		}
 		from, to := knots[i-1], knots[i]
 		p := t.at(from + (to-from)/2)
 		s0, s1 := l.side(from), l.side(to)
@@ -28,6 +31,7 @@ func (c *chain) balance(a *Answer, g *segment) {
 		}
 		last = e1
 	}
+	return nil
 }
 
 // workIn returns the change of the specific energy between two chainages of one panel, by ever more parts until it stands.

@@ -232,13 +232,20 @@ func TestCheckpointEndsASolve(t *testing.T) {
 	} {
 		whole := 0
 		run := e.run
-		run.Checkpoint = func() error { whole++; return nil }
+		last, longest := time.Now(), time.Duration(0)
+		run.Checkpoint = func() error {
+			whole++
+			now := time.Now()
+			last, longest = now, max(longest, now.Sub(last))
+			return nil
+		}
 		if _, err := profile.Solve(&run); err != nil {
 			t.Fatal(e.name, err)
 		}
 		if whole < 3 {
 			t.Errorf("%s: %d calls in a whole solve", e.name, whole)
 		}
+		t.Logf("%s: %d calls, %v at most between two, %v after the last", e.name, whole, longest, time.Since(last))
 		for _, at := range []int{1, 2, 3, whole / 10, whole / 4, whole / 2, 3 * whole / 4, whole - 1, whole} {
 			calls := 0
 			run.Checkpoint = func() error {

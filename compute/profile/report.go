@@ -35,7 +35,9 @@ func (c *chain) answer() (*Answer, error) {
 	if err := c.curves(a); err != nil {
 		return nil, err
 	}
-	c.extent(a)
+	if err := c.extent(a); err != nil {
+		return nil, err
+	}
 	a.Notes = c.notes.list
 	return a, nil
 }
@@ -121,11 +123,14 @@ func (c *chain) point(g *segment, x float64) (Point, error) {
 func (c *chain) points(a *Answer) error {
 	for i := range c.segments {
 		g := &c.segments[i]
-		if err := c.check(); err != nil {
+		places, err := c.places(g)
+		if err != nil {
 			return err
 		}
-		places := c.places(g)
 		for _, x := range places {
+			if err := c.check(); err != nil {
+				return err
+			}
 			p, err := c.point(g, x)
 			if err != nil {
 				return err
@@ -142,7 +147,9 @@ func (c *chain) points(a *Answer) error {
 					Detail: "The water surface needs more stations than the limit report_points; ask for fewer by report."}}
 			}
 		}
-		c.balance(a, g)
+		if err := c.balance(a, g); err != nil {
+			return err
+		}
 	}
 	for _, t := range c.turns {
 		a.Balance.Momentum = max(a.Balance.Momentum, t.residual)
@@ -150,8 +157,8 @@ func (c *chain) points(a *Answer) error {
 	return nil
 }
 
-// places returns the chainages of a segment's leg that are reported.
-func (c *chain) places(g *segment) []float64 {
+// places returns the chainages of a segment's leg that are reported. Its error is the checkpoint's.
+func (c *chain) places(g *segment) ([]float64, error) {
 	r := &c.run.Report
 	start := g.leg.start
 	var out []float64
@@ -161,32 +168,38 @@ func (c *chain) places(g *segment) []float64 {
 		for ; i < len(r.At) && r.At[i] <= start+g.to; i++ {
 			out = append(out, min(max(r.At[i]-start, g.from), g.to))
 		}
-		return out
+		return out, nil
 	case r.Spacing > 0:
 		end := c.legs[len(c.legs)-1]
 		whole := end.start + end.length
 		for k := math.Ceil((start + g.from) / r.Spacing); ; k++ {
 			x := min(k*r.Spacing, whole)
 			if x > start+g.to {
-				return out
+				return out, nil
 			}
 			out = append(out, min(max(x-start, g.from), g.to))
 			if x == whole {
-				return out
+				return out, nil
 			}
 		}
 	}
 	out = append(out, g.from)
 	knots := g.knots()
 	for i := 1; i < len(knots); i++ {
-		out = c.straighten(g, out, knots[i-1], knots[i], 0)
+		var err error
+		if out, err = c.straighten(g, out, knots[i-1], knots[i], 0); err != nil {
+			return nil, err
+		}
 		out = append(out, knots[i])
 	}
-	return out
+	return out, nil
 }
 
-// straighten appends the chainages between two others, rising, that straight lines need.
-func (c *chain) straighten(g *segment, out []float64, from, to float64, level int) []float64 {
+// straighten appends the chainages between two others, rising, that straight lines need. Its error is the checkpoint's.
+func (c *chain) straighten(g *segment, out []float64, from, to float64, level int) ([]float64, error) {
+	if err := c.check(); err != nil {
+		return nil, err
+	}
 	a, b := g.trace.depth(from), g.trace.depth(to)
 	off := false
 	for _, w := range [3]float64{0.25, 0.5, 0.75} {
@@ -194,10 +207,13 @@ func (c *chain) straighten(g *segment, out []float64, from, to float64, level in
 		off = off || math.Abs(a+(b-a)*w-y) > straightness*y
 	}
 	if !off || level > 30 {
-		return out
+		return out, nil
 	}
 	middle := from + (to-from)/2
-	out = c.straighten(g, out, from, middle, level+1)
+	out, err := c.straighten(g, out, from, middle, level+1)
+	if err != nil {
+		return nil, err
+	}
 	out = append(out, middle)
 	return c.straighten(g, out, middle, to, level+1)
 }
@@ -218,10 +234,10 @@ func (g *segment) knots() []float64 {
 func (c *chain) curves(a *Answer) error {
 	for i := range c.segments {
 		g := &c.segments[i]
-		if err := c.check(); err != nil {
-			return err
-		}
 		name := func(x float64) (string, error) {
+			if err := c.check(); err != nil {
+				return "", err
+			}
 			p, err := c.point(g, x)
 			return p.Curve, err
 		}
@@ -278,7 +294,8 @@ func (a *Answer) span(l *leg, from, to float64, curve string) {
 }
 
 // extent looks from the downstream end for the first place within 1 % of its own reach's normal depth.
-func (c *chain) extent(a *Answer) {
+// Its error is the checkpoint's.
+func (c *chain) extent(a *Answer) error {
 	const band = 0.01
 	end := c.legs[len(c.legs)-1]
 	whole := end.start + end.length
@@ -291,6 +308,9 @@ func (c *chain) extent(a *Answer) {
 		off := func(x float64) float64 { return math.Abs(g.trace.depth(x)-normal) - band*normal }
 		knots := g.knots()
 		for k := len(knots) - 1; k >= 0; k-- {
+			if err := c.check(); err != nil {
+				return err
+			}
 			if off(knots[k]) > 0 {
 				continue
 			}
@@ -308,7 +328,8 @@ func (c *chain) extent(a *Answer) {
 				x = lo
 			}
 			a.Extent = whole - (g.leg.start + x)
-			return
+			return nil
 		}
 	}
+	return nil
 }
