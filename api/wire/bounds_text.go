@@ -16,11 +16,11 @@ func (f *field) outOfRange(at pointer, column int, value float64, system System)
 	} else if f.shape == shapeNumbers || f.shape == shapeNamed {
 		what = "Every number of " + f.name
 	}
-	return Fault{
-		Pointer: string(at),
-		Code:    code,
-		Detail:  what + " must be " + b.text(q, system) + withUnit(q, system) + ", not " + inUnits(value, q, system) + ".",
+	detail := what + " must be " + b.text(q, system) + withUnit(q, system) + ", not " + inUnits(value, q, system) + "."
+	if f.name == "bed_slope" {
+		detail += " A fall of 2 % or 20 in 1000 is 0.02."
 	}
+	return Fault{Pointer: string(at), Code: code, Detail: detail}
 }
 
 // text tells what the bounds accept.

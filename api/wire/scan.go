@@ -56,7 +56,7 @@ func (s *scanner) scan(data []byte, limits *Limits) bool {
 	}
 	s.space()
 	if s.at < len(data) {
-		return s.fail(s.at, codeTrailingData, "there is something after the end of the JSON value; exactly one is accepted")
+		return s.trailing()
 	}
 	return true
 }

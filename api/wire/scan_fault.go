@@ -51,9 +51,13 @@ func (f *scanFault) problem(data []byte) *Problem {
 	line := 1 + bytes.Count(before, []byte("\n"))
 	column := 1 + utf8.RuneCount(before[bytes.LastIndexByte(before, '\n')+1:])
 	var b strings.Builder
-	b.WriteString("Line ")
-	b.WriteString(strconv.Itoa(line))
-	b.WriteString(", column ")
+	if line > 1 || bytes.IndexByte(bytes.TrimRight(data, " \t\r\n"), '\n') >= 0 {
+		b.WriteString("Line ")
+		b.WriteString(strconv.Itoa(line))
+		b.WriteString(", column ")
+	} else { // A body of one line is often itself a line of a bulk request, which has another number there.
+		b.WriteString("Column ")
+	}
 	b.WriteString(strconv.Itoa(column))
 	b.WriteString(" (byte ")
 	b.WriteString(strconv.Itoa(f.offset))
@@ -66,6 +70,17 @@ func (f *scanFault) problem(data []byte) *Problem {
 		return TooLarge(fault)
 	}
 	return MalformedJSON(fault)
+}
+
+// trailing notes that something stands after the value.
+func (s *scanner) trailing() bool {
+	switch s.data[s.at] {
+	case '{', '[':
+		return s.fail(s.at, codeTrailingData, "another JSON value follows the first; exactly one is accepted, and in bulk one a line (curl drops the ends of lines unless told --data-binary)")
+	case ':':
+		return s.fail(s.at, codeTrailingData, "there is something after the end of the JSON value; exactly one is accepted, and in bulk each whole on one line")
+	}
+	return s.fail(s.at, codeTrailingData, "there is something after the end of the JSON value; exactly one is accepted")
 }
 
 // unexpected notes that what stands at the present place is not what was expected there.

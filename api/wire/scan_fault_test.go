@@ -12,10 +12,15 @@ func TestSyntaxFaults(t *testing.T) {
 	for _, c := range []struct {
 		body, code, pointer, detail string
 	}{
-		{``, codeEmptyBody, ``, `Line 1, column 1 (byte 0): There is no JSON value`},
+		{``, codeEmptyBody, ``, `Column 1 (byte 0): There is no JSON value`},
 		{" \n ", codeEmptyBody, ``, `Line 2, column 2 (byte 3)`},
 		{"\xef\xbb\xbf{}", codeByteOrderMark, ``, `byte order mark`},
-		{`{"a":1}{"b":2}`, codeTrailingData, ``, `column 8 (byte 7): There is something after the end`},
+		{`{"a":1}{"b":2}`, codeTrailingData, ``, `Column 8 (byte 7): Another JSON value follows the first; exactly one is accepted, and in bulk one a line (curl`},
+		{"{\"a\":1}\n{\"b\":2}", codeTrailingData, ``, `Line 2, column 1 (byte 8): Another JSON value`},
+		{`"a": 1,`, codeTrailingData, ``, `Column 4 (byte 3): There is something after the end of the JSON value; exactly one is accepted, and in bulk each whole on one line`},
+		{`{"a":1};`, codeTrailingData, ``, `exactly one is accepted.`},
+		{"{\"a\":NaN}\r\n", codeNotFinite, `/a`, `Column 6 (byte 5): JSON has no NaN`},
+		{"{\"a\":NaN,\n\"b\":1}", codeNotFinite, `/a`, `Line 1, column 6 (byte 5): JSON has no NaN`},
 		{"{\"a\":1,\n \"é\":x}", codeSyntaxError, `/é`, `Line 2, column 6 (byte 14): A JSON value is expected, not the character 'x'`},
 		{`{"a":NaN}`, codeNotFinite, `/a`, `leave the member out or give null`},
 		{`{"a":[1,-Infinity]}`, codeNotFinite, `/a/1`, `leave the member out or give null`},

@@ -31,18 +31,6 @@ func (w *walk) wrongType(wanted string) {
 	})
 }
 
-// stringForNumberAdvice says what to do about a string that stands where a number is wanted.
-func stringForNumberAdvice(raw jsontext.Value) string {
-	text := strings.ToLower(strings.TrimSpace(string(raw[1 : len(raw)-1])))
-	switch {
-	case text == "" || strings.HasPrefix(strings.TrimLeft(text, "+-"), "nan") || strings.HasPrefix(strings.TrimLeft(text, "+-"), "inf"):
-		return " Leave an unknown number out or give null."
-	case jsontext.Value(text).IsValid():
-		return " Write the number without quotes."
-	}
-	return ""
-}
-
 func kindText(kind jsontext.Kind) string {
 	switch kind {
 	case '"':
@@ -65,7 +53,9 @@ func kindText(kind jsontext.Kind) string {
 func (w *walk) notAnObject() {
 	kind := w.decoder.PeekKind()
 	w.skip()
-	w.fault(codeNotAnObject, func() string { return "This must be an object, not " + kindText(kind) + "." })
+	w.fault(codeNotAnObject, func() string {
+		return "This must be an object, not " + kindText(kind) + "." + notAnObjectAdvice(w.at, kind)
+	})
 }
 
 // unknownMember notes a member that the object does not have.
@@ -74,12 +64,7 @@ func (w *walk) unknownMember(p *plan, name string) {
 	if !w.collect {
 		return
 	}
-	detail := "There is no member " + clip(name) + " here."
-	if near, ok := nearest(name, p.names); ok {
-		detail += " Did you mean " + near + "?"
-	} else {
-		detail += " Accepted are " + list(p.names, "and") + "."
-	}
+	detail := "There is no member " + clip(name) + " here." + unknownMemberAdvice(name, p.names)
 	if len(name) > longestShownName {
 		w.fault(codeUnknownMember, func() string { return detail })
 		return
@@ -180,11 +165,11 @@ func foreignText(p *plan, f *field, chosen string) string {
 }
 
 func unknownValueText(f *field, given string) string {
-	detail := f.name + " must be one of " + quotedList(f.enum) + ", not " + strconv.Quote(clip(given)) + "."
-	if near, ok := nearest(given, f.enum); ok {
-		detail += " Did you mean " + strconv.Quote(near) + "?"
+	choice := "one of "
+	if len(f.enum) == 1 {
+		choice = ""
 	}
-	return detail
+	return f.name + " must be " + choice + quotedList(f.enum) + ", not " + strconv.Quote(clip(given)) + "." + unknownValueAdvice(given, f.enum)
 }
 
 func quotedList(names []string) string {

@@ -1,0 +1,124 @@
+package wire
+
+import (
+	"slices"
+	"strings"
+
+	"github.com/go-json-experiment/json/jsontext"
+)
+
+// This file holds what to do instead, for what callers often send: a textbook's symbol for a member, a ratio or a unit
+// in a string, the members that spatial databases add to a geometry.
+
+// symbols leads from what textbooks and other programs call a thing, in plain letters, to the member that holds it here.
+var symbols = map[string][]string{
+	"q":       {"discharge", "discharges"},
+	"flow":    {"discharge", "discharges"},
+	"n":       {"manning"},
+	"kst":     {"strickler"},
+	"c":       {"chezy"},
+	"ks":      {"sand_roughness"},
+	"nu":      {"kinematic_viscosity"},
+	"b":       {"bottom_width"},
+	"z":       {"side_slope"},
+	"d":       {"diameter"},
+	"s":       {"bed_slope"},
+	"s0":      {"bed_slope"},
+	"so":      {"bed_slope"},
+	"y":       {"depth"},
+	"l":       {"length"},
+	"g":       {"gravity"},
+	"alpha":   {"energy_coefficient"},
+	"beta":    {"momentum_coefficient"},
+	"type":    {"kind"},
+	"shape":   {"kind"},
+	"fid":     {"id"},
+	"assetid": {"id"},
+}
+
+// bySymbol returns the known member that a symbol or a common name stands for.
+func bySymbol(name string, known []string) (string, bool) {
+	for _, member := range symbols[plainName(name)] {
+		if slices.Contains(known, member) {
+			return member, true
+		}
+	}
+	return "", false
+}
+
+// unknownMemberAdvice says which member an unknown one of an object was meant to be, or which there are.
+func unknownMemberAdvice(name string, known []string) string {
+	switch {
+	case name == "crs" && slices.Contains(known, "coordinates"):
+		return " Leave it out: coordinates come back in the system in which they were sent."
+	case name == "bbox" && slices.Contains(known, "coordinates"):
+		return " Leave it out: type and coordinates are enough."
+	}
+	if member, ok := bySymbol(name, known); ok {
+		return " Did you mean " + member + "?"
+	}
+	if near, ok := nearest(name, known); ok {
+		return " Did you mean " + near + "?"
+	}
+	return " Accepted are " + list(known, "and") + "."
+}
+
+// unknownValueAdvice says which name an unknown one was meant to be, if that can be told.
+func unknownValueAdvice(given string, known []string) string {
+	if given == "MultiLineString" && slices.Contains(known, "LineString") {
+		return " Merge its parts to one LineString, from upstream to downstream."
+	}
+	if near, ok := nearest(given, known); ok {
+		return ` Did you mean "` + near + `"?`
+	}
+	return ""
+}
+
+// notAnObjectAdvice says what to send in place of a value that is no object, where that is known.
+func notAnObjectAdvice(at pointer, kind jsontext.Kind) string {
+	switch {
+	case at == "" && kind == '[':
+		return " Send one object a request, or one a line in bulk."
+	case strings.HasSuffix(string(at), "/roughness") && kind == '0':
+		return ` Say which roughness it is: {"manning": 0.03} for a Manning's n of 0.03.`
+	}
+	return ""
+}
+
+// stringForNumberAdvice says what to do about a string that stands where a number is wanted.
+func stringForNumberAdvice(raw jsontext.Value) string {
+	text := strings.ToLower(strings.TrimSpace(string(raw[1 : len(raw)-1])))
+	number, after, _ := strings.Cut(text, " ")
+	number, percent := strings.CutSuffix(number, "%")
+	switch {
+	case text == "" || text == "none" || text == "null" || strings.HasPrefix(strings.TrimLeft(text, "+-"), "nan") || strings.HasPrefix(strings.TrimLeft(text, "+-"), "inf"):
+		return " Leave an unknown number out or give null."
+	case isNumber(text):
+		return " Write the number without quotes."
+	case strings.Count(text, ",") == 1 && isNumber(strings.Replace(text, ",", ".", 1)):
+		return " Write the number without quotes, with a point before its decimals."
+	case isRatio(text):
+		return " Write a ratio as one decimal number, without quotes."
+	case percent || strings.TrimSpace(after) == "%":
+		return " Write a percentage as a fraction, without quotes: 0.02 for 2 %."
+	case after != "" && isNumber(number):
+		return " Write the number alone, without its unit and without quotes."
+	}
+	return ""
+}
+
+// isRatio reports whether a text is one number to, in or over another.
+func isRatio(text string) bool {
+	for _, sign := range []string{":", "/", " in ", " to "} {
+		a, b, found := strings.Cut(text, sign)
+		if found && isNumber(strings.TrimSpace(a)) && isNumber(strings.TrimSpace(b)) {
+			return true
+		}
+	}
+	return false
+}
+
+func isNumber(text string) bool {
+	v := jsontext.Value(text)
+	return v.Kind() == '0' && v.IsValid()
+}

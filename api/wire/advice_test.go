@@ -1,0 +1,67 @@
+package wire
+
+import (
+	"strings"
+	"testing"
+)
+
+// TestAdvice holds what callers are told who send what is often sent.
+func TestAdvice(t *testing.T) {
+	const (
+		section   = `"section":{"kind":"trapezoidal","bottom_width":1,"side_slope":1}`
+		roughness = `"roughness":{"manning":0.03}`
+		good      = section + `,` + roughness + `,"bed_slope":0.002`
+	)
+	for _, c := range []struct{ body, pointer, detail string }{
+		{`{` + good + `,"Q":1}`, "/Q", "There is no member Q here. Did you mean discharge?"},
+		{`{` + good + `,"flow":1}`, "/flow", "There is no member flow here. Did you mean discharge?"},
+		{`{` + section + `,"roughness":{"n":0.03},"bed_slope":0.002,"discharge":1}`, "/roughness/n", "There is no member n here. Did you mean manning?"},
+		{`{"section":{"kind":"trapezoidal","b":1,"z":1},` + roughness + `,"bed_slope":0.002,"discharge":1}`, "/section/z", "There is no member z here. Did you mean side_slope?"},
+		{`{"section":{"shape":"trapezoidal"}}`, "/section/shape", "There is no member shape here. Did you mean kind?"},
+		{`{` + good + `,"discharge":1,"z":1}`, "/z", "There is no member z here. Accepted are id, "},
+		{`{` + section + `,"roughness":0.03,"bed_slope":0.002,"discharge":1}`, "/roughness", `This must be an object, not a number. Say which roughness it is: {"manning": 0.03} for a Manning's n of 0.03.`},
+		{`[{` + good + `,"discharge":1}]`, "", "This must be an object, not a list. Send one object a request, or one a line in bulk."},
+		{`{` + section + `,` + roughness + `,"bed_slope":2,"discharge":1}`, "/bed_slope", "not 2. A fall of 2 % or 20 in 1000 is 0.02."},
+		{`{` + good + `,"discharge":"0.3"}`, "/discharge", "not a string. Write the number without quotes."},
+		{`{` + good + `,"discharge":"0,3"}`, "/discharge", "not a string. Write the number without quotes, with a point before its decimals."},
+		{`{` + good + `,"discharge":"300 l/s"}`, "/discharge", "not a string. Write the number alone, without its unit and without quotes."},
+		{`{` + good + `,"discharge":" "}`, "/discharge", "not a string. Leave an unknown number out or give null."},
+		{`{` + good + `,"discharge":"none"}`, "/discharge", "not a string. Leave an unknown number out or give null."},
+		{`{` + good + `,"discharge":"NULL"}`, "/discharge", "not a string. Leave an unknown number out or give null."},
+		{`{` + good + `,"discharge":"much"}`, "/discharge", "This must be a number, not a string."},
+		{`{` + section + `,` + roughness + `,"bed_slope":"1:300","discharge":1}`, "/bed_slope", "not a string. Write a ratio as one decimal number, without quotes."},
+		{`{` + section + `,` + roughness + `,"bed_slope":"3 in 1000","discharge":1}`, "/bed_slope", "not a string. Write a ratio as one decimal number, without quotes."},
+		{`{` + section + `,` + roughness + `,"bed_slope":"0.2 %","discharge":1}`, "/bed_slope", "not a string. Write a percentage as a fraction, without quotes: 0.02 for 2 %."},
+		{`{` + section + `,` + roughness + `,"bed_slope":"0.2%","discharge":1}`, "/bed_slope", "not a string. Write a percentage as a fraction, without quotes: 0.02 for 2 %."},
+	} {
+		var r DepthsRequest
+		if told := detailAt(Decode([]byte(c.body), SI, &Limits{ArrayItems: 9, Points: 9}, &r), c.pointer); !strings.Contains(told, c.detail) {
+			t.Errorf("%s: at %q\n got %q\nwant %q", c.body, c.pointer, told, c.detail)
+		}
+	}
+	const reaches = `{"discharge":1,"reaches":[{"length":9,` + good + `}],"downstream":{"depth":1},"geometry":`
+	for _, c := range []struct{ body, pointer, detail string }{
+		{`{"type":"LineString","crs":{"type":"name"},"coordinates":[[0,0],[1,1]]}`, "/geometry/crs", "There is no member crs here. Leave it out: coordinates come back in the system in which they were sent."},
+		{`{"type":"LineString","bbox":[0,0,1,1],"coordinates":[[0,0],[1,1]]}`, "/geometry/bbox", "There is no member bbox here. Leave it out: type and coordinates are enough."},
+		{`{"type":"MultiLineString","coordinates":[[[0,0],[1,1]]]}`, "/geometry/type", `type must be "LineString", not "MultiLineString". Merge its parts to one LineString, from upstream to downstream.`},
+		{`{"type":"Point","coordinates":[0,0]}`, "/geometry/type", `type must be "LineString", not "Point".`},
+		{`{"type":"linestring","coordinates":[[0,0],[1,1]]}`, "/geometry/type", `type must be "LineString", not "linestring". Did you mean "LineString"?`},
+	} {
+		var r ProfileRequest
+		if told := detailAt(Decode([]byte(reaches+c.body+`}`), SI, &Limits{ArrayItems: 9, Points: 9, Reaches: 9}, &r), c.pointer); !strings.Contains(told, c.detail) {
+			t.Errorf("%s: at %q\n got %q\nwant %q", c.body, c.pointer, told, c.detail)
+		}
+	}
+}
+
+// detailAt returns the detail of a problem's fault at a pointer.
+func detailAt(p *Problem, pointer string) string {
+	if p != nil {
+		for _, f := range p.Errors {
+			if f.Pointer == pointer {
+				return f.Detail
+			}
+		}
+	}
+	return ""
+}
