@@ -43,6 +43,12 @@ func wrongMedia(given, want string) *wire.Problem {
 	if strings.HasPrefix(strings.ToLower(given), "application/x-www-form-urlencoded") {
 		fix += fmt.Sprintf(" Some programs send this type unless told otherwise: give Python's urllib headers={\"Content-Type\": %q}, curl -H \"Content-Type: %s\".", want, want)
 	}
+	switch {
+	case want == mediaNDJSON && strings.HasPrefix(strings.ToLower(given), mediaJSON):
+		fix += " The body is one request a line, each an object, and no list."
+	case want == mediaJSON && strings.Contains(strings.ToLower(given), "ndjson"):
+		fix += " A request a line goes to the same operation under /v1/bulk."
+	}
 	return wire.UnsupportedMediaType(said + fix)
 }
 

@@ -121,7 +121,7 @@ func countSetting(name, meaning string, least, most int, field func(*Config) *in
 
 func durationSetting(name, meaning string, least, most time.Duration, field func(*Config) *time.Duration) setting {
 	return setting{
-		name, meaning, fmt.Sprintf("a time from %s to %s, written like 500ms, 30s or 2m", least, most),
+		name, meaning, fmt.Sprintf("a time from %s to %s, written like 500ms, 30s or 2m", durationText(least), durationText(most)),
 		func(c *Config, text string) error {
 			d, err := time.ParseDuration(text)
 			if err != nil || d < least || d > most {
@@ -130,8 +130,19 @@ func durationSetting(name, meaning string, least, most time.Duration, field func
 			*field(c) = d
 			return nil
 		},
-		func(c *Config) string { return field(c).String() },
+		func(c *Config) string { return durationText(*field(c)) },
 	}
+}
+
+// durationText writes a time as people do: 10m rather than 10m0s.
+func durationText(d time.Duration) string {
+	text := d.String()
+	for _, rest := range []string{"m0s", "h0m"} {
+		if strings.HasSuffix(text, rest) {
+			text = text[:len(text)-2]
+		}
+	}
+	return text
 }
 
 // Load reads settings: the defaults, over them the environment (as os.Environ gives it), over it the arguments. The error
@@ -146,7 +157,7 @@ func Load(arguments, environment []string) (Config, error) {
 		flags.Func(s.name, s.meaning, func(text string) error {
 			if err := s.set(&config, text); err != nil {
 				// Collected rather than returned: package flag would stop at the first mistake.
-				mistakes = append(mistakes, fmt.Errorf("--%s: %q is not accepted: %s", s.name, clip(text), s.accepted))
+				mistakes = append(mistakes, fmt.Errorf("--%s: %q is not accepted; give %s", s.name, clip(text), s.accepted))
 			}
 			return nil
 		})
@@ -155,9 +166,9 @@ func Load(arguments, environment []string) (Config, error) {
 		if errors.Is(err, flag.ErrHelp) {
 			return config, flag.ErrHelp
 		}
-		mistakes = append(mistakes, fmt.Errorf("%w; `leat serve --help` lists the flags", err))
+		mistakes = append(mistakes, fmt.Errorf("%w; --help lists the flags", err))
 	} else if flags.NArg() > 0 {
-		mistakes = append(mistakes, fmt.Errorf("unexpected argument %q; settings are flags, `leat serve --help` lists them", clip(flags.Arg(0))))
+		mistakes = append(mistakes, fmt.Errorf("unexpected argument %q; settings are flags, --help lists them", clip(flags.Arg(0))))
 	}
 	if len(mistakes) == 0 {
 		mistakes = config.check()
@@ -190,7 +201,7 @@ func loadEnvironment(config *Config, environment []string) []error {
 		case found && text == "": // an empty variable is an absent one
 		case found:
 			if err := s.set(config, text); err != nil {
-				mistakes = append(mistakes, fmt.Errorf("%s: %q is not accepted: %s", name, clip(text), s.accepted))
+				mistakes = append(mistakes, fmt.Errorf("%s: %q is not accepted; give %s", name, clip(text), s.accepted))
 			}
 		case strings.HasPrefix(name, "LEAT_PORT"), strings.HasPrefix(name, "LEAT_SERVICE_"):
 			// An orchestrator that runs a service named leat injects these; they are no settings of ours.

@@ -44,8 +44,8 @@ func TestAllMistakesAtOnce(t *testing.T) {
 		t.Fatal("accepted")
 	}
 	for _, part := range []string{
-		`--listen: "nowhere" is not accepted: host:port`, `--points: "2" is not accepted: a whole number from 3 to`,
-		`--idle-limit: "1" is not accepted: a time from 1s`, `LEAT_BODY_BYTES: "-1" is not accepted: a whole number of bytes from 1KiB to 64MiB`,
+		`--listen: "nowhere" is not accepted; give host:port`, `--points: "2" is not accepted; give a whole number from 3 to`,
+		`--idle-limit: "1" is not accepted; give a time from 1s to 1h, written`, `LEAT_BODY_BYTES: "-1" is not accepted; give a whole number of bytes from 1KiB to 64MiB`,
 		"LEAT_BODYBYTES is no setting", "LEAT_BODY_BYTES, LEAT_PROFILE_BODY_BYTES",
 	} {
 		if !strings.Contains(err.Error(), part) {

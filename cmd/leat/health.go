@@ -18,7 +18,7 @@ const healthTimeout = 2 * time.Second
 func runHealth(arguments, environment []string, stdout, stderr io.Writer) int {
 	listen, err := serve.LoadListen(arguments, environment)
 	if errors.Is(err, flag.ErrHelp) {
-		fmt.Fprint(stdout, "leat health asks GET /readyz of the service at --listen (or LEAT_LISTEN) and exits with 0 if it is ready, else with 1.\n")
+		fmt.Fprint(stdout, "leat health asks GET /readyz of the service at --listen HOST:PORT (or LEAT_LISTEN, or "+serve.Default().Listen+") and exits with 0 if it is ready, else with 1.\n")
 		return exitOK
 	}
 	if err != nil {

@@ -39,9 +39,12 @@ func run(arguments, environment []string, stdout, stderr io.Writer) int {
 		return runServe(rest, environment, stdout, stderr)
 	case "health":
 		return runHealth(rest, environment, stdout, stderr)
-	case "version":
+	case "version", "--version":
 		return runVersion(rest, stdout, stderr)
 	case "help", "--help", "-h":
+		if len(rest) == 1 && (rest[0] == "serve" || rest[0] == "health") {
+			return run([]string{rest[0], "--help"}, environment, stdout, stderr)
+		}
 		fmt.Fprint(stdout, usageMessage)
 		return exitOK
 	}

@@ -45,12 +45,16 @@ func TestExitCodes(t *testing.T) {
 		{"--help", nil, []string{"--help"}, 0, []string{"leat serve"}, nil},
 		{"unknown", nil, []string{"server"}, 2, nil, []string{`unknown command "server"`}},
 		{"version", nil, []string{"version"}, 0, []string{"leat ", "engine ", "go1."}, nil},
+		{"--version", nil, []string{"--version"}, 0, []string{"leat ", "engine "}, nil},
 		{"version with more", nil, []string{"version", "x"}, 2, nil, []string{"no arguments"}},
+		{"help serve", nil, []string{"help", "serve"}, 0, []string{"--listen VALUE"}, nil},
+		{"help health", nil, []string{"help", "health"}, 0, []string{"/readyz"}, nil},
 		{"serve --help", nil, []string{"serve", "--help"}, 0, []string{"--listen VALUE", "LEAT_LISTEN", "127.0.0.1:8080", "LEAT_SPOOL_DIR"}, nil},
 		{"health --help", nil, []string{"health", "--help"}, 0, []string{"/readyz"}, nil},
 		{"all mistakes", []string{"LEAT_POINTS=x", "LEAT_TYPO=1"}, []string{"serve", "--listen", "x"}, 2, nil, []string{"--listen", "LEAT_POINTS", "LEAT_TYPO"}},
 		{"no spool", nil, []string{"serve", "--spool-dir", "/nowhere/at/all"}, 1, nil, []string{"--spool-dir", "/nowhere/at/all"}},
 		{"health of nothing", nil, []string{"health", "--listen", "127.0.0.1:1"}, 1, nil, []string{"refused"}},
+		{"health with another flag", nil, []string{"health", "--url", "x"}, 2, nil, []string{"-url; --help lists the flags"}},
 		{"health of a bad address", nil, []string{"health", "--listen", "x"}, 2, nil, []string{"--listen"}},
 	} {
 		t.Run(row.name, func(t *testing.T) {

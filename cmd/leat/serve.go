@@ -45,8 +45,9 @@ func serveUntil(ctx context.Context, config serve.Config, log *slog.Logger) erro
 	if err != nil {
 		return err
 	}
+	build := serve.ReadBuild()
 	server, err := serve.New(config, operations, serve.Surroundings{
-		Log: log, Build: serve.ReadBuild(), Ready: known, Contract: openapi.YAML,
+		Log: log, Build: build, Ready: known, Contract: openapi.YAML,
 	})
 	if err != nil {
 		return err
@@ -55,7 +56,7 @@ func serveUntil(ctx context.Context, config serve.Config, log *slog.Logger) erro
 	if err != nil {
 		return err
 	}
-	log.Info("listening", slog.String("address", address.String()))
+	log.Info("listening", slog.String("address", address.String()), slog.String("version", build.Version), slog.String("revision", build.Revision))
 	select {
 	case err := <-server.Served():
 		return err
