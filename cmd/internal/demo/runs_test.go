@@ -45,9 +45,12 @@ type profileAnswer struct {
 		Curve    *string
 	}
 	Jumps []struct {
-		Chainage   float64
-		EnergyLoss float64 `json:"energy_loss"`
-		Form       string
+		Chainage        float64
+		Reach           json.RawMessage
+		UpstreamDepth   float64 `json:"upstream_depth"`
+		DownstreamDepth float64 `json:"downstream_depth"`
+		EnergyLoss      float64 `json:"energy_loss"`
+		Form            string
 	}
 	Controls []struct {
 		Chainage, Depth float64
