@@ -10,8 +10,6 @@ type chain struct {
 	run   *Run
 	legs  []*leg
 	notes notes
-	// begin is what the upstream boundary sends in.
-	begin hold
 
 	segments []segment
 	jumps    []Jump

@@ -35,7 +35,9 @@ func show(t *testing.T, name, story string, run *Run) *Answer {
 		told = append(told, name)
 	}
 	for _, n := range a.Notes {
-		told = append(told, n.Code)
+		if n.Code != "jump_length_for_rectangles" {
+			told = append(told, n.Code)
+		}
 	}
 	if got := strings.Join(told, " "); got != story {
 		t.Errorf("%s: %s, want %s", name, got, story)

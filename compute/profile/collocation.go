@@ -105,7 +105,7 @@ func (c *collocation) leavesCritical() bool {
 // run advances to the far end or to where the branch ends.
 func (c *collocation) run() error {
 	v := c.v
-	for range mostPanels {
+	for range mostPanels + panelsAtBreak*len(v.breaks) {
 		if v.check != nil {
 			if err := v.check(); err != nil {
 				return err

@@ -81,8 +81,17 @@ func (c *chain) jump(l *leg, t *trace, x float64) {
 		return
 	}
 	c.turns = append(c.turns, turn{force: before, residual: math.Abs(before - after)})
+	if !rectangularAt(s, up) || !rectangularAt(s, down) {
+		c.notes.at("jump_length_for_rectangles", l.start+x, "The length of a jump is that of one in a rectangular channel; this section is none, and its jumps may be longer.")
+	}
 	c.jumps = append(c.jumps, Jump{Chainage: l.start + x, Reach: l.reach, UpstreamDepth: up, DownstreamDepth: down,
 		FroudeNumber: state.FroudeNumber, EnergyLoss: s.energy(up) - s.energy(down), Length: jumpLength(up, state.FroudeNumber), Form: jumpForm(state.FroudeNumber)})
+}
+
+// rectangularAt reports whether the water below a depth is a rectangle.
+func rectangularAt(s side, depth float64) bool {
+	g := s.channel.Geometry(depth)
+	return g.TopWidthRate == 0 && math.Abs(g.Area-g.TopWidth*depth) <= 1e-12*g.Area
 }
 
 // jumpLength returns the length in m that a jump needs downstream, 220*depth*tanh((F - 1)/22) of the depth and Froude number upstream (W. H. Hager,

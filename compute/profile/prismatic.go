@@ -53,17 +53,8 @@ func (p *prismatic) steepness(g section.Geometry) float64 {
 	return p.channel.Slope - p.motion.FrictionSlope(g)
 }
 
-// steepnessNear returns S0 - Sf at a depth a distance from a normal depth, without the cancellation: from the mean of dK/ddepth between.
-func (p *prismatic) steepnessNear(g section.Geometry, normal, distance float64) float64 {
-	const node = 0.38729833462074168852 // half of sqrt(3/5): Gauss's rule of three points
-	q := p.motion.Discharge()
-	rate := func(y float64) float64 { return p.channel.Law.AtDischarge(p.channel.Section.At(y), q).Rate }
-	middle := normal + distance/2
-	more := distance * (8*rate(middle) + 5*rate(middle-node*distance) + 5*rate(middle+node*distance)) / 18
-	k := p.channel.Law.AtDischarge(g, q).K
-	return p.channel.Slope * more * (2*k - more) / (k * k)
-}
-
+// sweep follows the flow of one regime from a place and a depth to the end of the reach in a direction, or to where its branch of the specific
+// energy ends.
 func (p *prismatic) sweep(x, depth, direction float64, subcritical bool) (*trace, error) {
 	s := &sweeper{p: p, direction: direction, subcritical: subcritical, x: x, y: depth, trace: &trace{up: direction == upstream}}
 	if direction == downstream {
@@ -103,18 +94,24 @@ type sweeper struct {
 	x, y        float64
 	far         float64 // chainage of the other end
 	trace       *trace
+	wider       float64 // by what factor the next panel may be wider than the last
+	around      neighbourhood
 	rise        float64 // 1 while the depth rises along the sweep, -1 while it falls
 }
 
-// mostPanels bounds a sweep along one stretch; smooth curves take about ten.
-const mostPanels = 4000
+// mostPanels bounds a sweep along one stretch; smooth curves take about ten. Each break of the section, which ends a panel, adds panelsAtBreak.
+const (
+	mostPanels    = 4000
+	panelsAtBreak = 8
+)
 
 func (s *sweeper) run() error {
 	if s.p.length == 0 {
 		s.straight(s.far, s.y, s.full())
 		return nil
 	}
-	for len(s.trace.panels) < mostPanels {
+	most := mostPanels + panelsAtBreak*len(s.p.branches)
+	for len(s.trace.panels) < most {
 		if s.p.check != nil {
 			if err := s.p.check(); err != nil {
 				return err
@@ -273,7 +270,7 @@ func (s *sweeper) along(b flow.Branch) (on bool, err error) {
 		if reached {
 			break
 		}
-		if len(s.trace.panels) >= mostPanels {
+		if len(s.trace.panels) >= mostPanels+panelsAtBreak*len(p.branches) {
 			return false, unsolved("the water surface")
 		}
 	}
@@ -322,6 +319,11 @@ func (s *sweeper) chartAt(stop float64) (c chart, until float64) {
 // resolved is the tail of a series below which its panel counts as resolved.
 const resolved = 1e-12
 
+// stretched returns by what factor a panel could be wider for its tail to be just resolved: of an analytic function the tail goes with the order-th power of the width.
+func stretched(tail float64) float64 {
+	return math.Sqrt(math.Sqrt(math.Cbrt(resolved / max(tail, 1e-18))))
+}
+
 // hop goes over a rise of the depth so small that its last places are all there is of it, with one value of dx/ddepth. It reports whether the stop was reached.
 func (s *sweeper) hop(stop float64) bool {
 	p := s.p
@@ -356,15 +358,11 @@ func (s *sweeper) step(b flow.Branch, stop float64, asymptote bool) bool {
 	}
 	if n := len(s.trace.panels); n > 0 {
 		if last := &s.trace.panels[n-1]; last.form == overDepth && last.chart == c {
-			width = 2 * math.Abs(last.u1-last.u0)
+			width = s.wider * math.Abs(last.u1-last.u0)
 		}
 	}
 	toward := math.Copysign(1, s.rise*c.side)
-	// How near a normal depth its own formula holds: where nothing breaks between, nor near by.
-	near := 0.0
-	if c.pole != 0 && !c.crown && b.Lo <= c.pole && c.pole <= b.Hi {
-		near = min(1e-2*c.pole, 0.2*(c.pole-b.Lo), 0.2*(b.Hi-c.pole))
-	}
+	near := s.near(c, b)
 	if !toPole && math.Abs(stop-s.y) < 1e-8*s.y {
 		return s.hop(stop)
 	}
@@ -385,8 +383,8 @@ func (s *sweeper) step(b flow.Branch, stop float64, asymptote bool) bool {
 			y, distance, rate := c.depth(u0 + half*(t+1))
 			g := p.channel.Section.At(y)
 			steepness := 0.0
-			if math.Abs(distance) <= near {
-				steepness = p.steepnessNear(g, c.pole, distance)
+			if math.Abs(distance) <= near.reach {
+				steepness = near.steepness(distance)
 			} else {
 				steepness = p.steepness(g)
 			}
@@ -398,8 +396,12 @@ func (s *sweeper) step(b flow.Branch, stop float64, asymptote bool) bool {
 		whole, _ := series.integral(1)
 		settled := tail < resolved || tail*math.Abs(whole) < 1e-13*p.length || tails.reached(tail, noisyOverDepth)
 		if width > 1e-9 && (!settled || !good) && math.Abs(u1-u0) > 1e-9*math.Abs(u0) {
-			width = math.Min(width, math.Abs(u1-u0)) / 2
+			width = math.Min(width, math.Abs(u1-u0)) * min(max(0.9*stretched(tail), 0.25), 0.5)
 			continue
+		}
+		s.wider = 2
+		if tail < resolved {
+			s.wider = min(0.9*stretched(tail), 3)
 		}
 		x1 := s.x + whole
 		pn := panel{x0: s.x, x1: x1, y0: s.y, y1: y1, form: overDepth, chart: c, u0: u0, u1: u1, s: series}

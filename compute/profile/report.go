@@ -127,14 +127,16 @@ func (c *chain) points(a *Answer) error {
 		if err != nil {
 			return err
 		}
-		for _, x := range places {
+		a.Stations = slices.Grow(a.Stations, len(places))
+		for _, place := range places {
 			if err := c.check(); err != nil {
 				return err
 			}
-			p, err := c.point(g, x)
+			p, err := c.point(g, place.x)
 			if err != nil {
 				return err
 			}
+			p.Chainage = place.chainage
 			if n := len(a.Stations); n > 0 {
 				last := &a.Stations[n-1]
 				if last.Chainage == p.Chainage && last.Reach == p.Reach && last.State.Geometry.Depth == p.State.Geometry.Depth {
@@ -157,16 +159,20 @@ func (c *chain) points(a *Answer) error {
 	return nil
 }
 
-// places returns the chainages of a segment's leg that are reported. Its error is the checkpoint's.
-func (c *chain) places(g *segment) ([]float64, error) {
+// A place is a chainage of a leg and what it is in the run, as it was asked for.
+type place struct{ x, chainage float64 }
+
+// places returns the places of a segment that are reported. Its error is the checkpoint's.
+func (c *chain) places(g *segment) ([]place, error) {
 	r := &c.run.Report
 	start := g.leg.start
-	var out []float64
+	var out []place
+	ask := func(chainage float64) { out = append(out, place{min(max(chainage-start, g.from), g.to), chainage}) }
 	switch {
 	case r.At != nil:
 		i, _ := slices.BinarySearch(r.At, start+g.from)
 		for ; i < len(r.At) && r.At[i] <= start+g.to; i++ {
-			out = append(out, min(max(r.At[i]-start, g.from), g.to))
+			ask(r.At[i])
 		}
 		return out, nil
 	case r.Spacing > 0:
@@ -177,20 +183,23 @@ func (c *chain) places(g *segment) ([]float64, error) {
 			if x > start+g.to {
 				return out, nil
 			}
-			out = append(out, min(max(x-start, g.from), g.to))
+			ask(x)
 			if x == whole {
 				return out, nil
 			}
 		}
 	}
-	out = append(out, g.from)
 	knots := g.knots()
+	xs := []float64{g.from}
 	for i := 1; i < len(knots); i++ {
 		var err error
-		if out, err = c.straighten(g, out, knots[i-1], knots[i], 0); err != nil {
+		if xs, err = c.straighten(g, xs, knots[i-1], knots[i], 0); err != nil {
 			return nil, err
 		}
-		out = append(out, knots[i])
+		xs = append(xs, knots[i])
+	}
+	for _, x := range xs {
+		out = append(out, place{x, start + x})
 	}
 	return out, nil
 }

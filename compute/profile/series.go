@@ -13,34 +13,48 @@ type series [order]float64
 var rule = newRule()
 
 type legendreRule struct {
-	node    [order]float64
-	weight  [order]float64
+	gauss
 	project [order][order]float64
 }
 
 func newRule() *legendreRule {
-	r := new(legendreRule)
-	for j := range order {
-		// Newton's iteration from Tricomi's first guess.
-		t := -math.Cos(math.Pi * (float64(j) + 0.75) / (order + 0.5))
-		var slope float64
-		for range 8 {
-			p, below := 1.0, 0.0
-			for k := 0; k < order; k++ {
-				p, below = (float64(2*k+1)*t*p-float64(k)*below)/float64(k+1), p
-			}
-			slope = order * (t*p - below) / (t*t - 1)
-			t -= p / slope
-		}
-		r.node[j] = t
-		r.weight[j] = 2 / ((1 - t*t) * slope * slope)
+	r := &legendreRule{gauss: newGauss(order)}
+	for j, t := range r.node {
 		p, below := 1.0, 0.0
-		for k := 0; k < order; k++ {
+		for k := range order {
 			r.project[k][j] = float64(2*k+1) / 2 * r.weight[j] * p
-			p, below = (float64(2*k+1)*t*p-float64(k)*below)/float64(k+1), p
+			p, below = legendre(k, t, p, below), p
 		}
 	}
 	return r
+}
+
+// gauss is a Gauss-Legendre rule on [-1, 1].
+type gauss struct{ node, weight []float64 }
+
+// newGauss returns the rule of n points, by Newton's iteration from Tricomi's first guess.
+func newGauss(n int) gauss {
+	g := gauss{make([]float64, n), make([]float64, n)}
+	for j := range n {
+		t := -math.Cos(math.Pi * (float64(j) + 0.75) / (float64(n) + 0.5))
+		var slope float64
+		for range 8 {
+			p, below := 1.0, 0.0
+			for k := range n {
+				p, below = legendre(k, t, p, below), p
+			}
+			slope = float64(n) * (t*p - below) / (t*t - 1)
+			t -= p / slope
+		}
+		g.node[j] = t
+		g.weight[j] = 2 / ((1 - t*t) * slope * slope)
+	}
+	return g
+}
+
+// legendre returns P_(k+1)(t) from P_k and P_(k-1).
+func legendre(k int, t, p, below float64) float64 {
+	return (float64(2*k+1)*t*p - float64(k)*below) / float64(k+1)
 }
 
 // newSeries returns the series of a function from its values at the nodes.

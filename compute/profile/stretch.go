@@ -57,12 +57,6 @@ func (l *leg) subBelow(x float64) *trace {
 	return nil
 }
 
-// force returns the specific force of all barrels at a chainage and depth.
-func (l *leg) force(x, depth float64) float64 {
-	s := l.side(x)
-	return s.force(depth) * float64(max(s.channel.Barrels, 1))
-}
-
 func (p *prismatic) side(float64) side               { return side{p.channel, p.motion} }
 func (p *prismatic) total(float64) float64           { return p.discharge }
 func (p *prismatic) controls(int) ([]passage, error) { return nil, nil }

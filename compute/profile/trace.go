@@ -57,6 +57,17 @@ const (
 	overChainage             // the depth is a series over the chainage
 )
 
+// variable returns the t at which a panel over depth has a chainage.
+func (p *panel) variable(x float64) float64 {
+	switch x {
+	case p.x0:
+		return -1
+	case p.x1:
+		return 1
+	}
+	return p.s.invert(x - p.x0)
+}
+
 // depth returns the depth at a chainage of the panel.
 func (p *panel) depth(x float64) float64 {
 	switch {
