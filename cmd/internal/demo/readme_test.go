@@ -11,6 +11,7 @@ import (
 	"testing"
 
 	"leat/api/operation"
+	"leat/api/wire"
 	"leat/cmd/internal/demo"
 )
 
@@ -135,5 +136,20 @@ func TestReadmeShowsARealTable(t *testing.T) {
 	}
 	if got := string(shown[2]); got != want.String() {
 		t.Errorf("the README shows\n%s\nwhere the answer is\n%s", got, want.String())
+	}
+}
+
+// The rating that the README asks for is answered, and as a table.
+func TestReadmeShowsARating(t *testing.T) {
+	shown := regexp.MustCompile("(?s)```sh\ncurl [^`]*?/v1/rating[^`]*?text/csv[^`]*?-d '(.*?)'\n```").FindSubmatch(readme(t))
+	if shown == nil {
+		t.Fatal("no request for a rating in the README")
+	}
+	solved, problem := operationNamed(t, "rating").Solve(shown[1], operation.Options{})
+	if problem != nil {
+		t.Fatal(problem.Detail)
+	}
+	if _, isTable := solved.Answer.(wire.Tabular); !isTable {
+		t.Errorf("%T is no table", solved.Answer)
 	}
 }
