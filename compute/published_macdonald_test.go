@@ -248,7 +248,7 @@ func (b *bedMaker) make() {
 func depthFunctionRun(c *claim) {
 	f := c.analytic()
 	f.published(c)
-	bed := &bedMaker{claim: c, f: f, reach: 2.5}
+	bed := &bedMaker{claim: c, f: f, reach: f.length / 400}
 	bed.make()
 	n := len(bed.slopes)
 	run := &profile.Run{Discharge: f.discharge, Downstream: profile.Boundary{Kind: profile.Depth, Value: f.depth(f.length)}}
