@@ -102,9 +102,6 @@ func (p *profileRun) stateWarnings(w *warnings, here *place, s *profile.Point) {
 		c, pointer = &p.run.Stations[i].Channel, "/stations/"+strconv.Itoa(i)+"/section"
 	}
 	w.state(c, &s.State, pointer)
-	if bank, known := c.BankHeight(); known && !c.Section.Closed() && s.State.Geometry.Depth > bank {
-		w.add("overtopped", pointer, "The water stands above the bank: the section overtops at this discharge.")
-	}
 }
 
 // levelBelow returns the water level of the last of the stations at a chainage, which is the one below a jump there; NaN where a jump has no

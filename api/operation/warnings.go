@@ -61,6 +61,9 @@ func (w *warnings) state(c *flow.Channel, s *flow.State, pointer string) {
 			w.add("separate_troughs", pointer, "The water lies in separate troughs; all are taken to fill to one level and to share the flow.")
 		}
 	}
+	if bank, known := c.BankHeight(); known && !c.Section.Closed() && depth > bank {
+		w.add("overtopped", pointer, "The water stands above the bank: the section overtops there.")
+	}
 	if s.Discharge > 0 && s.Regime != flow.FullFlow && math.IsNaN(s.FroudeNumber) {
 		w.add("froude_number_absent", pointer, "The energy coefficient rises so fast with depth that the square of the Froude number is negative; the regime is told by the sign of the energy's derivative.")
 	}
