@@ -74,13 +74,25 @@ func unknownValueAdvice(given string, known []string) string {
 	return ""
 }
 
+// objectExamples hold, for members that are objects, the shortest object that says something.
+var objectExamples = map[string]string{
+	"section":    `{"kind": "rectangular", "bottom_width": 2}`,
+	"roughness":  `{"manning": 0.03}`,
+	"upstream":   `{"control": "normal"}`,
+	"downstream": `{"level": 12.8}`,
+	"weir":       `{"kind": "sharp_crested", "crest_height": 0.6, "crest_width": 2}`,
+	"gate":       `{"opening": 0.4}`,
+	"report":     `{"spacing": 50}`,
+	"geometry":   `{"type": "LineString", "coordinates": [[0, 0], [100, 20]]}`,
+}
+
 // notAnObjectAdvice says what to send in place of a value that is no object, where that is known.
 func notAnObjectAdvice(at pointer, kind jsontext.Kind) string {
-	switch {
-	case at == "" && kind == '[':
+	if at == "" && kind == '[' {
 		return " Send one object a request, or one a line in bulk."
-	case strings.HasSuffix(string(at), "/roughness") && kind == '0':
-		return ` Say which roughness it is: {"manning": 0.03} for a Manning's n of 0.03.`
+	}
+	if example, known := objectExamples[string(at[strings.LastIndexByte(string(at), '/')+1:])]; known {
+		return " Give one such as " + example + "."
 	}
 	return ""
 }

@@ -19,9 +19,10 @@ func TestAdvice(t *testing.T) {
 		{`{"section":{"kind":"trapezoidal","b":1,"z":1},` + roughness + `,"bed_slope":0.002,"discharge":1}`, "/section/z", "There is no member z here. Did you mean side_slope?"},
 		{`{"section":{"shape":"trapezoidal"}}`, "/section/shape", "There is no member shape here. Did you mean kind?"},
 		{`{` + good + `,"discharge":1,"z":1}`, "/z", "There is no member z here. Accepted are id, "},
-		{`{` + section + `,"roughness":0.03,"bed_slope":0.002,"discharge":1}`, "/roughness", `This must be an object, not a number. Say which roughness it is: {"manning": 0.03} for a Manning's n of 0.03.`},
+		{`{` + section + `,"roughness":0.03,"bed_slope":0.002,"discharge":1}`, "/roughness", `This must be an object, not a number. Give one such as {"manning": 0.03}.`},
 		{`[{` + good + `,"discharge":1}]`, "", "This must be an object, not a list. Send one object a request, or one a line in bulk."},
 		{`{` + section + `,` + roughness + `,"bed_slope":2,"discharge":1}`, "/bed_slope", "not 2. A fall of 2 % or 20 in 1000 is 0.02."},
+		{`{` + roughness + `,"bed_slope":0.002,"discharge":1}`, "/section", `section is missing: give an object such as {"kind": "rectangular", "bottom_width": 2}.`},
 		{`{` + good + `,"discharge":"0.3"}`, "/discharge", "not a string. Write the number without quotes."},
 		{`{` + good + `,"discharge":"0,3"}`, "/discharge", "not a string. Write the number without quotes, with a point before its decimals."},
 		{`{` + good + `,"discharge":"300 l/s"}`, "/discharge", "not a string. Write the number alone, without its unit and without quotes."},
@@ -44,12 +45,46 @@ func TestAdvice(t *testing.T) {
 		{`{"type":"LineString","crs":{"type":"name"},"coordinates":[[0,0],[1,1]]}`, "/geometry/crs", "There is no member crs here. Leave it out: coordinates come back in the system in which they were sent."},
 		{`{"type":"LineString","bbox":[0,0,1,1],"coordinates":[[0,0],[1,1]]}`, "/geometry/bbox", "There is no member bbox here. Leave it out: type and coordinates are enough."},
 		{`{"type":"MultiLineString","coordinates":[[[0,0],[1,1]]]}`, "/geometry/type", `type must be "LineString", not "MultiLineString". Merge its parts to one LineString, from upstream to downstream.`},
+		{`"LINESTRING (0 0, 1 1)"`, "/geometry", `This must be an object, not a string. Give one such as {"type": "LineString", "coordinates": [[0, 0], [100, 20]]}.`},
 		{`{"type":"Point","coordinates":[0,0]}`, "/geometry/type", `type must be "LineString", not "Point".`},
 		{`{"type":"linestring","coordinates":[[0,0],[1,1]]}`, "/geometry/type", `type must be "LineString", not "linestring". Did you mean "LineString"?`},
 	} {
 		var r ProfileRequest
 		if told := detailAt(Decode([]byte(reaches+c.body+`}`), SI, &Limits{ArrayItems: 9, Points: 9, Reaches: 9}, &r), c.pointer); !strings.Contains(told, c.detail) {
 			t.Errorf("%s: at %q\n got %q\nwant %q", c.body, c.pointer, told, c.detail)
+		}
+	}
+}
+
+// Every example of an object is accepted where it is advised.
+func TestObjectExamples(t *testing.T) {
+	const (
+		section   = `"section":{"kind":"trapezoidal","bottom_width":1,"side_slope":1}`
+		roughness = `"roughness":{"manning":0.03}`
+		depth     = `"downstream":{"depth":1}`
+	)
+	places := map[string]string{
+		"section":    `{"reaches":[{"length":9,"bed_slope":0,"section":%,` + roughness + `}],` + depth,
+		"roughness":  `{"reaches":[{"length":9,"bed_slope":0,` + section + `,"roughness":%}],` + depth,
+		"upstream":   `{"upstream":%,` + depth,
+		"downstream": `{"downstream":%`,
+		"weir":       `{"downstream":{"weir":%}`,
+		"gate":       `{"upstream":{"gate":%},` + depth,
+		"report":     `{"report":%,` + depth,
+		"geometry":   `{"geometry":%,` + depth,
+	}
+	for name, example := range objectExamples {
+		body, known := places[name]
+		if !known {
+			t.Fatalf("no place for the example of %s", name)
+		}
+		if !strings.Contains(body, `"reaches"`) {
+			body += `,"reaches":[{"length":9,"bed_slope":0,` + section + `,` + roughness + `}]`
+		}
+		body = strings.Replace(body, "%", example, 1) + `,"discharge":1}`
+		var r ProfileRequest
+		if p := Decode([]byte(body), SI, &Limits{ArrayItems: 9, Points: 9, Reaches: 9, ReportPoints: 9}, &r); p != nil {
+			t.Errorf("%s: %s", body, p.AppendJSON(nil))
 		}
 	}
 }

@@ -99,6 +99,9 @@ func (f *field) wanted() string {
 	case shapeID:
 		return "a string or a number"
 	case shapeObject:
+		if example, known := objectExamples[f.name]; known {
+			return "an object such as " + example
+		}
 		return "an object"
 	case shapePair:
 		return f.tupleType()
