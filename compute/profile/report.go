@@ -6,6 +6,7 @@ import (
 
 	"leat/compute"
 	"leat/compute/flow"
+	"leat/compute/solve"
 )
 
 // straightness is how far, relative to the depth, a straight line between two stations may lie off the depth where no report is asked for.
@@ -325,16 +326,11 @@ func (c *chain) extent(a *Answer) error {
 			}
 			x := knots[k]
 			if k < len(knots)-1 { // it came into the band between this knot and the one before
-				lo, hi := knots[k], knots[k+1]
-				for range 100 {
-					middle := lo + (hi-lo)/2
-					if off(middle) <= 0 {
-						lo = middle
-					} else {
-						hi = middle
-					}
+				edge, _, ok := solve.RootSlopeless(off, knots[k], knots[k+1])
+				if !ok {
+					return unsolved("the extent of the backwater")
 				}
-				x = lo
+				x = edge
 			}
 			a.Extent = whole - (g.leg.start + x)
 			return nil
