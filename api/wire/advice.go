@@ -22,6 +22,7 @@ var symbols = map[string][]string{
 	"b":       {"bottom_width"},
 	"z":       {"side_slope"},
 	"d":       {"diameter"},
+	"dn":      {"diameter"},
 	"s":       {"bed_slope"},
 	"s0":      {"bed_slope"},
 	"so":      {"bed_slope"},
@@ -46,8 +47,8 @@ func bySymbol(name string, known []string) (string, bool) {
 	return "", false
 }
 
-// unknownMemberAdvice says which member an unknown one of an object was meant to be, or which there are.
-func unknownMemberAdvice(name string, known []string) string {
+// unknownMemberAdvice says which of the known members an unknown one of an object was meant to be, or which are accepted.
+func unknownMemberAdvice(name string, known, accepted []string) string {
 	switch {
 	case name == "crs" && slices.Contains(known, "coordinates"):
 		return " Leave it out: coordinates come back in the system in which they were sent."
@@ -60,7 +61,7 @@ func unknownMemberAdvice(name string, known []string) string {
 	if near, ok := nearest(name, known); ok {
 		return " Did you mean " + near + "?"
 	}
-	return " Accepted are " + list(known, "and") + "."
+	return " Accepted are " + list(accepted, "and") + "."
 }
 
 // unknownValueAdvice says which name an unknown one was meant to be, if that can be told.
@@ -115,6 +116,14 @@ func stringForNumberAdvice(raw jsontext.Value) string {
 		return " Write a percentage as a fraction, without quotes: 0.02 for 2 %."
 	case after != "" && isNumber(number):
 		return " Write the number alone, without its unit and without quotes."
+	}
+	return ""
+}
+
+// stringForListAdvice says what to do about a string that stands where a list is wanted.
+func stringForListAdvice(raw jsontext.Value) string {
+	if strings.HasPrefix(strings.TrimSpace(string(raw[1:len(raw)-1])), "[") {
+		return " Write the list without quotes."
 	}
 	return ""
 }

@@ -1,6 +1,7 @@
 package wire
 
 import (
+	"reflect"
 	"strconv"
 	"strings"
 	"unicode/utf8"
@@ -21,7 +22,11 @@ func (w *walk) wrongType(wanted string) {
 	}
 	w.fault(codeWrongType, func() string {
 		detail := "This must be " + wanted + ", not " + kindText(kind) + "."
-		if kind == '"' && strings.Contains(wanted, "number") {
+		switch {
+		case kind != '"':
+		case strings.HasPrefix(wanted, "a list"):
+			detail += stringForListAdvice(raw)
+		case strings.HasSuffix(wanted, "number"):
 			detail += stringForNumberAdvice(raw)
 		}
 		if kind == 'n' {
@@ -58,18 +63,36 @@ func (w *walk) notAnObject() {
 	})
 }
 
-// unknownMember notes a member that the object does not have.
-func (w *walk) unknownMember(p *plan, name string) {
+// unknownMember notes a member that the object, read into v as far as it goes, does not have.
+func (w *walk) unknownMember(p *plan, v reflect.Value, name string) {
 	w.failed = true
 	if !w.collect {
 		return
 	}
-	detail := "There is no member " + clip(name) + " here." + unknownMemberAdvice(name, p.names)
+	detail := "There is no member " + clip(name) + " here." + unknownMemberAdvice(name, p.names, p.accepted(v))
 	if len(name) > longestShownName {
 		w.fault(codeUnknownMember, func() string { return detail })
 		return
 	}
 	w.faultAt(name, codeUnknownMember, func() string { return detail })
+}
+
+// accepted returns the names of the members that an object may have: those of its variant where that is known by now, else all.
+func (p *plan) accepted(v reflect.Value) []string {
+	if p.variants == nil {
+		return p.names
+	}
+	at, known := find(p.variant, v.Addr().Interface().(varied).variant())
+	if !known {
+		return p.names
+	}
+	var names []string
+	for i := range p.fields {
+		if p.variants[at].allowed&(1<<i) != 0 {
+			names = append(names, p.fields[i].name)
+		}
+	}
+	return names
 }
 
 func missingText(f *field, variant string) string {

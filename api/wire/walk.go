@@ -139,7 +139,7 @@ func (w *walk) object(p *plan, v reflect.Value) {
 		case null:
 			w.skip()
 		case !known:
-			w.unknownMember(p, string(name))
+			w.unknownMember(p, v, string(name))
 			w.skip()
 		default:
 			present |= 1 << i
