@@ -128,6 +128,11 @@ func stringForListAdvice(raw jsontext.Value) string {
 	return ""
 }
 
+// isNoData reports whether a number, as text, is one that maps and loggers write where they have none (common practice).
+func isNoData(text string) bool {
+	return text == "-999" || text == "-9999" || text == "-99999"
+}
+
 // isRatio reports whether a text is one number to, in or over another.
 func isRatio(text string) bool {
 	for _, sign := range []string{":", "/", " in ", " to "} {

@@ -30,6 +30,8 @@ func TestAdvice(t *testing.T) {
 		{`[{` + good + `,"discharge":1}]`, "", "This must be an object, not a list. Send one object a request, or one a line in bulk."},
 		{`{` + section + `,` + roughness + `,"bed_slope":2,"discharge":1}`, "/bed_slope", "not 2. A fall of 2 % or 20 in 1000 is 0.02."},
 		{`{` + roughness + `,"bed_slope":0.002,"discharge":1}`, "/section", `section is missing: give an object such as {"kind": "rectangular", "bottom_width": 2}.`},
+		{`{` + section + `,` + roughness + `,"bed_slope":-9999,"discharge":1}`, "/bed_slope", "not -9999. Leave an unknown number out or give null."},
+		{`{"units":"us",` + good + `,"discharge":-9999.0}`, "/discharge", "not -9999. Leave an unknown number out or give null."},
 		{`{` + good + `,"discharge":"0.3"}`, "/discharge", "not a string. Write the number without quotes."},
 		{`{` + good + `,"discharge":"0,3"}`, "/discharge", "not a string. Write the number without quotes, with a point before its decimals."},
 		{`{` + good + `,"discharge":"300 l/s"}`, "/discharge", "not a string. Write the number alone, without its unit and without quotes."},

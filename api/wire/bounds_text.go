@@ -16,8 +16,12 @@ func (f *field) outOfRange(at pointer, column int, value float64, system System)
 	} else if f.shape == shapeNumbers || f.shape == shapeNamed {
 		what = "Every number of " + f.name
 	}
-	detail := what + " must be " + b.text(q, system) + withUnit(q, system) + ", not " + inUnits(value, q, system) + "."
-	if f.name == "bed_slope" {
+	shown := inUnits(value, q, system)
+	detail := what + " must be " + b.text(q, system) + withUnit(q, system) + ", not " + shown + "."
+	switch {
+	case isNoData(shown):
+		detail += " Leave an unknown number out or give null."
+	case f.name == "bed_slope":
 		detail += " A fall of 2 % or 20 in 1000 is 0.02."
 	}
 	return Fault{Pointer: string(at), Code: code, Detail: detail}
