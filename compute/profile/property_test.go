@@ -323,10 +323,10 @@ func levelsOf(run *profile.Run, p *profile.Point) (bed, slope, discharge float64
 
 func TestLevelsAreConsistent(t *testing.T) {
 	rises := 0
-	each(t, func(t *testing.T, ref *reference, run *profile.Run, answer *profile.Answer) {
+	each(t, func(t *testing.T, ref *reference, run *profile.Run, _ *profile.Answer) {
 		asked := *run
 		asked.Report = profile.Report{}
-		answer = solved(t, ref.Name, &asked)
+		answer := solved(t, ref.Name, &asked)
 		last := -1.0
 		for i := range answer.Stations {
 			p := &answer.Stations[i]
@@ -399,10 +399,8 @@ func TestDepthIsMonotone(t *testing.T) {
 // TestCurvesCoverTheRun: one after the other, without gaps, each station on the curve that it names.
 func TestCurvesCoverTheRun(t *testing.T) {
 	each(t, func(t *testing.T, ref *reference, run *profile.Run, answer *profile.Answer) {
-		place, end := run.Report.At[0], length(run)
-		if len(run.Reaches) > 0 {
-			place = 0
-		} else {
+		place, end := 0.0, length(run)
+		if len(run.Reaches) == 0 {
 			place, end = run.Stations[0].Chainage, run.Stations[len(run.Stations)-1].Chainage
 		}
 		for _, span := range answer.Curves {
