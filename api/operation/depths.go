@@ -16,7 +16,8 @@ var Depths = Operation{Name: "depths", Form: (*wire.DepthsAnswer)(nil), Solve: f
 }}
 
 func solveDepths(r *wire.DepthsRequest, brief bool) (wire.Answer, *wire.Problem) {
-	c, problem := inputs{&r.Common, r.Barrels, &r.Section, &r.Roughness, r.BedSlope}.channel()
+	in := inputs{&r.Common, r.Barrels, &r.Section, &r.Roughness, r.BedSlope}
+	c, problem := in.channel()
 	if problem != nil {
 		return nil, problem
 	}
@@ -32,6 +33,7 @@ func solveDepths(r *wire.DepthsRequest, brief bool) (wire.Answer, *wire.Problem)
 		return nil, wire.Internal("The solver did not converge on this request; nothing is given rather than a guess.")
 	}
 	var w warnings
+	w.doubt("", &in)
 	a := &wire.DepthsAnswer{
 		Brief:       brief,
 		NormalDepth: math.NaN(), CriticalDepth: math.NaN(),

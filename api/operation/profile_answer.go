@@ -22,7 +22,7 @@ func (p *profileRun) answer(a *profile.Answer) *wire.ProfileAnswer {
 	if p.request.Geometry.Given {
 		out.Geometry = &p.request.Geometry
 	}
-	var w warnings
+	w := p.doubts
 	here := place{reach: -1}
 	for i := range a.Stations {
 		s := &a.Stations[i]

@@ -12,6 +12,7 @@ import (
 
 // A profileRun is a request for a profile in the solver's terms.
 type profileRun struct {
+	doubts  warnings // what is to be doubted in the request
 	request *wire.ProfileRequest
 	run     profile.Run
 	length  float64 // of the run, m
@@ -72,6 +73,7 @@ func (p *profileRun) reaches(faults []wire.Fault) ([]wire.Fault, error) {
 		}
 		in := inputs{&p.request.Common, r.Barrels, &r.Section, &r.Roughness, r.BedSlope}
 		reach.Channel, faults = in.build("/reaches/"+strconv.Itoa(i), faults)
+		p.doubts.doubt("/reaches/"+strconv.Itoa(i), &in)
 		p.run.Reaches = append(p.run.Reaches, reach)
 	}
 	return faults, nil
@@ -88,6 +90,7 @@ func (p *profileRun) stations(faults []wire.Fault) ([]wire.Fault, error) {
 		station := profile.Station{Chainage: r.Chainage.Value - p.start, BedLevel: bedLevel(r)}
 		in := inputs{&p.request.Common, r.Barrels, &r.Section, &r.Roughness, wire.Number{}}
 		station.Channel, faults = in.build("/stations/"+strconv.Itoa(i), faults)
+		p.doubts.doubt("/stations/"+strconv.Itoa(i), &in)
 		if i > 0 {
 			above, before := &p.request.Stations[i-1], &p.run.Stations[i-1].Channel
 			if reflect.DeepEqual(&above.Section, &r.Section) {

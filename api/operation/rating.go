@@ -17,22 +17,24 @@ var Rating = Operation{Name: "rating", Form: (*wire.RatingAnswer)(nil), Solve: f
 }}
 
 func solveRating(r *wire.RatingRequest) (wire.Answer, *wire.Problem) {
-	c, problem := inputs{&r.Common, r.Barrels, &r.Section, &r.Roughness, r.BedSlope}.channel()
+	in := inputs{&r.Common, r.Barrels, &r.Section, &r.Roughness, r.BedSlope}
+	c, problem := in.channel()
 	if problem != nil {
 		return nil, problem
 	}
 	if len(r.Discharges) > 0 {
-		return rateDischarges(&c, r)
+		return rateDischarges(&c, r, &in)
 	}
-	return rateDepths(&c, r)
+	return rateDepths(&c, r, &in)
 }
 
 // rateDepths gives the discharge that flows uniformly, or critically, at evenly spaced depths.
-func rateDepths(c *flow.Channel, r *wire.RatingRequest) (wire.Answer, *wire.Problem) {
+func rateDepths(c *flow.Channel, r *wire.RatingRequest, in *inputs) (wire.Answer, *wire.Problem) {
 	if fault, above := aboveSection(c, r.ToDepth.Value, "/to_depth"); above {
 		return nil, wire.InvalidRequest(fault)
 	}
 	var w warnings
+	w.doubt("", in)
 	a := &wire.RatingAnswer{States: make([]wire.State, r.Count.Value)}
 	for i := range a.States {
 		depth := evenly(r.FromDepth.Value, r.ToDepth.Value, i, r.Count.Value)
@@ -73,8 +75,9 @@ func withoutFlow(s wire.State) wire.State {
 }
 
 // rateDischarges gives the lowest normal, or critical, depth of each discharge.
-func rateDischarges(c *flow.Channel, r *wire.RatingRequest) (wire.Answer, *wire.Problem) {
+func rateDischarges(c *flow.Channel, r *wire.RatingRequest, in *inputs) (wire.Answer, *wire.Problem) {
 	var w warnings
+	w.doubt("", in)
 	var room [8]float64
 	m := members(c, true) | wire.WithDischarge
 	a := &wire.RatingAnswer{States: make([]wire.State, len(r.Discharges))}

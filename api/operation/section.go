@@ -15,7 +15,8 @@ var Section = Operation{Name: "section", Form: (*wire.SectionAnswer)(nil), Solve
 }}
 
 func solveSection(r *wire.SectionRequest) (wire.Answer, *wire.Problem) {
-	c, problem := inputs{&r.Common, r.Barrels, &r.Section, &r.Roughness, r.BedSlope}.channel()
+	in := inputs{&r.Common, r.Barrels, &r.Section, &r.Roughness, r.BedSlope}
+	c, problem := in.channel()
 	if problem != nil {
 		return nil, problem
 	}
@@ -39,6 +40,7 @@ func solveSection(r *wire.SectionRequest) (wire.Answer, *wire.Problem) {
 		return nil, wire.InvalidRequest(faults...)
 	}
 	var w warnings
+	w.doubt("", &in)
 	m := members(&c, r.Discharge.Given)
 	a := &wire.SectionAnswer{States: make([]wire.State, len(depths))}
 	for i, depth := range depths {
