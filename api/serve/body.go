@@ -72,6 +72,7 @@ func (l *larder) read(r *http.Request, limit bodyLimit) (b body, problem *wire.P
 		}
 	}()
 	if !l.take(keptBuffer) {
+		skip(r)
 		return b, fullHouse()
 	}
 	b.held = keptBuffer
@@ -82,6 +83,8 @@ func (l *larder) read(r *http.Request, limit bodyLimit) (b body, problem *wire.P
 			size := min(2*int64(cap(b.bytes)), limit.bytes+1) // the byte beyond the limit tells exactly full from too much
 			if size > int64(cap(b.bytes)) {
 				if !l.take(size - b.held) {
+					b.release()
+					skip(r)
 					return b, fullHouse()
 				}
 				b.held = size
