@@ -153,7 +153,7 @@ func farmBridge(p *pen) []string {
 		"discharge", p.discharge(p.between(15, 17)),
 		"reaches", list(
 			p.reach("above", 1500, 0.0006, p.drain(mainWidth, mainSide, 0.028), "loss_coefficient", "0.1"),
-			p.reach("bridge", 8, 0.0006, p.lined(p.size(p.between(3, 3.4), 0.1), 0.02), "loss_coefficient", "0.3"),
+			p.reach("bridge", 8, 0.0006, p.lined(p.size(p.between(3, 3.2), 0.1), 0.02), "loss_coefficient", "0.3"),
 			p.reach("below", 800, 0.0006, p.drain(mainWidth, mainSide, 0.028))),
 		"downstream", control("normal"),
 		"datum", p.length(1.1),
@@ -196,9 +196,9 @@ func drownedPipe(p *pen) []string {
 		"roughness", object("sand_roughness", "0.0006"),
 	}
 	return []string{
-		"discharge", p.discharge(p.between(0.8, 0.9)),
+		"discharge", p.discharge(p.between(0.89, 0.94)),
 		"reaches", list(p.reach("pipe", 80, 0.03, pipe)),
-		"downstream", p.level(p.size(p.between(19.6, 19.8), 0.1)),
+		"downstream", p.level(p.size(p.between(19.7, 19.9), 0.1)),
 		"datum", p.length(18),
 	}
 }
@@ -300,7 +300,7 @@ func airfieldDrain(p *pen) []string {
 		"reaches", list(
 			p.reach("runway pipe", 120, 0.012, pipe, "loss_coefficient", "0.5"),
 			p.reach("open drain", 600, 0.0008, p.drain(p.size(1.5, 0.1), 2, 0.03))),
-		"downstream", p.level(p.size(p.between(5, 5.1), 0.05)),
+		"downstream", p.level(p.size(p.between(5.3, 5.4), 0.05)),
 		"datum", p.length(3.4),
 	}
 }
