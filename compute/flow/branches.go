@@ -11,7 +11,10 @@ import (
 const samples = 24
 
 // knots are the most stretches of one piece.
-const knots = samples + 2
+const knots = 2*samples + 2
+
+// wary is how near to zero a rate must be at a sample for the stretch beside it to be looked at once more in its middle.
+const wary = 0.2
 
 // A Branch is a stretch of depth on which a curve is smooth and monotone. Its lower end is exclusive (0 for the first; otherwise the
 // curve may jump there), its upper end inclusive (+Inf for the last of an open section).
@@ -113,27 +116,51 @@ func (c *Channel) cut(f *curve, lo, hi float64, knot *[knots + 1]float64) int {
 	return 1
 }
 
-// sample cuts a piece of which nothing is known. Where the rate comes near zero between three samples without changing its sign, the
-// place where it is nearest becomes a knot, so that a pair of turns is not passed over.
+// sample cuts a piece of which nothing is known. Where the rate comes near zero between three samples without changing its sign, or between two that are near
+// zero themselves, the place where it is nearest becomes a knot, so that a pair of turns is not passed over.
 func (c *Channel) sample(f *curve, lo, hi float64, knot *[knots + 1]float64) int {
-	var rate [knots + 1]float64
+	var at, rate [samples + 1]float64
 	for i := 1; i <= samples; i++ {
-		knot[i] = samplePoint(lo, hi, i)
-		rate[i] = f.rate(c.Section.At(min(knot[i], math.MaxFloat64)))
+		at[i] = samplePoint(lo, hi, i)
+		rate[i] = f.rate(c.Section.At(min(at[i], math.MaxFloat64)))
 	}
-	n := samples
-	if math.IsInf(hi, 1) {
-		n++
-		knot[n], rate[n] = hi, math.Inf(1)
-	} else {
-		knot[n] = hi
+	at[0], rate[0] = lo, math.Inf(-1)
+	if lo > 0 {
+		rate[0] = f.rate(c.Section.At(above(lo)))
+	} else if f.risesFromZero() {
+		rate[0] = math.Inf(1)
 	}
-	for i := 2; i < samples; i++ {
-		p, q, r := rate[i-1], rate[i], rate[i+1]
-		if p*q > 0 && q*r > 0 && math.Abs(q) <= math.Abs(p) && math.Abs(q) <= math.Abs(r) {
-			knot[i] = c.nearestZero(f, knot[i-1], knot[i], knot[i+1])
+	n := 0
+	add := func(depth float64) {
+		if depth > knot[n] {
+			n++
+			knot[n] = depth
 		}
 	}
+	for i := 1; i <= samples; i++ {
+		// Between the sample before and this one.
+		if p, r := rate[i-1], rate[i]; p*r > 0 && min(math.Abs(p), math.Abs(r)) < wary {
+			middle := at[i-1] + (at[i]-at[i-1])/2
+			if m := f.rate(c.Section.At(middle)); m*r < 0 || math.Abs(m) <= min(math.Abs(p), math.Abs(r)) {
+				if m*r > 0 {
+					middle = c.nearestZero(f, at[i-1], middle, at[i])
+				}
+				add(middle)
+			}
+		}
+		x := at[i]
+		if i < samples {
+			p, q, r := rate[i-1], rate[i], rate[i+1]
+			if p*q > 0 && q*r > 0 && math.Abs(q) <= math.Abs(p) && math.Abs(q) <= math.Abs(r) {
+				x = c.nearestZero(f, at[i-1], at[i], at[i+1])
+			}
+		}
+		add(x)
+	}
+	if math.IsInf(hi, 1) {
+		n++
+	}
+	knot[n] = hi
 	return n
 }
 
@@ -144,6 +171,8 @@ func samplePoint(lo, hi float64, i int) float64 {
 		return math.Ldexp(1, 3*(i-samples/2))
 	case math.IsInf(hi, 1):
 		return lo + math.Ldexp(lo, i-samples/2)
+	case i == samples:
+		return hi // rounding must not lead beyond
 	}
 	u := float64(i) / samples
 	return lo + (hi-lo)*(u*u*u*(10+u*(6*u-15)))

@@ -141,7 +141,7 @@ func (x *examiner) scan(name string, depths []float64, value func(float64) float
 		from, before := lo, 0.0
 		for i := 0; i <= n; i++ {
 			u := float64(i) / n
-			y := lo + (top-lo)*u*u*u
+			y := min(lo+(top-lo)*u*u*u, top)
 			if i == 0 {
 				y = above(lo)
 				if lo == 0 {
