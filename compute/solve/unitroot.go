@@ -6,6 +6,9 @@ import "math"
 // Functions of depth run like powers of it, so that their logarithms are nearly straight lines.
 type Ratio func(x float64) (ratio, power float64)
 
+// steep is the logarithmic slope above which the last places of x already tell in the function: there the end is looked for place by place.
+const steep = 32
+
 // mostSteps bounds the work of UnitRoot; the bisection inside it needs fewer than 80 for any bracket of floats.
 const mostSteps = 240
 
@@ -48,7 +51,7 @@ func UnitRoot(f Ratio, lo, hi, guess float64, rising bool) (x float64, ok bool) 
 		switch {
 		case d == 0 || !(d > -1.5 && d < 1.5) || step > 8 && step%3 == 0 && !(math.Abs(d) < 1e-9):
 			next = middle(lo, hi)
-		case step > 0 && math.Abs(e) < 1e-6 && e*e*max(0.02, math.Abs(e)/(before*before)) < 1e-17*min(1, math.Abs(power)):
+		case step > 0 && math.Abs(e) < 1e-6 && math.Abs(power) < steep && e*e*max(0.02, math.Abs(e)/(before*before)) < 1e-17*min(1, math.Abs(power)):
 			// Converging by squares, at the pace of the step before: what is left at next is below the last place. The first step tells no
 			// pace, and where the function is flat a small e is no small distance.
 			if next >= lo && next <= hi {
