@@ -18,7 +18,8 @@ type collocation struct {
 	far         float64
 	trace       *trace
 	width       float64 // of the last panel accepted
-	tails       floor   // of the panels refused at this place
+	overX       floor   // the tails of the panels over the chainage refused at this place
+	overY       floor   // and of those over the depth
 	slope       float64 // ddepth/dx to begin with, where the equation cannot tell it: at a control
 }
 
@@ -118,7 +119,7 @@ func (c *collocation) run() error {
 		if !v.a.Section.Closed() && c.y >= v.height {
 			return aboveLastRow
 		}
-		if !c.subcritical && v.a.Section.Closed() && c.y >= v.height*(1-1e-12) {
+		if !c.subcritical && v.a.Section.Closed() && c.y >= v.height*(1-1e-8) {
 			return nil // filled: the supercritical branch ends
 		}
 		if c.holds() || c.changeBranch() {
@@ -246,7 +247,7 @@ func (c *collocation) changeBranch() bool {
 func (c *collocation) advance(width float64) bool {
 	v := c.v
 	n, d := c.ahead()
-	c.tails = newFloor()
+	c.overX, c.overY = newFloor(), newFloor()
 	steep := math.IsNaN(c.slope) && math.Abs(d) < 0.3*v.cosine
 	whole := width
 	for range 60 {
@@ -387,7 +388,8 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 	}
 	s := newSeries(&f)
 	rise, _ := s.integral(1)
-	if !c.settled((math.Abs(s[order-1])+math.Abs(s[order-2]))/(math.Abs(rise)+0.1*c.y), noisyOverChainage) {
+	tail := (math.Abs(s[order-1]) + math.Abs(s[order-2])) / (math.Abs(rise) + 0.1*c.y)
+	if !(tail < settled || c.overX.reached(tail, noisyOverChainage)) {
 		return p, false
 	}
 	y1 := c.y + rise
@@ -424,11 +426,6 @@ func (c *collocation) piece(rise float64) (low, high float64) {
 
 // justAbove returns the next depth above another.
 func justAbove(depth float64) float64 { return math.Nextafter(depth, math.Inf(1)) }
-
-// settled reports whether the tail of a panel's series is small enough, or is the noise of the last places.
-func (c *collocation) settled(tail, noisy float64) bool {
-	return tail < settled || c.tails.reached(tail, noisy)
-}
 
 func (c *collocation) full(y float64) bool {
 	return c.v.a.Section.Closed() && y >= c.v.height
@@ -584,7 +581,7 @@ func (c *collocation) panelOverDepth(to float64) (p panel, ok bool) {
 		f[j] *= half
 	}
 	s := newSeries(&f)
-	if !c.settled(s.tail(), noisyOverDepth) {
+	if tail := s.tail(); !(tail < settled || c.overY.reached(tail, noisyOverDepth)) {
 		return p, false
 	}
 	whole, _ := s.integral(1)
