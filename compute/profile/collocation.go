@@ -113,7 +113,14 @@ func (c *collocation) run() error {
 			}
 		}
 		left := math.Abs(c.far - c.x)
-		if left == 0 || c.atEnd() {
+		if left == 0 {
+			return nil
+		}
+		if c.atEnd() {
+			n, _ := c.ahead()
+			if s := v.side(c.x); c.toNextBranch(c.y, c.rise(n) > 0, s.energy(c.y)) {
+				continue
+			}
 			return nil
 		}
 		if !v.a.Section.Closed() && c.y >= v.height {
@@ -219,20 +226,26 @@ func (c *collocation) changeBranch() bool {
 	if !rising { // it came from above the break
 		own, beyond = beyond, own
 	}
-	energy, found := s.motion.Energy(s.channel.Section.At(own)), math.NaN()
+	energy := s.motion.Energy(s.channel.Section.At(own))
 	if up, down := c.drift(c.x, b); up || down {
 		there := s.motion.Energy(s.channel.Section.At(beyond))
 		if up != rising || math.Abs(there-energy) <= 1e-12*energy {
 			return false
 		}
 	}
+	return c.toNextBranch(b, rising, energy)
+}
+
+// toNextBranch takes the sweep to the nearest depth beyond another, up or down, that has an energy on a branch of the regime. It reports whether there is one.
+func (c *collocation) toNextBranch(from float64, up bool, energy float64) bool {
+	s, found := c.v.side(c.x), math.NaN()
 	s.motion.EnergyBranches(func(e flow.Branch) bool {
-		if e.Rising != c.subcritical || rising && e.Hi <= b || !rising && e.Lo >= b {
+		if e.Rising != c.subcritical || up && e.Hi <= from || !up && e.Lo >= from {
 			return true
 		}
-		if depth, ok := onBranch(&s.motion, s.channel, e, energy); ok && (depth > b) == rising && math.Abs(depth-b) > 1e-12*b {
+		if depth, ok := onBranch(&s.motion, s.channel, e, energy); ok && (depth > from) == up && math.Abs(depth-from) > 1e-6*from {
 			found = depth
-			return !rising // going down, the last found is the nearest
+			return !up // going down, the last found is the nearest
 		}
 		return true
 	})
@@ -285,12 +298,15 @@ func (c *collocation) atEnd() bool {
 	if d *= c.sign(); d > 1e-3*c.v.cosine {
 		return false
 	}
-	if d <= atCritical*c.v.cosine && (c.rise(n) == -c.sign() || math.Abs(n) <= atCritical) {
+	// It is on its way to where 1 - F^2 vanishes if that shrinks ahead: downward on a branch above critical depth, upward on one below a maximum of the
+	// energy.
+	_, near := c.v.rates(c.x, c.y*(1+1e-7*c.rise(n)))
+	shrinks := d - near*c.sign()
+	if d <= atCritical*c.v.cosine && (shrinks > 0 || math.Abs(n) <= atCritical) {
 		return true
 	}
 	// Next to a crown the last places of the depth are coarse against F.
-	_, near := c.v.rates(c.x, c.y*(1-1e-7*c.sign()))
-	return c.rise(n) == -c.sign() && near*c.sign() < d && d < 0.1*(d-near*c.sign())
+	return shrinks > 0 && d < 0.1*shrinks
 }
 
 func (c *collocation) accept(p panel) {
@@ -516,12 +532,9 @@ func (c *collocation) crossed(p panel) (depth float64, crosses bool) {
 func (c *collocation) overDepth(n, d, width, share float64) (p panel, ok bool) {
 	rise := c.rise(n)
 	step := min(0.05*share*c.y, math.Abs(n/d)*width)
-	if rise == -c.sign() {
-		_, near := c.v.rates(c.x, c.y*(1+1e-7*rise))
-		gradient := (near - d) / (1e-7 * c.y) // with the way towards critical depth
-		if towards := math.Abs(d / gradient); gradient != 0 {
-			step = min(step, 0.9*towards)
-		}
+	_, near := c.v.rates(c.x, c.y*(1+1e-7*rise))
+	if shrinks := (d - near) * c.sign() / (1e-7 * c.y); shrinks > 0 { // towards where 1 - F^2 vanishes
+		step = min(step, 0.9*math.Abs(d)/shrinks)
 	}
 	to := c.y + rise*step
 	if b, crosses := c.crossed(panel{y0: c.y, y1: to}); crosses {
