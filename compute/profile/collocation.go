@@ -129,6 +129,12 @@ func (c *collocation) run() error {
 		if !c.subcritical && v.a.Section.Closed() && c.y >= v.height*(1-1e-8) {
 			return nil // filled: the supercritical branch ends
 		}
+		if c.subcritical && v.a.Section.Closed() && c.y == v.height {
+			full, _ := v.rates(c.x, c.y)
+			if _, d := v.rates(c.x, math.Nextafter(c.y, 0)); full*c.direction <= 0 && d <= 0 {
+				return nil // it falls from full to where there is no subcritical depth
+			}
+		}
 		if c.holds() || c.changeBranch() {
 			continue
 		}
