@@ -178,35 +178,11 @@ func samplePoint(lo, hi float64, i int) float64 {
 	return lo + (hi-lo)*(u*u*u*(10+u*(6*u-15)))
 }
 
-// nearestZero returns the depth between a and c at which the size of the rate is least, by golden sections, or the first depth met
+// nearestZero returns the depth between a and d at which the size of the rate, known to be less at b than at both, is least, or the first depth met
 // at which the rate has the other sign.
 func (c *Channel) nearestZero(f *curve, a, b, d float64) float64 {
-	const golden = 0.3819660112501051
-	best := f.rate(c.Section.At(b))
-	positive := best > 0
-	best = math.Abs(best)
-	for range 40 {
-		x := b + golden*(d-b)
-		if b-a > d-b {
-			x = b - golden*(b-a)
-		}
-		rate := f.rate(c.Section.At(x))
-		if (rate > 0) != positive {
-			return x
-		}
-		rate = math.Abs(rate)
-		switch {
-		case rate < best && x > b:
-			a, b, best = b, x, rate
-		case rate < best:
-			d, b, best = b, x, rate
-		case x > b:
-			d = x
-		default:
-			a = x
-		}
-	}
-	return b
+	sign := math.Copysign(1, f.rate(c.Section.At(b)))
+	return solve.Dip(func(depth float64) float64 { return sign * f.rate(c.Section.At(depth)) }, a, b, d)
 }
 
 // turn returns the depth between lo and hi at which the rate of a curve changes its sign: to rising or from it.

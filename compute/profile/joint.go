@@ -130,7 +130,7 @@ func (s *side) highest(b flow.Branch, f func(section.Geometry) float64) (depth f
 		return 0, false
 	}
 	if at(lo) > 0 {
-		if lo = dip(at, lo, hi); !(at(lo) <= 0) {
+		if lo = solve.Dip(at, lo, lo+(hi-lo)/2, hi); !(at(lo) <= 0) {
 			return 0, false
 		}
 	}
@@ -156,40 +156,12 @@ func (s *side) lowest(b flow.Branch, f func(section.Geometry) float64) (depth fl
 		return 0, false
 	}
 	if at(hi) > 0 {
-		if hi = dip(at, lo, hi); !(at(hi) <= 0) {
+		if hi = solve.Dip(at, lo, lo+(hi-lo)/2, hi); !(at(hi) <= 0) {
 			return 0, false
 		}
 	}
 	depth, _, ok = solve.RootSlopeless(at, lo, hi)
 	return depth, ok
-}
-
-// dip returns where a function that falls and then rises is least, or the first place met where it is not positive.
-func dip(f func(float64) float64, a, d float64) float64 {
-	const golden = 0.3819660112501051
-	b := a + golden*(d-a)
-	least := f(b)
-	for range 60 {
-		if least <= 0 {
-			return b
-		}
-		x := b + golden*(d-b)
-		if b-a > d-b {
-			x = b - golden*(b-a)
-		}
-		v := f(x)
-		switch {
-		case v < least && x > b:
-			a, b, least = b, x, v
-		case v < least:
-			d, b, least = b, x, v
-		case x > b:
-			d = x
-		default:
-			a = x
-		}
-	}
-	return b
 }
 
 // A joint is where one stretch ends and the next begins.
