@@ -8,9 +8,6 @@ func TwoThirds(x float64) float64 {
 	return root * root
 }
 
-// FiveThirds returns x^(5/3) for x >= 0.
-func FiveThirds(x float64) float64 { return x * TwoThirds(x) }
-
 // The natural logarithm of two in two parts: the first has 40 bits, so that its product with a binary exponent is exact.
 const (
 	lnTwoHigh = 0x1.62e42fefa2p-1

@@ -3,76 +3,8 @@ package solve
 import "math"
 
 // rootSteps bounds the evaluations of a search. Bisection of the binades and then of the digits of a float64
-// takes fewer than 1,100 + 53; a search that Newton serves takes about five.
+// takes fewer than 1,100 + 53.
 const rootSteps = 1300
-
-// Root finds a zero of f between lo and hi, at which f must have opposite signs (or be zero), from a first guess.
-// f returns its value and its slope. Newton steps are taken while they stay inside the bracket and at least halve every
-// second time; else the bracket is bisected, by its geometric mean while its ends differ by more than a factor of
-// eight. The search ends when a step is no longer than a unit in the last place or the ends of the bracket are neighbours, and
-// returns the one of the last two points with the smaller absolute value. ok is false if the signs at lo and hi
-// do not differ or f gives a NaN; x is then of no meaning. Where f jumps, x stands at the jump: callers who cannot exclude
-// jumps check the value there. (Safeguarded Newton: Press et al., Numerical Recipes, section 9.4.)
-func Root(f func(x float64) (value, slope float64), lo, hi, guess float64) (x float64, iterations int, ok bool) {
-	if !(lo < hi) {
-		return 0, 0, false
-	}
-	low, _ := f(lo)
-	if low == 0 {
-		return lo, 1, true
-	}
-	high, _ := f(hi)
-	if high == 0 {
-		return hi, 2, true
-	}
-	if !(low < 0 && high > 0 || low > 0 && high < 0) {
-		return 0, 2, false
-	}
-	x = guess
-	if !(x > lo && x < hi) {
-		x = halfway(lo, hi)
-	}
-	last, beforeLast := math.Inf(1), math.Inf(1)
-	for iterations = 3; iterations < rootSteps; iterations++ {
-		value, slope := f(x)
-		if value != value {
-			return 0, iterations, false
-		}
-		if value == 0 {
-			return x, iterations, true
-		}
-		if (value < 0) == (low < 0) {
-			lo, low = x, value
-		} else {
-			hi, high = x, value
-		}
-		next := x - value/slope
-		step := math.Abs(next - x)
-		// A step that no longer moves x by more than a unit in the last place: look once at where it leads and stop.
-		if step <= math.Abs(x)*0x1p-52 && next >= lo && next <= hi {
-			if next != x {
-				iterations++
-				if there, _ := f(next); math.Abs(there) < math.Abs(value) {
-					return next, iterations, true
-				}
-			}
-			return x, iterations, true
-		}
-		if !(next > lo && next < hi) || step > 0.5*beforeLast {
-			next = halfway(lo, hi)
-			if next <= lo || next >= hi {
-				break
-			}
-			step = hi - lo
-		}
-		beforeLast, last = last, step
-		x = next
-	}
-	if math.Abs(low) < math.Abs(high) {
-		return lo, iterations, true
-	}
-	return hi, iterations, true
-}
 
 // halfway returns a point that halves the bracket: in the logarithm where its ends have one sign and are far apart.
 func halfway(lo, hi float64) float64 {
@@ -89,7 +21,8 @@ func halfway(lo, hi float64) float64 {
 // inverse quadratic interpolation where the last three points allow it, else by bisection (T. R. Chandrupatla, A new
 // hybrid quadratic/bisection algorithm for finding the zero of a nonlinear function without using derivatives,
 // Advances in Engineering Software 28, 1997). It goes on until the ends of the bracket are neighbours or f is zero
-// and returns the end with the smaller absolute value. ok is as in Root.
+// and returns the end with the smaller absolute value. ok is false if the signs at lo and hi
+// do not differ or f gives a NaN; x is then of no meaning. Where f jumps, x stands at the jump: callers who cannot exclude jumps check the value there.
 func RootSlopeless(f func(x float64) float64, lo, hi float64) (x float64, iterations int, ok bool) {
 	if !(lo < hi) {
 		return 0, 0, false
