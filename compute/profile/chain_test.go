@@ -42,7 +42,7 @@ func show(t *testing.T, name, story string, run *Run) *Answer {
 	if got := strings.Join(told, " "); got != story {
 		t.Errorf("%s: %s, want %s", name, got, story)
 	}
-	if !(a.Balance.Energy < 1e-7) || !(a.Balance.Momentum < 1e-11) {
+	if !(a.Balance.Energy < 1e-9) || !(a.Balance.Momentum < 1e-11) {
 		t.Errorf("%s: balance %+v", name, a.Balance)
 	}
 	return a

@@ -422,7 +422,7 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 	if _, d := v.rates(x1, y1); !(y1 > 0) || !(d*c.sign() > 0) {
 		return p, false
 	}
-	return panel{x0: c.x, x1: x1, y0: c.y, y1: y1, form: overChainage, s: s, full: c.full(y[order/2])}, true
+	return panel{x0: c.x, x1: x1, y0: c.y, y1: y1, form: overChainage, s: s}, true
 }
 
 // piece returns the depths of the breaks below and above the depth of the sweep, as it sets out to rise or to fall.
@@ -448,10 +448,6 @@ func (c *collocation) piece(rise float64) (low, high float64) {
 
 // justAbove returns the next depth above another.
 func justAbove(depth float64) float64 { return math.Nextafter(depth, math.Inf(1)) }
-
-func (c *collocation) full(y float64) bool {
-	return c.v.a.Section.Closed() && y >= c.v.height
-}
 
 // stopAtBreak shortens a panel that crosses a break of the section or the roughness, or the crown, so that it ends there: nothing is smooth across. It is ok
 // where nothing is crossed.

@@ -107,7 +107,7 @@ const (
 
 func (s *sweeper) run() error {
 	if s.p.length == 0 {
-		s.straight(s.far, s.y, s.full())
+		s.straight(s.far, s.y)
 		return nil
 	}
 	most := mostPanels + panelsAtBreak*len(s.p.branches)
@@ -122,7 +122,7 @@ func (s *sweeper) run() error {
 		}
 		switch b, moves := s.where(); {
 		case moves == pinned || moves == held:
-			s.straight(s.far, s.y, s.full())
+			s.straight(s.far, s.y)
 			s.trace.panels[len(s.trace.panels)-1].held = moves == held
 			return nil
 		case moves == ended:
@@ -144,8 +144,8 @@ func (s *sweeper) run() error {
 func (s *sweeper) full() bool { return s.p.channel.Section.Closed() && s.y >= s.p.height }
 
 // straight adds a panel on which the depth is linear.
-func (s *sweeper) straight(x, y float64, full bool) {
-	s.trace.panels = append(s.trace.panels, panel{x0: s.x, x1: x, y0: s.y, y1: y, form: straight, full: full})
+func (s *sweeper) straight(x, y float64) {
+	s.trace.panels = append(s.trace.panels, panel{x0: s.x, x1: x, y0: s.y, y1: y, form: straight})
 	s.x, s.y = x, y
 }
 
@@ -226,7 +226,7 @@ func (s *sweeper) pressure() {
 	slope := p.steepness(p.channel.Geometry(s.y)) / p.channel.Cosine()
 	y := s.y + slope*(s.far-s.x)
 	if y >= p.height {
-		s.straight(s.far, y, true)
+		s.straight(s.far, y)
 		return
 	}
 	x := s.x + (p.height-s.y)/slope
@@ -234,7 +234,7 @@ func (s *sweeper) pressure() {
 		x = s.far
 	}
 	s.rise = -1
-	s.straight(x, p.height, true)
+	s.straight(x, p.height)
 }
 
 // along integrates the curve on a branch until the stretch or the branch ends. It reports whether the sweep may go on.
@@ -263,7 +263,7 @@ func (s *sweeper) along(b flow.Branch) (on bool, err error) {
 		}
 		if !math.IsNaN(pole) && (math.Abs(s.y-pole) <= 2e-16*pole || s.criticallyNear(pole)) {
 			s.y = pole
-			s.straight(s.far, pole, false)
+			s.straight(s.far, pole)
 			return false, nil
 		}
 		reached := s.step(b, stop, !math.IsNaN(pole))
@@ -331,10 +331,10 @@ func (s *sweeper) hop(stop float64) bool {
 	run := math.Abs(p.motion.EnergyRate(g) / p.steepness(g) * (stop - s.y))
 	x := s.x + s.direction*run
 	if !(s.direction*(x-s.far) < 0) {
-		s.straight(s.far, s.y, false)
+		s.straight(s.far, s.y)
 		return true
 	}
-	s.straight(x, stop, false)
+	s.straight(x, stop)
 	return true
 }
 

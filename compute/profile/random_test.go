@@ -18,7 +18,7 @@ import (
 	"leat/compute/solve"
 )
 
-var randomChains = flag.Int("chains", 1500, "how many random chains TestRandomChains solves")
+var randomChains = flag.Int("chains", 3000, "how many random chains TestRandomChains solves")
 
 // dice returns a channel whose size fits a discharge, so that most chains have a story to tell.
 func dice(r *rand.Rand) (flow.Channel, error) {

@@ -44,7 +44,6 @@ type panel struct {
 	chart  chart
 	u0, u1 float64
 	s      series // of the derivative, with t, of the chainage (overDepth) or of the depth (overChainage); t runs from -1 at the start to 1 at the end
-	full   bool   // a closed section flowing full
 	held   bool   // the depth stands at a break where the conveyance jumps: friction below it would take less than the bed gives, above it more
 }
 
