@@ -47,7 +47,7 @@ func FuzzRoutes(f *testing.F) {
 	f.Fuzz(func(t *testing.T, method, path, query, media, accept string, body []byte) {
 		request, err := http.NewRequest(method, "http://leat/", bytes.NewReader(body))
 		if err != nil {
-			t.Skip("no method")
+			return // no method, so no request
 		}
 		request.URL.Path, request.URL.RawQuery = path, query
 		request.Header.Set("Content-Type", media)
