@@ -1,0 +1,68 @@
+package wire
+
+import "reflect"
+
+// A Form is what JSON a member's value is.
+type Form uint8
+
+// The forms.
+const (
+	FormNumber Form = iota
+	FormWhole       // a whole number
+	FormBool
+	FormName    // one of a few names
+	FormID      // a string or a number
+	FormList    // an array of numbers, of tuples or of objects
+	FormNumbers // an object of numbers under names of the caller's
+	FormAny     // any value
+)
+
+// A MemberDescription says of a member of a request what a program that writes requests needs to know.
+type MemberDescription struct {
+	Path     []string // names, from the top of the request
+	Form     Form
+	Quantity Quantity // of a number, or of those of a FormNumbers
+	Names    []string // that a FormName may have
+	Variants []string // kinds or laws it belongs to; none for all of them
+}
+
+// DescribeRequest lists the members of a request that are values, in the order of the contract; objects are gone into, lists are not.
+func DescribeRequest(request Request) []MemberDescription {
+	return plans[reflect.TypeOf(request).Elem()].describe(nil, nil)
+}
+
+func (p *plan) describe(above []string, out []MemberDescription) []MemberDescription {
+	for i := range p.fields {
+		f := &p.fields[i]
+		path := append(above[:len(above):len(above)], f.name)
+		if f.shape == shapeObject {
+			out = f.sub.describe(path, out)
+			continue
+		}
+		out = append(out, MemberDescription{Path: path, Form: f.shape.form(), Quantity: f.quantity[0], Names: f.enum, Variants: f.variants})
+	}
+	return out
+}
+
+func (s shape) form() Form {
+	switch s {
+	case shapeNumber:
+		return FormNumber
+	case shapeWhole:
+		return FormWhole
+	case shapeBool:
+		return FormBool
+	case shapeName:
+		return FormName
+	case shapeID:
+		return FormID
+	case shapeNamed:
+		return FormNumbers
+	case shapeRaw:
+		return FormAny
+	}
+	return FormList
+}
+
+// Nearest returns the known name that a misspelt one most likely stands for, if there is one.
+func Nearest(name string, known []string) (string, bool) { return nearest(name, known) }
