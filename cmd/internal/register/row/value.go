@@ -137,4 +137,23 @@ type Column struct {
 	Declared string
 	// Geometry is how the geometries of this column are coded: "geojson", "geopackage", "ewkb"; empty where it holds none.
 	Geometry string
+	// Spatial is what its table says of its geometries; nil where it says nothing.
+	Spatial *Spatial
+}
+
+// Spatial is what a table says of the geometries in one of its columns.
+type Spatial struct {
+	Type   string // of the simple features standard, in capitals: "LINESTRING", "GEOMETRY"
+	Z, M   int    // 0: none has such an ordinate, 1: all have, 2: some have
+	System ReferenceSystem
+}
+
+// A ReferenceSystem says what coordinates mean.
+type ReferenceSystem struct {
+	ID           int64  // in its own file or database
+	Name         string // for people
+	Organization string // "EPSG", "NONE"
+	Code         int64  // the organization's number
+	Definition   string // well-known text
+	Description  string
 }
