@@ -21,6 +21,8 @@ type Operation struct {
 	Name string
 	// Form is an answer without content of the type that the operation gives: its methods say in which forms beside JSON answers can be told.
 	Form wire.Answer
+	// Request is a nil pointer to the type of request that the operation takes: its flat names follow from it.
+	Request wire.Request
 	// Long says that requests may be long and their solves take a while.
 	Long bool
 	// Solve decodes one request object, checks it and solves it. With a problem, which is without Instance, what it returns holds

@@ -13,7 +13,7 @@ var Profile = newProfile(profile.Solve)
 
 // newProfile returns the operation with a solver.
 func newProfile(solve func(*profile.Run) (*profile.Answer, error)) Operation {
-	return Operation{Name: "profile", Form: (*wire.ProfileAnswer)(nil), Long: true, Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
+	return Operation{Name: "profile", Form: (*wire.ProfileAnswer)(nil), Request: (*wire.ProfileRequest)(nil), Long: true, Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 		var request wire.ProfileRequest
 		return run(body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
 			p, problem := newProfileRun(&request, options)

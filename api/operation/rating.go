@@ -9,7 +9,7 @@ import (
 )
 
 // Rating is the operation rating: a depth-discharge table.
-var Rating = Operation{Name: "rating", Form: (*wire.RatingAnswer)(nil), Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
+var Rating = Operation{Name: "rating", Form: (*wire.RatingAnswer)(nil), Request: (*wire.RatingRequest)(nil), Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 	var request wire.RatingRequest
 	return run(body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
 		return solveRating(&request)

@@ -24,6 +24,7 @@ var symbols = map[string][]string{
 	"d":       {"diameter"},
 	"dn":      {"diameter"},
 	"s":       {"bed_slope"},
+	"slope":   {"bed_slope"},
 	"s0":      {"bed_slope"},
 	"so":      {"bed_slope"},
 	"y":       {"depth"},
