@@ -51,6 +51,8 @@ func (a fixedAnswer) AppendJSON(dst []byte, _ wire.System, _ wire.ID) []byte {
 	return append(dst, a...)
 }
 
+func (a fixedAnswer) SetFingerprint(string) {}
+
 func pump(t testing.TB, f Format, body io.Reader) (string, stream.Summary) {
 	t.Helper()
 	var out bytes.Buffer

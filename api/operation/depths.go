@@ -10,7 +10,7 @@ import (
 // Depths is the operation depths: the characteristic depths of one section.
 var Depths = Operation{Name: "depths", Form: (*wire.DepthsAnswer)(nil), Request: (*wire.DepthsRequest)(nil), Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 	var request wire.DepthsRequest
-	return run(body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
+	return run("depths", body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
 		return solveDepths(&request, options.Brief)
 	})
 }}

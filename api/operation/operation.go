@@ -10,6 +10,8 @@ type Options struct {
 	Inside bool         // put the id inside the answer object (unary); in bulk it stands beside it
 	Limits *wire.Limits // nil for the defaults
 
+	Fingerprint bool // ?fingerprint=true: the answer tells its request's fingerprint
+
 	// Begin, unless nil, is called where a solve begins that may take long. What it returns is called at least every 0.1 ms of the
 	// solve, and an error of it ends the solve: where that is a *wire.Problem, it is the request's.
 	Begin func() (checkpoint func() error)
@@ -40,11 +42,24 @@ func (o *Operation) Answer(dst, body []byte, options Options) (answer []byte, id
 	return solved.AppendJSON(dst, options.Inside), solved.ID, nil
 }
 
+// Fingerprint returns the fingerprint that Solve would give a request, without solving it: that of the answer that is kept for the same
+// request, if there is one. A request that is not JSON as the contract accepts it has none, and a problem; whether it keeps all
+// other rules is for Solve to say.
+func (o *Operation) Fingerprint(body []byte, options Options) (string, *wire.Problem) {
+	system, problem := wire.Scan(body, options.Units, options.limits())
+	if problem != nil {
+		return "", problem
+	}
+	return wire.Fingerprint(o.Name, body, system), nil
+}
+
 // Solved is the answer to one request, with what its forms need beside it.
 type Solved struct {
 	Answer wire.Answer
 	Units  wire.System // of the request, in which the answer is told
 	ID     wire.ID     // of the request; a part of its body
+
+	Fingerprint string // of the request; empty where it was not asked for
 }
 
 // AppendJSON appends the answer object, with the id inside it or without.
@@ -61,18 +76,26 @@ func All() []*Operation { return []*Operation{&Section, &Depths, &Rating, &Profi
 // defaultLimits hold where a caller sets none.
 var defaultLimits = wire.DefaultLimits()
 
-// run is the path that every operation takes: decode into request, solve it.
-func run(body []byte, options Options, request wire.Request, common *wire.Common, solve func() (wire.Answer, *wire.Problem)) (Solved, *wire.Problem) {
-	limits := options.Limits
-	if limits == nil {
-		limits = &defaultLimits
+func (o *Options) limits() *wire.Limits {
+	if o.Limits == nil {
+		return &defaultLimits
 	}
-	if problem := wire.Decode(body, options.Units, limits, request); problem != nil {
+	return o.Limits
+}
+
+// run is the path that every operation takes: decode into request, solve it.
+func run(name string, body []byte, options Options, request wire.Request, common *wire.Common, solve func() (wire.Answer, *wire.Problem)) (Solved, *wire.Problem) {
+	if problem := wire.Decode(body, options.Units, options.limits(), request); problem != nil {
 		return Solved{ID: common.ID}, problem
 	}
 	answer, problem := solve()
 	if problem != nil {
 		return Solved{ID: common.ID}, problem
 	}
-	return Solved{answer, common.System, common.ID}, nil
+	solved := Solved{Answer: answer, Units: common.System, ID: common.ID}
+	if options.Fingerprint {
+		solved.Fingerprint = wire.Fingerprint(name, body, solved.Units)
+		answer.SetFingerprint(solved.Fingerprint)
+	}
+	return solved, nil
 }

@@ -15,7 +15,7 @@ var Profile = newProfile(profile.Solve)
 func newProfile(solve func(*profile.Run) (*profile.Answer, error)) Operation {
 	return Operation{Name: "profile", Form: (*wire.ProfileAnswer)(nil), Request: (*wire.ProfileRequest)(nil), Long: true, Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 		var request wire.ProfileRequest
-		return run(body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
+		return run("profile", body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
 			p, problem := newProfileRun(&request, options)
 			if problem != nil {
 				return nil, problem

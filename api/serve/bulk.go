@@ -35,7 +35,7 @@ func (s *Server) bulk(op *operation.Operation) gin.HandlerFunc {
 			s.refuse(c, aboutToStop())
 			return
 		}
-		options, _, problem := s.admit(c, mediaNDJSON, mediaNDJSON)
+		options, _, problem := s.admit(c, operation.Options{}, mediaNDJSON, mediaNDJSON)
 		if problem != nil {
 			s.refuse(c, problem)
 			return

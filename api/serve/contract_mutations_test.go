@@ -403,7 +403,7 @@ func unsaid(t *testing.T, answer []byte) []string {
 // sameInBulk sends all bodies as one stream and wants of each line what unary answered.
 func sameInBulk(t *testing.T, s *service, op string, bodies, answers [][]byte) {
 	t.Helper()
-	status, stream := s.post("/v1/bulk/"+op, ndjsonMedia, append(bytes.Join(bodies, []byte("\n")), '\n'))
+	status, stream := s.post("/v1/bulk/"+op+"?fingerprint=true", ndjsonMedia, append(bytes.Join(bodies, []byte("\n")), '\n'))
 	if status != 200 {
 		t.Fatalf("bulk: %d %s", status, stream)
 	}

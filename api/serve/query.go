@@ -25,12 +25,12 @@ var parameters = []parameter{
 			o.Units = wire.US
 		}
 	}},
+	{"fingerprint", []string{"true", "false"}, func(o *operation.Options, v string) { o.Fingerprint = v == "true" }},
 }
 
-// readQuery reads an operation's query parameters. Its problem names every fault: an unknown name, an unknown value, a name given
-// twice, text that is no query.
-func readQuery(raw string) (operation.Options, *wire.Problem) {
-	var options operation.Options
+// readQuery reads an operation's query parameters into options that hold the defaults. Its problem names every fault: an unknown
+// name, an unknown value, a name given twice, text that is no query.
+func readQuery(raw string, options operation.Options) (operation.Options, *wire.Problem) {
 	if raw == "" {
 		return options, nil
 	}

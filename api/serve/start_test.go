@@ -63,6 +63,8 @@ type fakeAnswer []byte
 
 func (a fakeAnswer) AppendJSON(dst []byte, _ wire.System, _ wire.ID) []byte { return append(dst, a...) }
 
+func (a fakeAnswer) SetFingerprint(string) {}
+
 // A running server and what a test wants to know of it.
 type running struct {
 	*Server

@@ -47,7 +47,7 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 	}
 	turns := newTurns() // of its own, so that long solves do not keep short ones waiting
 	return func(c *gin.Context) {
-		options, accepted, problem := s.admit(c, mediaJSON, offers...)
+		options, accepted, problem := s.admit(c, operation.Options{Fingerprint: true}, mediaJSON, offers...)
 		if problem != nil {
 			s.refuse(c, problem)
 			return
@@ -111,8 +111,9 @@ func answerAs(op *operation.Operation, forms []format.Rendering, accepted string
 }
 
 // admit checks all that a POST says before its body: query, media type, and which of the offered media types it accepts.
-func (s *Server) admit(c *gin.Context, media string, offers ...string) (options operation.Options, accepted string, problem *wire.Problem) {
-	options, problem = readQuery(c.Request.URL.RawQuery)
+// defaults are the options where the query says nothing of them.
+func (s *Server) admit(c *gin.Context, defaults operation.Options, media string, offers ...string) (options operation.Options, accepted string, problem *wire.Problem) {
+	options, problem = readQuery(c.Request.URL.RawQuery, defaults)
 	options.Limits = &s.limits
 	if problem == nil {
 		problem = checkMedia(c.Request.Header, c.Writer.Header(), media)

@@ -70,7 +70,7 @@ func TestRefusals(t *testing.T) {
 		{name: "several faults", method: "POST", path: "/v1/depths?units=x&detail=y&z=1", status: 400, parameters: []string{"units", "detail", "z"}},
 		{name: "bad escape", method: "POST", path: "/v1/depths?units=%7", status: 400, parameters: []string{"units"}},
 		{name: "semicolon", method: "POST", path: "/v1/depths?units=us;detail=brief", status: 400, parameters: []string{"units"}},
-		{name: "fingerprint is not offered yet", method: "POST", path: "/v1/depths?fingerprint=true", status: 400, parameters: []string{"fingerprint"}},
+		{name: "fingerprint by another word", method: "POST", path: "/v1/depths?fingerprint=yes", status: 400, says: []string{"true, false", `"yes"`}, parameters: []string{"fingerprint"}},
 		{name: "bulk parameter", method: "POST", path: "/v1/bulk/depths?flat=true", headers: []string{"Content-Type", ndjson}, status: 400, parameters: []string{"flat"}},
 
 		{name: "no type", method: "POST", path: "/v1/depths", body: `{}`, headers: []string{"Content-Type", ""}, status: 415, says: []string{"no Content-Type", "application/json"}, header: "Accept", value: "application/json"},

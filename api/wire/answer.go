@@ -4,4 +4,6 @@ package wire
 type Answer interface {
 	// AppendJSON appends the answer as an object in a system of units; id stands in front where it is not nil.
 	AppendJSON(dst []byte, system System, id ID) []byte
+	// SetFingerprint sets the fingerprint that the answer is told with: see Traced.
+	SetFingerprint(fingerprint string)
 }

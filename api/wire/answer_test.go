@@ -143,7 +143,7 @@ func TestDepthsAnswer(t *testing.T) {
 		t.Errorf("brief: got %s\nwant %s", got, want)
 	}
 
-	open := DepthsAnswer{NormalDepth: nan, NormalAbsent: "x", CriticalDepth: 1, Fill: nan, Freeboard: nan, Fingerprint: "0123"}
+	open := DepthsAnswer{NormalDepth: nan, NormalAbsent: "x", CriticalDepth: 1, Fill: nan, Freeboard: nan, Traced: Traced{"0123"}}
 	got := string(open.AppendJSON(nil, US, ID("7.50")))
 	want := `{"id":7.50,"units":"us","fingerprint":"0123","normal_depth":null,"critical_depth":3.280839895013123` +
 		`,"normal_absent":"x","normal_velocity":0,"normal_froude_number":0,"normal_bed_shear_stress":0,"fill":null,"slope_class":null,"critical_slope":0,` +

@@ -35,6 +35,21 @@ func Decode(body []byte, units System, limits *Limits, into Request) *Problem {
 	return problem
 }
 
+// Scan judges whether a body is JSON as the contract accepts it, without reading it as a request, and returns the system of units in
+// force in it: that of the call, or the one that it names. What Decode accepts, Scan accepts.
+func Scan(body []byte, units System, limits *Limits) (System, *Problem) {
+	d := decodings.Get().(*decoding)
+	var problem *Problem
+	if d.scanner.scan(body, limits) {
+		units = d.scanner.system(units)
+	} else {
+		problem = d.scanner.fault.problem(body)
+	}
+	d.scanner.release()
+	decodings.Put(d)
+	return units, problem
+}
+
 func (d *decoding) decode(body []byte, units System, limits *Limits, into Request) *Problem {
 	v := reflect.ValueOf(into).Elem()
 	p := plans[v.Type()]
@@ -45,19 +60,7 @@ func (d *decoding) decode(body []byte, units System, limits *Limits, into Reques
 		common.ID = d.scanner.topID()
 		return d.scanner.fault.problem(body)
 	}
-	switch named := d.scanner.units.in(body); {
-	case string(named) == `"si"`:
-		units = SI
-	case string(named) == `"us"`:
-		units = US
-	case len(named) > 4: // perhaps escaped
-		if name, err := jsontext.AppendUnquote(nil, named); err == nil {
-			if system, known := SystemNamed(string(name)); known {
-				units = system
-			}
-		}
-	}
-
+	units = d.scanner.system(units)
 	d.walk.start(body, units, limits, false)
 	d.walk.object(p, v)
 	common.System = units
@@ -104,6 +107,23 @@ func covered(faults []Fault, pointer string) bool {
 		}
 	}
 	return false
+}
+
+// system returns the system of units in force in what was scanned: the one given, unless the top names another.
+func (s *scanner) system(units System) System {
+	switch named := s.units.in(s.data); {
+	case string(named) == `"si"`:
+		return SI
+	case string(named) == `"us"`:
+		return US
+	case len(named) > 4: // perhaps escaped
+		if name, err := jsontext.AppendUnquote(nil, named); err == nil {
+			if system, known := SystemNamed(string(name)); known {
+				return system
+			}
+		}
+	}
+	return units
 }
 
 // topID returns the id that the scanner has come across, if it is one.

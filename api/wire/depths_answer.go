@@ -2,6 +2,7 @@ package wire
 
 // DepthsAnswer answers a DepthsRequest, in SI units. A number that cannot be given is NaN and written null.
 type DepthsAnswer struct {
+	Traced
 	Brief bool // leave out the lists Normal and Critical
 
 	NormalDepth, CriticalDepth float64 // the lowest
@@ -25,8 +26,7 @@ type DepthsAnswer struct {
 
 	Given DepthsGiven
 
-	Warnings    []Warning
-	Fingerprint string // left out where empty
+	Warnings []Warning
 }
 
 // Capacity is the most a section carries in uniform flow up to its bank or crown.

@@ -2,6 +2,7 @@ package wire
 
 // ProfileAnswer answers a ProfileRequest, in SI units. A number that cannot be given is NaN and written null.
 type ProfileAnswer struct {
+	Traced
 	Stations []ProfileStation
 	Reaches  []ProfileReach
 	Curves   []ProfileCurve
@@ -13,8 +14,6 @@ type ProfileAnswer struct {
 	// Geometry is the line that the request gave, if any, along which the run of Length m lies.
 	Geometry *Geometry
 	Length   float64
-
-	Fingerprint string // left out where empty
 }
 
 // ProfileStation is one place of a profile.

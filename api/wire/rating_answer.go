@@ -2,9 +2,9 @@ package wire
 
 // RatingAnswer answers a RatingRequest.
 type RatingAnswer struct {
-	States      []State
-	Warnings    []Warning
-	Fingerprint string // left out where empty
+	Traced
+	States   []State
+	Warnings []Warning
 }
 
 // AppendJSON appends the answer in a system of units; id stands in front where it is not nil.

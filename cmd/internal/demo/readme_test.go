@@ -32,7 +32,7 @@ func TestReadmeShowsRealAnswers(t *testing.T) {
 	}
 	instance := regexp.MustCompile(`"instance":"[^"]*",`)
 	for _, s := range shown {
-		options := operation.Options{Brief: strings.Contains(string(s[1]), "detail=brief"), Inside: true}
+		options := operation.Options{Brief: strings.Contains(string(s[1]), "detail=brief"), Inside: true, Fingerprint: true}
 		got, _, problem := operationNamed(t, string(s[2])).Answer(nil, s[3], options)
 		if problem != nil {
 			got = problem.AppendJSON(nil)
