@@ -8,6 +8,9 @@ const sendBytes = 32 << 10
 // sendAll is the sender: it writes to Output what the spool holds, and flushes when it holds no more.
 func (r *run) sendAll() {
 	defer close(r.delivered)
+	if !r.wait() {
+		return
+	}
 	held := false // something is written and not flushed
 	for r.ctx.Err() == nil {
 		p, err := r.spool.take()
@@ -35,6 +38,33 @@ func (r *run) sendAll() {
 		case <-r.ctx.Done():
 		}
 	}
+}
+
+// wait waits, where the output is to be held, until all of it is known or too much waits, and reports whether it is to be sent.
+func (r *run) wait() bool {
+	if r.Held == nil {
+		return true
+	}
+	r.holding.Store(true)
+	defer r.holding.Store(false)
+	for r.ctx.Err() == nil {
+		switch size, ended, over := r.spool.state(); {
+		case over:
+			return r.Held(nil, 0)
+		case ended:
+			summary := r.summary // the writer is done with it
+			if r.Held(&summary, size) {
+				return true
+			}
+			r.whole.Store(true)
+			return false
+		}
+		select {
+		case <-r.spool.filled:
+		case <-r.ctx.Done():
+		}
+	}
+	return false
 }
 
 // send writes a page and recycles it.

@@ -17,6 +17,7 @@ type spool struct {
 	tail   *page // the youngest bytes, or nil
 	size   int64 // bytes waiting, tail included
 	memory int64 // pages of queue in memory
+	over   bool  // more waited at once than the memory's bound
 	full   bool  // the file failed or the store has no room: nothing more is accepted
 	ended  bool  // nothing will be put any more
 
@@ -57,7 +58,19 @@ func (s *spool) fits(size int64) bool {
 	if s.store.folder != "" {
 		bound += s.store.file
 	}
-	return !s.full && (s.size == 0 || s.size+size <= bound)
+	if !s.full && (s.size == 0 || s.size+size <= bound) {
+		return true
+	}
+	s.over = true
+	signal(s.filled) // to a sender that holds back
+	return false
+}
+
+// state returns how much waits, whether that is all, and whether it ever was more than the memory's bound.
+func (s *spool) state() (size int64, ended, over bool) {
+	s.mutex.Lock()
+	defer s.mutex.Unlock()
+	return s.size, s.ended, s.over
 }
 
 func (s *spool) append(data []byte) {
@@ -69,6 +82,7 @@ func (s *spool) append(data []byte) {
 		n := copy(s.tail.data[s.tail.n:], data)
 		s.tail.n += n
 		s.size += int64(n)
+		s.over = s.over || s.size > s.store.memory
 		filled := s.tail
 		if filled.n == pageSize {
 			s.tail = nil

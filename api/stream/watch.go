@@ -70,7 +70,7 @@ func (r *run) watchStall() {
 	switch {
 	case r.inside.write.Load() || r.inside.room.Load():
 		r.abort(ErrStalled)
-	case r.pending.Load() > 0 || r.spool.waits():
+	case r.pending.Load() > 0 || r.spool.waits() && !r.holding.Load():
 		// Being solved, or about to be sent: not the client's doing.
 	default:
 		r.stop.ask(Idle)
