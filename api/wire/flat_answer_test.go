@@ -70,7 +70,7 @@ func TestFlatAnswersAreTheNestedOnes(t *testing.T) {
 		NormalDepth: 0.7, CriticalDepth: 0.3, NormalVelocity: 1.1, NormalFroudeNumber: 0.4, NormalBedShearStress: 9.3, Fill: 0.77, SlopeClass: "mild",
 		CriticalSlope: 0.004, Capacity: Capacity{Known: true, Discharge: 3, Depth: 0.8, FullDischarge: 2.9, Ratio: 0.5}, Freeboard: 0.2, Closed: true,
 		FullFrictionSlope: 0.001, Given: DepthsGiven{Present: true, State: state, AlternateDepth: 0.9, SequentDepth: 0.8, Curve: "M3"},
-		Normal: []State{state}, Critical: []State{state}, Fingerprint: "0f", Warnings: []Warning{{Code: "overtopped", Detail: "It overtops."}},
+		Normal: []State{state}, Critical: []State{state}, Traced: Traced{"0f"}, Warnings: []Warning{{Code: "overtopped", Detail: "It overtops."}},
 	}
 	bare := &DepthsAnswer{
 		NormalDepth: math.NaN(), CriticalDepth: math.Inf(1), NormalAbsent: "The bed is horizontal.", NormalVelocity: math.NaN(), NormalFroudeNumber: math.NaN(),
