@@ -20,6 +20,7 @@ type Config struct {
 	Reaches      int           // of a profile
 	Stations     int           // of a profile
 	ReportPoints int           // places at which a profile reports
+	Flows        int           // named flows of an appraisal
 	TimeLimit    time.Duration // longest time of one calculation
 
 	IdleLimit   time.Duration // a bulk stream without progress in either direction is cut after this
@@ -46,6 +47,7 @@ func Default() Config {
 		Reaches:      limits.Reaches,
 		Stations:     limits.Stations,
 		ReportPoints: limits.ReportPoints,
+		Flows:        limits.Flows,
 		TimeLimit:    10 * time.Second,
 		IdleLimit:    30 * time.Second,
 		SpoolDir:     os.TempDir(),

@@ -56,11 +56,14 @@ func contractUnits(t *testing.T) map[string]unitPair {
 		if s.Value.PrefixItems == nil {
 			visit(name, s.Value.Items)
 		}
+		if named := s.Value.AdditionalProperties.Schema; named != nil {
+			visit(name, named)
+		}
 		for _, p := range s.Value.OneOf {
 			visit(name, p)
 		}
 	}
-	for _, name := range []string{"SectionRequest", "DepthsRequest", "RatingRequest", "ProfileRequest", "SectionAnswer", "DepthsAnswer", "RatingAnswer", "ProfileAnswer"} {
+	for _, name := range []string{"SectionRequest", "DepthsRequest", "RatingRequest", "ProfileRequest", "AppraisalRequest", "SectionAnswer", "DepthsAnswer", "RatingAnswer", "ProfileAnswer", "AppraisalAnswer"} {
 		visit("", contract.Document.Components.Schemas[name])
 	}
 	if len(out) < 60 {

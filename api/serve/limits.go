@@ -17,6 +17,7 @@ type limitsDocument struct {
 	Reaches          int     `json:"reaches,omitzero"`
 	Stations         int     `json:"stations,omitzero"`
 	ReportPoints     int     `json:"report_points,omitzero"`
+	Flows            int     `json:"flows"`
 	TimeLimitSeconds float64 `json:"time_limit_seconds"`
 	IdleLimitSeconds float64 `json:"idle_limit_seconds"`
 	SpoolBytes       int64   `json:"spool_bytes"`
@@ -30,6 +31,7 @@ func (s *Server) limitsDocument() limitsDocument {
 		HeldBytes:        s.config.HeldBytes,
 		ArrayItems:       s.limits.ArrayItems,
 		Points:           s.limits.Points,
+		Flows:            s.limits.Flows,
 		TimeLimitSeconds: s.config.TimeLimit.Seconds(),
 		IdleLimitSeconds: s.config.IdleLimit.Seconds(),
 		SpoolBytes:       s.config.SpoolBytes,

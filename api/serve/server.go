@@ -66,7 +66,7 @@ func New(config Config, operations []*operation.Operation, around Surroundings) 
 		known:      around.Ready,
 		bodies:     newLarder(config.HeldBytes),
 		limits: wire.Limits{
-			ArrayItems: config.ArrayItems, Points: config.Points, Reaches: config.Reaches, Stations: config.Stations, ReportPoints: config.ReportPoints,
+			ArrayItems: config.ArrayItems, Points: config.Points, Reaches: config.Reaches, Stations: config.Stations, ReportPoints: config.ReportPoints, Flows: config.Flows,
 		},
 		store:    stream.NewStore(config.SpoolDir, config.MemoryBytes, config.SpoolBytes, config.SpoolTotal),
 		draining: make(chan struct{}),

@@ -52,6 +52,7 @@ var settings = []setting{
 	countSetting("reaches", "most reaches of a profile", 1, 1_000_000, func(c *Config) *int { return &c.Reaches }),
 	countSetting("stations", "most surveyed stations of a profile", 2, 1_000_000, func(c *Config) *int { return &c.Stations }),
 	countSetting("report-points", "most places at which a profile reports", 1, 10_000_000, func(c *Config) *int { return &c.ReportPoints }),
+	countSetting("flows", "most named flows of an appraisal", 1, 10_000, func(c *Config) *int { return &c.Flows }),
 	durationSetting("time-limit", "longest time of one calculation; beyond it 504", 100*time.Millisecond, 10*time.Minute, func(c *Config) *time.Duration { return &c.TimeLimit }),
 	durationSetting("idle-limit", "a bulk stream without progress is ended after this", time.Second, time.Hour, func(c *Config) *time.Duration { return &c.IdleLimit }),
 	{

@@ -82,7 +82,23 @@ func TestObjectExamples(t *testing.T) {
 		"report":     `{"report":%,` + depth,
 		"geometry":   `{"geometry":%,` + depth,
 	}
+	const appraised = `{` + section + `,"bed_slope":0.01,`
+	appraisals := map[string]string{
+		"flows":           appraised + roughness + `,"flows":%,"criteria":{"least_freeboard":1}}`,
+		"criteria":        appraised + roughness + `,"flows":{"a":1},"criteria":%}`,
+		"criterion_flows": appraised + roughness + `,"flows":{"hundred_year":1},"criteria":{"least_freeboard":1},"criterion_flows":%}`,
+		"lining":          appraised + `"flows":{"a":1},"criteria":{"least_lining_safety":1},"lining":%}`,
+		"bend":            appraised + roughness + `,"flows":{"a":1},"criteria":{"least_freeboard":1},"bend":%}`,
+	}
 	for name, example := range objectExamples {
+		if body, known := appraisals[name]; known {
+			var r AppraisalRequest
+			body = strings.Replace(body, "%", example, 1)
+			if p := Decode([]byte(body), SI, &Limits{ArrayItems: 9, Flows: 9}, &r); p != nil {
+				t.Errorf("%s: %s", body, p.AppendJSON(nil))
+			}
+			continue
+		}
 		body, known := places[name]
 		if !known {
 			t.Fatalf("no place for the example of %s", name)

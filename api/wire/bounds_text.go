@@ -21,6 +21,8 @@ func (f *field) outOfRange(at pointer, column int, value float64, system System)
 	switch {
 	case isNoData(shown):
 		detail += " Leave an unknown number out or give null."
+	case f.name == "greatest_fill":
+		detail += " A fill of 80 % is 0.8."
 	case f.name == "bed_slope":
 		detail += " A fall of 2 % or 20 in 1000 is 0.02."
 	}

@@ -40,4 +40,6 @@ const (
 	codeMisplacedMember   = "misplaced_member"
 	codeSectionDiffers    = "section_differs"
 	codeNoLength          = "no_length"
+	codeUnknownFlow       = "unknown_flow"
+	codeCriterionNotGiven = "criterion_not_given"
 )

@@ -35,7 +35,7 @@ func seed(f *testing.F) {
 		`{"units":"us","section":{"kind":"two_stage","bottom_width":3,"side_slope":2,"bench_height":2,"left_bench_width":5,"right_bench_width":4,"upper_side_slope":2,"bank_height":4},"roughness":{"bed":{"manning":0.03},"sides":{"manning":0.05},"combine":"pavlovskii"},"bed_slope":-0.001,"discharge":30,"depth":2,"barrels":2,"gravity":32.2}`,
 		`{"section":{"kind":"tabulated","rows":[[1,2,3,4],[2,6,6,4]]},"roughness":{"manning_by_depth":[[0,0.05],[1,0.04]]},"bed_slope":0.01,"kind":"uniform","from_depth":0.5,"to_depth":1.5,"count":10}`,
 		`{"section":{"kind":"gutter","cross_slope":0.02,"curb_height":0.15,"gutter_width":0.6,"gutter_slope":0.08},"roughness":{"sand_roughness":0.001,"kinematic_viscosity":1e-6},"bed_slope":0.01,"kind":"critical","discharges":[1,2,3],"energy_coefficient":1.1}`,
-		drainProfile, surveyedProfile,
+		drainProfile, surveyedProfile, appraisedDitch,
 	} {
 		f.Add([]byte(body))
 	}
@@ -46,7 +46,7 @@ func seed(f *testing.F) {
 func FuzzScan(f *testing.F) {
 	seed(f)
 	f.Fuzz(func(t *testing.T, data []byte) {
-		limits := Limits{ArrayItems: 20, Points: 30, Reaches: 10, Stations: 10, ReportPoints: 25}
+		limits := Limits{ArrayItems: 20, Points: 30, Reaches: 10, Stations: 10, ReportPoints: 25, Flows: 6}
 		var s scanner
 		accepted := s.scan(data, &limits)
 		library := jsontext.Value(data).IsValid() // refuses duplicate names and bad UTF-8 too
@@ -107,9 +107,9 @@ func checkNumbers(t *testing.T, data []byte) {
 func FuzzDecode(f *testing.F) {
 	seed(f)
 	f.Fuzz(func(t *testing.T, data []byte) {
-		limits := Limits{ArrayItems: 20, Points: 30, Reaches: 10, Stations: 10, ReportPoints: 25}
+		limits := Limits{ArrayItems: 20, Points: 30, Reaches: 10, Stations: 10, ReportPoints: 25, Flows: 6}
 		original := bytes.Clone(data)
-		for _, into := range []Request{new(SectionRequest), new(DepthsRequest), new(RatingRequest), new(ProfileRequest)} {
+		for _, into := range []Request{new(SectionRequest), new(DepthsRequest), new(RatingRequest), new(ProfileRequest), new(AppraisalRequest)} {
 			for _, system := range []System{SI, US} {
 				p := Decode(data, system, &limits, into)
 				if id := into.common().ID; id != nil && !jsontext.Value(id).IsValid() {

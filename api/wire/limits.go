@@ -7,11 +7,12 @@ type Limits struct {
 	Reaches      int // reaches of a profile
 	Stations     int // surveyed stations of a profile
 	ReportPoints int // places at which a profile reports
+	Flows        int // named flows of an appraisal
 }
 
 // DefaultLimits returns the limits that hold unless an operator sets others.
 func DefaultLimits() Limits {
-	return Limits{ArrayItems: 10_000, Points: 10_000, Reaches: 10_000, Stations: 10_000, ReportPoints: 50_000}
+	return Limits{ArrayItems: 10_000, Points: 10_000, Reaches: 10_000, Stations: 10_000, ReportPoints: 50_000, Flows: 100}
 }
 
 // named returns a limit by the name that callers know.
@@ -25,6 +26,8 @@ func (l *Limits) named(name string) int {
 		return l.Stations
 	case "report_points":
 		return l.ReportPoints
+	case "flows":
+		return l.Flows
 	}
 	return l.ArrayItems
 }
@@ -40,6 +43,9 @@ func limitOfList(member []byte) string {
 		return "stations"
 	case "at":
 		return "report_points"
+	}
+	if Criterion(member).row() != nil { // flows of a criterion
+		return "flows"
 	}
 	return "array_items"
 }

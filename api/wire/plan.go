@@ -13,7 +13,7 @@ import (
 //   - quantity: what it measures, one for each column of a list of tuples; left out for a plain number
 //   - validate: the rules of value, in SI
 //   - in: the variants (kinds, laws) that it belongs to, with a question mark where it may be left out
-//   - limit: the limit of the service that bounds a whole number
+//   - limit: the limit of the service that bounds a whole number, or the number of members of an object with names of the caller's
 type plan struct {
 	fields   []field
 	index    nameIndex // of fields by name
@@ -69,6 +69,7 @@ var plans = compilePlans(
 	DepthsRequest{},
 	RatingRequest{},
 	ProfileRequest{},
+	AppraisalRequest{},
 )
 
 func compilePlans(requests ...any) map[reflect.Type]*plan {

@@ -167,9 +167,15 @@ func (r *ProfileRequest) geometryRules(w *walk) {
 
 // faulted reports whether a fault was collected at a member of the object being read, or below it.
 func (w *walk) faulted(member string) bool {
-	pointer := string(w.at.member(member))
+	at := w.enter(member)
+	defer w.leave(at)
+	return w.faultedBelow()
+}
+
+// faultedBelow reports whether a fault was collected at the value being read, or below it.
+func (w *walk) faultedBelow() bool {
 	for i := range w.faults {
-		if rest, below := strings.CutPrefix(w.faults[i].Pointer, pointer); below && (rest == "" || rest[0] == '/') {
+		if rest, below := strings.CutPrefix(w.faults[i].Pointer, string(w.at)); below && (rest == "" || rest[0] == '/') {
 			return true
 		}
 	}

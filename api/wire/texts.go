@@ -129,6 +129,9 @@ func (f *field) wanted() string {
 	case shapePair:
 		return f.tupleType()
 	case shapeNamed:
+		if example, known := objectExamples[f.name]; known {
+			return "an object of numbers such as " + example
+		}
 		return "an object of numbers"
 	case shapeRaw:
 		return "a value"
@@ -175,6 +178,8 @@ func variantText(variant string) string {
 		return "a boundary by " + variant
 	case "spacing", "at":
 		return "a report by " + variant
+	case string(ShearLimited), string(BareSoil), string(Vegetation), string(Riprap), string(Gravel), string(Earth):
+		return "a lining of kind " + variant
 	}
 	return "a section of kind " + variant
 }

@@ -34,7 +34,7 @@ func TestUnitFactors(t *testing.T) {
 	root.Sqrt(root)
 	chezy, _ := root.Rat(nil)
 	for q, want := range map[Quantity]*big.Rat{
-		Dimensionless: rat("1"), QuantityManning: rat("1"), QuantityStrickler: rat("1"),
+		Dimensionless: rat("1"), QuantityManning: rat("1"), QuantityStrickler: rat("1"), QuantityAngle: rat("1"), QuantityTold: rat("1"),
 		QuantityLength: ft, QuantityVelocity: ft, QuantityAcceleration: ft,
 		QuantityArea: times(ft, ft), QuantityDischargePerLength: times(ft, ft), QuantityKinematicViscosity: times(ft, ft),
 		QuantityVolume: times(ft, ft, ft), QuantityDischarge: times(ft, ft, ft),
@@ -44,7 +44,7 @@ func TestUnitFactors(t *testing.T) {
 			t.Errorf("%v: %v, want %v", q, US.ToSI(q, 1), nearest)
 		}
 	}
-	if len(units) != 14 {
+	if len(units) != 16 {
 		t.Error("a quantity is not checked")
 	}
 }

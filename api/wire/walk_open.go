@@ -21,6 +21,11 @@ func (w *walk) named(f *field) []NamedNumber {
 		return out
 	}
 	w.delimiter()
+	limitName := f.limit
+	if limitName == "" {
+		limitName = "array_items"
+	}
+	limit := w.limits.named(limitName)
 	for !w.stop() && w.decoder.PeekKind() != '}' {
 		name := string(w.memberName())
 		if w.decoder.PeekKind() == 'n' {
@@ -32,10 +37,10 @@ func (w *walk) named(f *field) []NamedNumber {
 			w.fault(codeTooLong, func() string { return "A name in " + f.name + " may have at most 256 characters." })
 			w.skip()
 			continue
-		case len(out) == w.limits.ArrayItems:
+		case len(out) == limit:
 			w.size = true
 			w.fault(codeTooManyItems, func() string {
-				return f.name + " has more than " + strconv.Itoa(w.limits.ArrayItems) + " members, the limit `array_items` of this service (GET /v1/limits)."
+				return f.name + " has more than " + strconv.Itoa(limit) + " members, the limit `" + limitName + "` of this service (GET /v1/limits)."
 			})
 			w.skip()
 			continue
