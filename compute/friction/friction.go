@@ -42,6 +42,6 @@ const (
 	// Chezy promises K = C*A*R^(1/2) with such a constant.
 	Chezy
 	// Whole promises a conveyance that is the area times a function of the hydraulic radius alone that rises with it, and
-	// coefficients of 1 (Colebrook-White).
+	// coefficients of 1 (Colebrook-White, grass).
 	Whole
 )

@@ -30,6 +30,9 @@ func settings() []setting {
 		{"chezy", trapezoid, must(friction.NewChezy(50))},
 		{"sand_roughness", trapezoid, must(friction.NewSandRoughness(0.003, 1.14e-6, 9.80665))},
 		{"sand_roughness_viscous", trapezoid, must(friction.NewSandRoughness(1e-6, 1e-2, 9.80665))},
+		{"grass", trapezoid, must(friction.NewGrass(0.142, 9.80665))},
+		{"stones", trapezoid, must(friction.NewStones(0.4, 9.80665, trapezoid))},
+		{"stones_in_triangle", ditch{left: 2, right: 2}, must(friction.NewStones(0.1, 9.80665, ditch{left: 2, right: 2}))},
 		{"manning_by_depth", trapezoid, must(friction.NewManningByDepth([][2]float64{{0.2, 0.08}, {1, 0.04}, {3, 0.03}}))},
 		{"bed_and_sides_horton_einstein", trapezoid, must(friction.NewBedAndSides(trapezoid, 0.025, 0.06, friction.HortonEinstein))},
 		{"bed_and_sides_pavlovskii", trapezoid, must(friction.NewBedAndSides(trapezoid, 0.025, 0.06, friction.Pavlovskii))},
@@ -351,7 +354,7 @@ func TestBreaksOfZones(t *testing.T) {
 // TestForms checks the promises on which solvers build.
 func TestForms(t *testing.T) {
 	want := map[string]friction.Form{"manning": friction.Manning, "strickler": friction.Manning, "chezy": friction.Chezy,
-		"sand_roughness": friction.Whole, "sand_roughness_viscous": friction.Whole}
+		"sand_roughness": friction.Whole, "sand_roughness_viscous": friction.Whole, "grass": friction.Whole}
 	for _, s := range settings() {
 		if s.law.Form() != want[s.name] {
 			t.Errorf("%s: form %v", s.name, s.law.Form())
