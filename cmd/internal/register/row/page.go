@@ -41,6 +41,9 @@ func (p *Page) AddChild(row int) []Value {
 	return p.children[len(p.children)-p.childWidth:]
 }
 
+// DropChildren removes all child rows, so that they can be added anew.
+func (p *Page) DropChildren() { p.children, p.ends = p.children[:0], p.ends[:0] }
+
 func (p *Page) childRows() int {
 	if len(p.ends) == 0 {
 		return 0

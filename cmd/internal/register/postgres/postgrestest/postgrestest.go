@@ -8,6 +8,7 @@ import (
 	"encoding/hex"
 	"net/url"
 	"os"
+	"sync"
 	"testing"
 	"time"
 
@@ -17,15 +18,26 @@ import (
 // Variable names a server for tests as a URL whose user may create databases. Unset, a private server is started.
 const Variable = "LEAT_TEST_POSTGRES"
 
-// Database creates an empty database of a server that lives as long as the test, and returns its URL. It skips the test, or fails it under
-// LEAT_ALL_PARTS=1, where there is no server and no binaries to start one.
+// shared is the server of all tests of a process that need no server of their own.
+var shared struct {
+	sync.Mutex
+	server *Server
+}
+
+// Database creates an empty database and returns its URL; it is dropped when the test ends. Its server is the one named in the environment, or one
+// that all tests of the process share. Where there is neither it skips the test, or fails it under LEAT_ALL_PARTS=1.
 func Database(t testing.TB) string {
 	t.Helper()
 	address := os.Getenv(Variable)
-	if address == "" {
-		address = Start(t, Options{}).URL()
+	if address != "" {
+		return Create(t, address)
 	}
-	return Create(t, address)
+	shared.Lock()
+	defer shared.Unlock()
+	if shared.server == nil {
+		shared.server = start(t, Options{}) // its keeper stops it and tidies up after it when the process ends
+	}
+	return Create(t, shared.server.URL())
 }
 
 // Create creates an empty database in the server at address and returns its URL; it is dropped when the test ends.

@@ -36,11 +36,22 @@ type Server struct {
 	account  *syscall.Credential // whom the server runs as, nil for whoever runs the tests
 	process  *exec.Cmd
 	alive    io.WriteCloser // the server stops when this is closed, be it because the test process has died
-	output   *bytes.Buffer
 }
 
 // Start starts a server, which stops when the test ends. Where no binaries are found it skips the test, or fails it under LEAT_ALL_PARTS=1.
 func Start(t testing.TB, options Options) *Server {
+	t.Helper()
+	s := start(t, options)
+	t.Cleanup(func() {
+		s.Stop(t)
+		if err := os.RemoveAll(s.folder); err != nil {
+			t.Error(err)
+		}
+	})
+	return s
+}
+
+func start(t testing.TB, options Options) *Server {
 	t.Helper()
 	binaries, found := findBinaries()
 	if !found {
@@ -59,12 +70,6 @@ func Start(t testing.TB, options Options) *Server {
 	if !options.Durable {
 		s.settings = append([]string{"fsync=off", "full_page_writes=off"}, s.settings...)
 	}
-	t.Cleanup(func() {
-		s.Stop(t)
-		if err := os.RemoveAll(folder); err != nil {
-			t.Error(err)
-		}
-	})
 	if os.Getuid() == 0 { // PostgreSQL refuses to run as root
 		if s.account, err = unprivileged(); err != nil {
 			t.Fatal(err)
@@ -159,16 +164,14 @@ func (s *Server) Process(t testing.TB) int {
 // Run starts the server again after Stop or Crash, and waits until it answers.
 func (s *Server) Run(t testing.TB) {
 	t.Helper()
-	// The shell holds the other end of a pipe: when the test process dies, however it dies, the server stops.
-	const keeper = `"$@" & server=$!; cat >/dev/null; kill -INT $server 2>/dev/null; wait $server`
-	arguments := []string{"-c", keeper, "keeper", filepath.Join(s.binaries, "postgres"), "-D", s.data(),
+	// The shell holds the other end of a pipe: when the test process dies, however it dies, the server stops, and its folder goes unless it is to run again.
+	const keeper = `folder=$1; shift; "$@" >>"$folder/log" 2>&1 & server=$!; read -r word; kill -INT $server 2>/dev/null; wait $server; [ "$word" = keep ] || rm -rf "$folder"`
+	arguments := []string{"-c", keeper, "keeper", s.folder, filepath.Join(s.binaries, "postgres"), "-D", s.data(),
 		"-c", "listen_addresses=", "-c", "unix_socket_directories=" + s.folder}
 	for _, setting := range s.settings {
 		arguments = append(arguments, "-c", setting)
 	}
 	s.process = s.command("/bin/sh", arguments...)
-	s.output = &bytes.Buffer{}
-	s.process.Stdout, s.process.Stderr = s.output, s.output
 	var err error
 	if s.alive, err = s.process.StdinPipe(); err != nil {
 		t.Fatal(err)
@@ -181,8 +184,9 @@ func (s *Server) Run(t testing.TB) {
 			return
 		}
 		if time.Now().After(deadline) {
+			log, _ := os.ReadFile(filepath.Join(s.folder, "log"))
 			s.Stop(t)
-			t.Fatalf("the server does not answer: %v\n%s", err, s.output)
+			t.Fatalf("the server does not answer: %v\n%s", err, log)
 		}
 	}
 }
@@ -204,7 +208,7 @@ func (s *Server) Stop(t testing.TB) {
 	if s.process == nil {
 		return
 	}
-	if err := s.alive.Close(); err != nil {
+	if _, err := io.WriteString(s.alive, "keep\n"); err != nil {
 		t.Error(err)
 	}
 	// The keeper's exit code is that of the server, which may have been killed: it says nothing of interest.
