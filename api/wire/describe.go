@@ -15,6 +15,7 @@ const (
 	FormList    // an array of numbers, of tuples or of objects
 	FormNumbers // an object of numbers under names of the caller's
 	FormAny     // any value
+	FormObject  // an object of the contract's, whose members are described too
 )
 
 // A MemberDescription says of a member of a request what a program that writes requests needs to know.
@@ -24,9 +25,10 @@ type MemberDescription struct {
 	Quantity Quantity // of a number, or of those of a FormNumbers
 	Names    []string // that a FormName may have
 	Variants []string // kinds or laws it belongs to; none for all of them
+	Required bool     // the object that it is a member of must have it, whatever its kind or law
 }
 
-// DescribeRequest lists the members of a request that are values, in the order of the contract; objects are gone into, lists are not.
+// DescribeRequest lists the members of a request in the order of the contract, those of an object behind it; lists are not gone into.
 func DescribeRequest(request Request) []MemberDescription {
 	return plans[reflect.TypeOf(request).Elem()].describe(nil, nil)
 }
@@ -35,11 +37,12 @@ func (p *plan) describe(above []string, out []MemberDescription) []MemberDescrip
 	for i := range p.fields {
 		f := &p.fields[i]
 		path := append(above[:len(above):len(above)], f.name)
+		out = append(out, MemberDescription{
+			Path: path, Form: f.shape.form(), Quantity: f.quantity[0], Names: f.enum, Variants: f.variants, Required: p.required&(1<<i) != 0,
+		})
 		if f.shape == shapeObject {
 			out = f.sub.describe(path, out)
-			continue
 		}
-		out = append(out, MemberDescription{Path: path, Form: f.shape.form(), Quantity: f.quantity[0], Names: f.enum, Variants: f.variants})
 	}
 	return out
 }
@@ -60,6 +63,8 @@ func (s shape) form() Form {
 		return FormNumbers
 	case shapeRaw:
 		return FormAny
+	case shapeObject:
+		return FormObject
 	}
 	return FormList
 }

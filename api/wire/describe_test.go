@@ -12,17 +12,18 @@ func TestDescribeRequest(t *testing.T) {
 		described[strings.Join(m.Path, "_")] = m
 	}
 	for name, want := range map[string]MemberDescription{
-		"discharge":             {Form: FormNumber, Quantity: QuantityDischarge},
+		"discharge":             {Form: FormNumber, Quantity: QuantityDischarge, Required: true},
+		"section":               {Form: FormObject, Required: true},
 		"barrels":               {Form: FormWhole},
 		"section_diameter":      {Form: FormNumber, Quantity: QuantityLength, Variants: []string{"circular"}},
 		"section_inverted":      {Form: FormBool, Variants: []string{"egg"}},
 		"section_points":        {Form: FormList, Quantity: QuantityLength, Variants: []string{"surveyed"}},
 		"roughness_zones":       {Form: FormList, Variants: []string{"zones"}},
-		"roughness_bed_manning": {Form: FormNumber, Quantity: QuantityManning},
+		"roughness_bed_manning": {Form: FormNumber, Quantity: QuantityManning, Required: true},
 		"units":                 {Form: FormName, Names: []string{"si", "us"}},
 	} {
 		got, found := described[name]
-		if !found || got.Form != want.Form || got.Quantity != want.Quantity || !slices.Equal(got.Variants, want.Variants) || !slices.Equal(got.Names, want.Names) {
+		if !found || got.Form != want.Form || got.Quantity != want.Quantity || got.Required != want.Required || !slices.Equal(got.Variants, want.Variants) || !slices.Equal(got.Names, want.Names) {
 			t.Errorf("%s: %+v, %v", name, got, found)
 		}
 	}

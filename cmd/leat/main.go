@@ -14,10 +14,11 @@ const (
 	exitMisused  = 2
 	usageMessage = `Leat computes what open-channel flow does in ditches, lined channels, culverts and pipes.
 
-  leat serve     start the HTTP service; leat serve --help lists its settings
-  leat health    ask a running service whether it is ready; exit code 0 if so, else 1
-  leat version   say what this binary is
-  leat help      this text
+  leat serve      start the HTTP service; leat serve --help lists its settings
+  leat register   carry a register of assets through a mapping file; leat register --help tells more
+  leat health     ask a running service whether it is ready; exit code 0 if so, else 1
+  leat version    say what this binary is
+  leat help       this text
 
 Exit codes: 0 done, 1 failed, 2 misused.
 `
@@ -37,12 +38,14 @@ func run(arguments, environment []string, stdout, stderr io.Writer) int {
 	switch arguments[0] {
 	case "serve":
 		return runServe(rest, environment, stdout, stderr)
+	case "register":
+		return runRegister(rest, stdout, stderr)
 	case "health":
 		return runHealth(rest, environment, stdout, stderr)
 	case "version", "--version":
 		return runVersion(rest, stdout, stderr)
 	case "help", "--help", "-h":
-		if len(rest) == 1 && (rest[0] == "serve" || rest[0] == "health") {
+		if len(rest) == 1 && (rest[0] == "serve" || rest[0] == "health" || rest[0] == "register") {
 			return run([]string{rest[0], "--help"}, environment, stdout, stderr)
 		}
 		fmt.Fprint(stdout, usageMessage)

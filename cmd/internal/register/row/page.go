@@ -10,14 +10,14 @@ type Page struct {
 	children []Value // rows one after another, those of the first row first
 	ends     []int   // by row: the number of child rows up to and with this row's
 
-	memory []byte // where texts are copied to; older pieces are kept by the values that point into them
+	memory Memory
 }
 
 // Reset empties the page and sets the number of values in a row and in a row of the child table (0 without one).
 func (p *Page) Reset(width, childWidth int) {
 	p.width, p.childWidth = width, childWidth
 	p.values, p.lines, p.children, p.ends = p.values[:0], p.lines[:0], p.children[:0], p.ends[:0]
-	p.memory = p.memory[:0]
+	p.memory.Reset()
 }
 
 // Rows is the number of rows.
@@ -77,27 +77,18 @@ func (p *Page) Children(i int) []Value {
 }
 
 // Text returns a text with a copy of the bytes in the page's memory.
-func (p *Page) Text(b []byte) Value { return OfText(p.copy(b)) }
+func (p *Page) Text(b []byte) Value { return OfText(p.memory.Copy(b)) }
+
+// String returns a text with a copy of a string in the page's memory.
+func (p *Page) String(s string) Value { return p.memory.Text(s) }
 
 // Blob returns bytes copied into the page's memory.
-func (p *Page) Blob(b []byte) Value { return OfBytes(p.copy(b)) }
+func (p *Page) Blob(b []byte) Value { return OfBytes(p.memory.Copy(b)) }
 
 // Keep copies a value's bytes, if it has any, into the page's memory.
 func (p *Page) Keep(v Value) Value {
 	if v.bytes != nil {
-		v.bytes = p.copy(v.bytes)
+		v.bytes = p.memory.Copy(v.bytes)
 	}
 	return v
-}
-
-// leastMemory is the size of the first piece of memory.
-const leastMemory = 16 << 10
-
-func (p *Page) copy(b []byte) []byte {
-	if cap(p.memory)-len(p.memory) < len(b) {
-		p.memory = make([]byte, 0, max(2*cap(p.memory), len(b), leastMemory))
-	}
-	start := len(p.memory)
-	p.memory = append(p.memory, b...)
-	return p.memory[start:len(p.memory):len(p.memory)]
 }

@@ -88,13 +88,18 @@ func (v Value) Clone() Value {
 	return v
 }
 
-// Append appends the value as people read it: nothing for null, a number in its shortest form, a moment as RFC 3339 in UTC.
+// Append appends the value as people and programs read it: nothing for null, a number in the shortest form that reads back as the same
+// one, with an exponent below 1e-6 and from 1e21 on, a moment as RFC 3339 in UTC.
 func (v Value) Append(dst []byte) []byte {
 	switch v.Kind {
 	case Int:
 		return strconv.AppendInt(dst, v.Int(), 10)
 	case Float:
-		return strconv.AppendFloat(dst, v.Float(), 'g', -1, 64)
+		format := byte('f')
+		if size := math.Abs(v.Float()); size != 0 && (size < 1e-6 || size >= 1e21) {
+			format = 'e'
+		}
+		return strconv.AppendFloat(dst, v.Float(), format, -1, 64)
 	case Bool:
 		return strconv.AppendBool(dst, v.Bool())
 	case Text, Bytes:

@@ -5,6 +5,7 @@ package store
 import (
 	"context"
 	"fmt"
+	"strings"
 
 	"leat/cmd/internal/register/row"
 )
@@ -65,11 +66,17 @@ type KeyFault struct {
 	Twice []string // some values that several rows have, as text
 }
 
-func (f *KeyFault) Error() string {
-	if f.Nulls > 0 {
-		return fmt.Sprintf("the key column is empty in %d rows", f.Nulls)
+func (f *KeyFault) Error() string { return f.Sentence("of the source") }
+
+// Sentence says so of a column.
+func (f *KeyFault) Sentence(column string) string {
+	switch {
+	case f.Nulls == 1:
+		return fmt.Sprintf("The key column %s is empty in a row; every asset needs a key.", column)
+	case f.Nulls > 0:
+		return fmt.Sprintf("The key column %s is empty in %d rows; every asset needs a key.", column, f.Nulls)
 	}
-	return fmt.Sprintf("the key column is not unique: %q stands in several rows", f.Twice)
+	return fmt.Sprintf("The key column %s is not unique: several rows have %s.", column, strings.Join(f.Twice, ", "))
 }
 
 // A Misfit is a fault of a specification that only the file or database could tell: it does not exist, has no such table, would be overwritten.
