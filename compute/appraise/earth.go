@@ -90,7 +90,7 @@ type EarthChannel struct {
 func NewEarthChannel(soil Earth, load Load) (Lining, error) {
 	var c check
 	if soil >= earths {
-		c.add("soil", "unknown_value", "soil must be one of the soils of the table of permissible velocities.")
+		c.add("soil", "unknown_value", "The soil must be one of the soils of the table of permissible velocities.")
 	}
 	if load >= loads {
 		c.add("water_carries", "unknown_value", "water_carries must be nothing, colloidal_silt or sand_or_gravel.")

@@ -71,9 +71,9 @@ func NewVegetation(grass Grass) (Lining, error) {
 	c.needed("stem_height", grass.StemHeight)
 	switch {
 	case grass.Condition == NoCondition:
-		c.add("condition", "missing", "condition is missing: the lining's roughness follows from it.")
+		c.add("condition", "missing", "The condition is missing: the lining's roughness follows from it.")
 	case grass.Condition >= conditions:
-		c.add("condition", "unknown_value", "condition must be excellent, very_good, good, fair or poor.")
+		c.add("condition", "unknown_value", "The condition must be excellent, very_good, good, fair or poor.")
 	}
 	if grass.GrowthForm >= growthForms {
 		c.add("growth_form", "unknown_value", "growth_form must be sod, bunch or mixed.")
