@@ -20,6 +20,7 @@ var requests = []string{
 	`{"section":{"kind":"rectangular","bottom_width":3},"roughness":{"manning":0.03},"bed_slope":0.001,"from_depth":0.5,"to_depth":2,"count":4,"kind":"uniform"}`,
 	`{"section":{"kind":"rectangular","bottom_width":3},"depths":[0.5,1]}`,
 	`{"id":"run","discharge":3,"reaches":[{"length":100,"bed_slope":0.002,"section":{"kind":"rectangular","bottom_width":3},"roughness":{"manning":0.02}}],"downstream":{"depth":1}}`,
+	`{"id":"judged","section":{"kind":"trapezoidal","bottom_width":1,"side_slope":2,"bank_height":1},"bed_slope":0.02,"flows":{"b":0.4,"a":0.2},"criteria":{"least_freeboard":0.2,"least_lining_safety":1},"lining":{"kind":"riprap","stone_size":0.15,"angle_of_repose":40}}`,
 	`{"id":"wrong","section":{"kind":"trapezoidal","bottom_width":-1,"side_slope":1.5},"bed_slope":2}`,
 	`{"id":"no json"`,
 	`[]`,

@@ -26,15 +26,30 @@ func solveDepths(r *wire.DepthsRequest, brief bool) (wire.Answer, *wire.Problem)
 			return nil, wire.InvalidRequest(fault)
 		}
 	}
-	q := r.Discharge.Value
-	var room flow.Room
-	d := c.Depths(q, &room)
-	if d.NormalAbsent == flow.Unsolved || d.CriticalAbsent == flow.Unsolved {
-		return nil, wire.Internal("The solver did not converge on this request; nothing is given rather than a guess.")
-	}
 	var w warnings
 	w.doubt("", &in)
-	a := &wire.DepthsAnswer{
+	var room flow.Room
+	var a wire.DepthsAnswer
+	if _, problem := describeDepths(&a, &c, r.Discharge.Value, r.Depth, depthsPlaces{"/section", "/discharge"}, brief, &room, &w); problem != nil {
+		return nil, problem
+	}
+	a.Warnings = w.done()
+	return &a, nil
+}
+
+// depthsPlaces are the members of a request that an answer's warnings point at.
+type depthsPlaces struct {
+	bank      string // of a depth above the bank
+	discharge string
+}
+
+// describeDepths solves one discharge (total, m3/s) and tells in a all that is said of it, with a depth that occurs there if one is given; warnings go to w.
+func describeDepths(a *wire.DepthsAnswer, c *flow.Channel, q float64, depth wire.Number, at depthsPlaces, brief bool, room *flow.Room, w *warnings) (flow.Depths, *wire.Problem) {
+	d := c.Depths(q, room)
+	if d.NormalAbsent == flow.Unsolved || d.CriticalAbsent == flow.Unsolved {
+		return d, wire.Internal("The solver did not converge on this request; nothing is given rather than a guess.")
+	}
+	*a = wire.DepthsAnswer{
 		Brief:       brief,
 		NormalDepth: math.NaN(), CriticalDepth: math.NaN(),
 		NormalAbsent: d.NormalAbsent.String(), CriticalAbsent: d.CriticalAbsent.String(),
@@ -50,39 +65,38 @@ func solveDepths(r *wire.DepthsRequest, brief bool) (wire.Answer, *wire.Problem)
 		s := c.State(d.Normal[0], q)
 		a.NormalDepth = s.Geometry.Depth
 		a.NormalVelocity, a.NormalFroudeNumber, a.NormalBedShearStress = s.Velocity, s.FroudeNumber, s.BedShearStress
-		w.state(&c, &s, "/section")
+		w.state(c, &s, at.bank)
 	}
 	if len(d.Critical) > 0 {
 		a.CriticalDepth = d.Critical[0]
 	}
 	if !brief {
-		a.Normal, a.Critical = states(&c, d.Normal, q), states(&c, d.Critical, q)
+		a.Normal, a.Critical = states(c, d.Normal, q), states(c, d.Critical, q)
 	}
-	w.depths(&c, &d)
-	if r.Depth.Given {
-		given, problem := given(&c, &d, r.Depth.Value, q, &w)
+	w.depths(&d, at)
+	if depth.Given {
+		given, problem := given(c, &d, depth.Value, q, w)
 		if problem != nil {
-			return nil, problem
+			return d, problem
 		}
 		a.Given = given
 	}
-	a.Warnings = w.done()
-	return a, nil
+	return d, nil
 }
 
 // depths adds what is to be said of the characteristic depths.
-func (w *warnings) depths(c *flow.Channel, d *flow.Depths) {
+func (w *warnings) depths(d *flow.Depths, at depthsPlaces) {
 	if len(d.Normal) > 0 && d.Normal[0] > d.Bank {
-		w.add("overtopped", "/section", "The normal depth lies above the bank: the section overtops at this discharge.")
+		w.add("overtopped", at.bank, "The normal depth lies above the bank: the section overtops at this discharge.")
 	}
 	if d.Surcharged {
-		w.add("surcharged", "/discharge", "The discharge is more than the closed section carries with a free surface; under pressure its depth is governed from downstream.")
+		w.add("surcharged", at.discharge, "The discharge is more than the closed section carries with a free surface; under pressure its depth is governed from downstream.")
 	}
 	if len(d.Normal) > 1 {
-		w.add("several_normal_depths", "/discharge", "The discharge flows uniformly at more than one depth; normal_depth is the lowest.")
+		w.add("several_normal_depths", at.discharge, "The discharge flows uniformly at more than one depth; normal_depth is the lowest.")
 	}
 	if len(d.Critical) > 1 {
-		w.add("several_critical_depths", "/discharge", "The specific energy has more than one minimum; critical_depth is the lowest of their depths.")
+		w.add("several_critical_depths", at.discharge, "The specific energy has more than one minimum; critical_depth is the lowest of their depths.")
 	}
 }
 

@@ -82,7 +82,7 @@ func (s *Solved) AppendJSON(dst []byte, inside bool) []byte {
 }
 
 // All returns the operations in the order of the contract.
-func All() []*Operation { return []*Operation{&Section, &Depths, &Rating, &Profile} }
+func All() []*Operation { return []*Operation{&Section, &Depths, &Rating, &Profile, &Appraisal} }
 
 // defaultLimits hold where a caller sets none.
 var defaultLimits = wire.DefaultLimits()

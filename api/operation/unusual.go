@@ -21,17 +21,19 @@ var (
 	usualSand      = usual{0, 1, "more than 1 m (3.3 ft); check its unit, which is not the millimetre"}
 	usualConduit   = usual{0.02, 30, "outside 0.02 to 30 m (0.07 to 98 ft) for a closed section; check its unit, which is not the millimetre"}
 	usualSide      = usual{0, 20, "more than 20; side slopes are horizontal per unit vertical, no degrees and no percentage"}
+	usualFreeboard = usual{0, 5, "more than 5 m (16 ft); check its unit"}
+	usualVelocity  = usual{0.01, 30, "outside 0.01 to 30 m/s (0.03 to 98 ft/s); check its unit"}
+	usualStone     = usual{0, 2, "more than 2 m (6.6 ft); check its unit, which is not the millimetre"}
+	usualStem      = usual{0, 3, "more than 3 m (9.8 ft); check its unit, which is not the millimetre"}
+	usualGrain     = usual{0, 0.3, "more than 0.3 m (1 ft); check its unit, which is not the millimetre"}
+	usualRepose    = usual{20, 50, "outside 20 to 50 degrees, while loose stone rests at 30 to 43; check that it is an angle in degrees"}
 	usualFall      = usual{-0.2, 0.2, "more than 0.2 in size: 20 m of fall in 100 m; check that it is no percentage and no per mille"}
 )
 
 // doubt adds a warning for each value of a section and its roughness that is so far from what occurs that its unit is to be doubted. base is the pointer
 // of the object that holds both.
 func (w *warnings) doubt(base string, in *inputs) {
-	look := func(pointer, name string, n wire.Number, u usual) {
-		if n.Given && (n.Value < u.least || n.Value > u.greatest) {
-			w.add("unusual_value", base+pointer, name+" is "+u.hint+".")
-		}
-	}
+	look := func(pointer, name string, n wire.Number, u usual) { w.look(base+pointer, name, n, u) }
 	if s := in.section; s != nil {
 		look("/section/side_slope", "side_slope", s.SideSlope, usualSide)
 		look("/section/left_side_slope", "left_side_slope", s.LeftSideSlope, usualSide)
@@ -59,4 +61,22 @@ func (w *warnings) doubt(base string, in *inputs) {
 		}
 	}
 	look("/bed_slope", "bed_slope", in.bedSlope, usualFall)
+}
+
+// doubtAppraisal does the same for the criteria and the lining of an appraisal.
+func (w *warnings) doubtAppraisal(r *wire.AppraisalRequest) {
+	w.look("/criteria/least_freeboard", "least_freeboard", r.Criteria.LeastFreeboard, usualFreeboard)
+	w.look("/criteria/least_velocity", "least_velocity", r.Criteria.LeastVelocity, usualVelocity)
+	w.look("/criteria/greatest_velocity", "greatest_velocity", r.Criteria.GreatestVelocity, usualVelocity)
+	w.look("/lining/stone_size", "stone_size", r.Lining.StoneSize, usualStone)
+	w.look("/lining/stem_height", "stem_height", r.Lining.StemHeight, usualStem)
+	w.look("/lining/grain_size", "grain_size", r.Lining.GrainSize, usualGrain)
+	w.look("/lining/angle_of_repose", "angle_of_repose", r.Lining.AngleOfRepose, usualRepose)
+}
+
+// look doubts one value.
+func (w *warnings) look(pointer, name string, n wire.Number, u usual) {
+	if n.Given && (n.Value < u.least || n.Value > u.greatest) {
+		w.add("unusual_value", pointer, name+" is "+u.hint+".")
+	}
 }

@@ -55,6 +55,9 @@ func bases(t *testing.T, op string) map[string]map[string]any {
 			r["from_depth"] = 0.05
 			r["to_depth"] = 0.15
 			r["count"] = 3.0
+		case "appraisal":
+			r["flows"] = map[string]any{"ten_year": 0.05, "hundred_year": 0.08}
+			r["criteria"] = map[string]any{"least_freeboard": 0.1, "greatest_velocity": 2.0}
 		}
 		return r
 	}
@@ -88,6 +91,30 @@ func bases(t *testing.T, op string) map[string]map[string]any {
 		list["discharges"] = []any{0.1, 0.2}
 		list["kind"] = "critical"
 		out["discharges"] = list
+	case "appraisal":
+		whole := maps.Clone(all)
+		whole["depth"] = 0.12
+		whole["criteria"] = contract.Document.Components.Schemas["Criteria"].Value.Examples[0]
+		criteria := map[string]any{}
+		for name, p := range contract.Document.Components.Schemas["Criteria"].Value.Properties {
+			criteria[name] = p.Value.Examples[0]
+		}
+		flows := map[string]any{}
+		for name := range criteria {
+			flows[name] = []any{"hundred_year"}
+		}
+		whole["criteria"], whole["criterion_flows"], whole["bend"] = criteria, flows, map[string]any{"radius": 25.0}
+		out["every criterion"] = whole
+		for name, lining := range shown("Lining") {
+			lined := request(sections["TrapezoidalSection"], laws["ManningRoughness"])
+			lined["criteria"] = map[string]any{"least_lining_safety": 1.0}
+			lined["lining"] = lining
+			switch lining["kind"] {
+			case "vegetation", "riprap", "gravel":
+				delete(lined, "roughness")
+			}
+			out[name] = lined
+		}
 	}
 	for name, v := range out {
 		out[name] = copyOf(t, v).(map[string]any)
@@ -155,7 +182,7 @@ func mutants(t *testing.T, base map[string]any, only string) []mutant {
 		}
 		set(old)
 	}
-	kinds, laws := foreigners(t, "Section"), foreigners(t, "Roughness")
+	kinds, laws, linings := foreigners(t, "Section"), foreigners(t, "Roughness"), foreigners(t, "Lining")
 	var visit func(at string, v any, set func(any))
 	visit = func(at string, v any, set func(any)) {
 		with(at, set, v, "0.5", true, []any{}, []any{1.0}, map[string]any{}, nil)
@@ -194,6 +221,8 @@ func mutants(t *testing.T, base map[string]any, only string) []mutant {
 				}
 			case "/roughness":
 				others = laws
+			case "/lining":
+				others = linings
 			}
 			for _, f := range others {
 				if _, has := v[f.name]; !has {
@@ -270,7 +299,7 @@ var schemaCodes = map[string]bool{
 var proseMembers = []string{
 	"side_slope", "left_side_slope", "right_side_slope", "bench_width", "left_bench_width", "right_bench_width", "gutter_width", "gutter_slope",
 	"until", "depth", "depths", "from_depth", "to_depth", "count", "discharges",
-	"reaches", "bed_level",
+	"reaches", "bed_level", "roughness",
 }
 
 // TestContractMutations: a request that the contract forbids is never answered, one that it allows is answered or refused for a
@@ -281,7 +310,7 @@ func TestContractMutations(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	for _, op := range []string{"section", "depths", "rating", "profile"} {
+	for _, op := range []string{"section", "depths", "rating", "profile", "appraisal"} {
 		t.Run(op, func(t *testing.T) {
 			schema := strings.ToUpper(op[:1]) + op[1:] + "Request"
 			counts := map[string]int{}
@@ -307,6 +336,8 @@ func TestContractMutations(t *testing.T) {
 					only = "section"
 				case strings.HasSuffix(base, "Roughness"):
 					only = "roughness"
+				case strings.HasSuffix(base, "Lining"):
+					only = "lining"
 				}
 				for _, m := range mutants(t, all[base], only) {
 					if seen[m.body] || testing.Short() && len(seen)%16 != 0 {

@@ -61,11 +61,17 @@ func TestContractForms(t *testing.T) {
 				t.Errorf("%s as a table: %v", name, err)
 				continue
 			}
-			var whole struct{ States, Stations, Normal, Critical []map[string]any }
+			var whole struct {
+				States, Stations, Normal, Critical []map[string]any
+				Flows                              map[string]struct{ Findings []map[string]any }
+			}
 			if err := json.Unmarshal(example(t, strings.Replace(name, ".request.", ".answer.", 1)), &whole); err != nil {
 				t.Fatal(err)
 			}
 			rows := len(whole.States) + len(whole.Stations) + len(whole.Normal) + len(whole.Critical)
+			for _, f := range whole.Flows {
+				rows += max(1, len(f.Findings))
+			}
 			if strings.Contains(string(example(t, name)), `"depth":`) && op.Name == "depths" {
 				rows++
 			}

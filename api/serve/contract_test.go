@@ -367,7 +367,7 @@ func TestContractServesItself(t *testing.T) {
 // TestContractRefusals provokes the refusals that no body is needed for, in unary and bulk; each is judged on its way.
 func TestContractRefusals(t *testing.T) {
 	s := startService(t)
-	for _, op := range []string{"section", "depths", "rating", "profile"} {
+	for _, op := range []string{"section", "depths", "rating", "profile", "appraisal"} {
 		for _, row := range []struct {
 			target, media string
 		}{{"/v1/" + op, jsonMedia}, {"/v1/bulk/" + op, ndjsonMedia}} {

@@ -140,7 +140,7 @@ func testSurroundings(log io.Writer) Surroundings {
 // start starts a server with fake operations over a real socket, adjusted before it listens; it is stopped when the test ends.
 func start(t *testing.T, change func(*Config, *Surroundings), adjust ...func(*http.Server)) *running {
 	t.Helper()
-	return startOperations(t, []*operation.Operation{fakeOperation("section"), fakeOperation("depths"), fakeOperation("rating"), fakeOperation("profile")}, change, adjust...)
+	return startOperations(t, []*operation.Operation{fakeOperation("section"), fakeOperation("depths"), fakeOperation("rating"), fakeOperation("profile"), fakeOperation("appraisal")}, change, adjust...)
 }
 
 func startOperations(t *testing.T, operations []*operation.Operation, change func(*Config, *Surroundings), adjust ...func(*http.Server)) *running {

@@ -4,11 +4,11 @@ package wire
 type AppraisalAnswer struct {
 	Verdict   string // meets, falls_short or undetermined
 	Governing Governing
-	Flows     []AppraisedFlow // in the order of the request
+	Flows     []AppraisedFlow // rising in discharge
 	Notice    string
 
-	Warnings    []Warning
-	Fingerprint string // left out where empty
+	Warnings []Warning
+	Traced
 }
 
 // Governing is the finding that decides over all flows: of those not met the one furthest beyond its limit, else of those met the nearest to it.
@@ -41,7 +41,8 @@ type LiningState struct {
 	BedShear, SideShear                    float64 // the greatest, N/m2
 	PermissibleShear, PermissibleSideShear float64 // N/m2
 	PermissibleVelocity                    float64 // m/s
-	Safety                                 float64
+	BendFactor                             float64 // 1 in a straight channel
+	Safety, RecommendedSafety              float64
 	GoverningPlace                         string // bed or sides; empty is written null
 }
 

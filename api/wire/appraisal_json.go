@@ -16,7 +16,9 @@ var (
 	liningPermissibleShear     = answerMember("permissible_shear", QuantityStress)
 	liningPermissibleSideShear = answerMember("permissible_side_shear", QuantityStress)
 	liningPermissibleVelocity  = answerMember("permissible_velocity", QuantityVelocity)
+	liningBendFactor           = answerMember("bend_factor", Dimensionless)
 	liningSafety               = answerMember("safety", Dimensionless)
+	liningRecommendedSafety    = answerMember("recommended_safety", Dimensionless)
 )
 
 // appendAs appends the member with a value in SI that measures what its criterion does.
@@ -91,7 +93,9 @@ func (l *LiningState) appendMember(dst []byte, system System) []byte {
 	dst = liningPermissibleShear.append(dst, system, l.PermissibleShear)
 	dst = liningPermissibleSideShear.append(dst, system, l.PermissibleSideShear)
 	dst = liningPermissibleVelocity.append(dst, system, l.PermissibleVelocity)
+	dst = liningBendFactor.append(dst, system, l.BendFactor)
 	dst = liningSafety.append(dst, system, l.Safety)
+	dst = liningRecommendedSafety.append(dst, system, l.RecommendedSafety)
 	dst = appendName(dst, `,"governing_place":`, l.GoverningPlace)
 	return append(dst, '}')
 }

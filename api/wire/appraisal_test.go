@@ -162,7 +162,7 @@ func appraisal() *AppraisalAnswer {
 		Verdict: "falls_short", Governing: Governing{true, "ten_year", LeastFreeboard, 0.3048, 0.6096}, Notice: "Ask.",
 		Flows: []AppraisedFlow{
 			{Name: `ten_year`, Discharge: 1, Depths: DepthsAnswer{Brief: true, NormalDepth: 0.5, CriticalDepth: nan}, Bent: true, BendRise: 0.3048, Lined: true,
-				Lining:   LiningState{Known: true, Manning: 0.03, BedShear: 20, SideShear: nan, PermissibleShear: 40, PermissibleSideShear: nan, PermissibleVelocity: nan, Safety: 2, GoverningPlace: "bed"},
+				Lining:   LiningState{Known: true, Manning: 0.03, BedShear: 20, SideShear: nan, PermissibleShear: 40, PermissibleSideShear: nan, PermissibleVelocity: nan, BendFactor: 1.05, Safety: 2, RecommendedSafety: 1, GoverningPlace: "bed"},
 				Findings: []Finding{{Criterion: LeastFreeboard, Value: 0.3048, Limit: 0.6096, Judged: true}, {Criterion: GreatestFill, Value: nan, Limit: 0.8, Reason: "missing_bank_height", Detail: "The bank, is unknown."}}},
 			{Name: `"dry", so`, Discharge: 0.1, Depths: DepthsAnswer{NormalDepth: 0.1, CriticalDepth: nan}, Lined: true},
 		},
@@ -178,7 +178,7 @@ func TestAppraisalAnswer(t *testing.T) {
 	}
 	for _, want := range []string{
 		`"governing_flow":"ten_year","governing_criterion":"least_freeboard","governing_value":1,"governing_limit":2,"governing_unit":"ft"`,
-		`"flows":{"ten_year":{"discharge":35.31466672148859,"normal_depth":`, `"bend_rise":1,"lining":{"manning":0.03,"bed_shear":0.4177`, `"permissible_velocity":null,"safety":2,"governing_place":"bed"},`,
+		`"flows":{"ten_year":{"discharge":35.31466672148859,"normal_depth":`, `"bend_rise":1,"lining":{"manning":0.03,"bed_shear":0.4177`, `"permissible_velocity":null,"bend_factor":1.05,"safety":2,"recommended_safety":1,"governing_place":"bed"},`,
 		`"findings":[{"criterion":"least_freeboard","value":1,"limit":2,"unit":"ft","met":false,"reason":null},`,
 		`{"criterion":"greatest_fill","value":null,"limit":0.8,"unit":"","met":null,"reason":"missing_bank_height","detail":"The bank, is unknown."}]}`,
 		`,"\"dry\", so":{"discharge":3.53146`, `"critical":[],"lining":null,"findings":[]}}`, `"notice":"Ask."`,

@@ -18,6 +18,9 @@ func (p pointer) member(name string) pointer {
 	return p + "/" + pointer(name)
 }
 
+// MemberPointer returns the JSON Pointer of a member of an object whose own pointer is given.
+func MemberPointer(object, member string) string { return string(pointer(object).member(member)) }
+
 // index returns the pointer of an item of the array that p points to.
 func (p pointer) index(i int) pointer { return p + "/" + pointer(strconv.Itoa(i)) }
 
