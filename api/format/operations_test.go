@@ -35,7 +35,7 @@ func TestEveryOperationGivesInBulkWhatItGivesAlone(t *testing.T) {
 	const repeats = 40
 	body := strings.Repeat(strings.Join(requests, "\n")+"\n", repeats)
 	for _, op := range operations {
-		out, s := pump(t, NewNDJSON(op, operation.Options{}, 1<<20), strings.NewReader(body))
+		out, s := pump(t, newNDJSON(t, op, operation.Options{}, 1<<20), strings.NewReader(body))
 		lines := strings.Split(out, "\n")
 		answered := 0
 		for i, line := range lines[:repeats*len(requests)] {
@@ -72,9 +72,10 @@ func BenchmarkDepths(b *testing.B) {
 	}
 	const n = 100_000
 	body := strings.Repeat(requests[0]+"\n", n)
-	f := NewNDJSON(depths, operation.Options{Brief: true}, 1<<20)
+	f := newNDJSON(b, depths, operation.Options{Brief: true}, 1<<20)
 	for b.Loop() {
-		p := stream.Pump{Reader: f.Reader(strings.NewReader(body)), Writer: f.Writer(), Solver: f, Output: nowhere{}}
+		run := f.Open(strings.NewReader(body))
+		p := stream.Pump{Reader: run.Reader, Writer: run.Writer, Solver: run.Solver, Output: nowhere{}}
 		if s, err := p.Run(b.Context()); err != nil || s.Lines != n || s.Problems != 0 {
 			b.Fatalf("summary %+v, error %v", s, err)
 		}

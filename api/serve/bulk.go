@@ -15,6 +15,7 @@ import (
 	"leat/api/format"
 	"leat/api/operation"
 	"leat/api/stream"
+	"leat/api/wire"
 )
 
 // panicsLogged is how many panics of one stream are logged; the metrics count all.
@@ -25,8 +26,6 @@ const closing = time.Second
 
 var errGone = errors.New("the client has gone")
 
-var ndjsonType = []string{mediaNDJSON}
-
 // bulk is the handler of one operation on a stream of requests.
 func (s *Server) bulk(op *operation.Operation) gin.HandlerFunc {
 	answered := s.lineCounter(op.Name)
@@ -35,7 +34,15 @@ func (s *Server) bulk(op *operation.Operation) gin.HandlerFunc {
 			s.refuse(c, aboutToStop())
 			return
 		}
-		options, _, problem := s.admit(c, operation.Options{}, mediaNDJSON, mediaNDJSON)
+		said, choice, problem := s.admitBulk(c)
+		if op.Long {
+			// The request's own context ends when the pump has reading stopped, too, which is no sign of a client gone.
+			said.Begin = checkpoints(context.WithoutCancel(c.Request.Context()), s.config.TimeLimit)
+		}
+		var form *format.Bulk
+		if problem == nil {
+			form, problem = format.New(op, said.Options, choice, int(s.config.LineBytes))
+		}
 		if problem != nil {
 			s.refuse(c, problem)
 			return
@@ -48,30 +55,27 @@ func (s *Server) bulk(op *operation.Operation) gin.HandlerFunc {
 			s.refuse(c, internalFault())
 			return
 		}
-		if op.Long {
-			// The request's own context ends when the pump has reading stopped, too, which is no sign of a client gone.
-			options.Begin = checkpoints(context.WithoutCancel(c.Request.Context()), s.config.TimeLimit)
-		}
-		s.pump(c, control, format.NewNDJSON(op, options, int(s.config.LineBytes)), answered)
+		s.pump(c, control, form.Open, choice.Out, answered)
 	}
 }
 
-// pump runs one stream and ends its answer: cleanly with its end line, or broken off so that the client notices.
-func (s *Server) pump(c *gin.Context, control *http.ResponseController, form format.Format, answered func(lines, problems int)) {
+// pump runs one stream, which open begins, and ends its answer of some kind: cleanly, or broken off so that the client notices.
+func (s *Server) pump(c *gin.Context, control *http.ResponseController, open func(io.Reader) format.Stream, kind format.Kind, answered func(lines, problems int)) {
 	e := exchangeOf(c)
 	var panics atomic.Int32
 	past := time.Unix(1, 0)
 	activity := stream.NewActivity()
 	received := activity.Reader(c.Request.Body)
-	output := &bulkOutput{c: c, media: ndjsonType, body: &e.bytesIn}
+	output := &bulkOutput{c: c, kind: kind, body: &e.bytesIn}
 	ctx, cancel := context.WithCancelCause(context.WithoutCancel(c.Request.Context()))
 	defer cancel(nil)
 	ignoreRequest := context.AfterFunc(c.Request.Context(), func() { cancel(errGone) })
 	defer ignoreRequest()
+	run := open(received)
 	pump := stream.Pump{
-		Reader:   form.Reader(received),
-		Writer:   form.Writer(),
-		Solver:   form,
+		Reader:   run.Reader,
+		Writer:   run.Writer,
+		Solver:   run.Solver,
 		Output:   output,
 		Flush:    control.Flush,
 		Store:    s.store,
@@ -98,18 +102,27 @@ func (s *Server) pump(c *gin.Context, control *http.ResponseController, form for
 			}
 		},
 	}
+	if kind.Framed() {
+		pump.Held = output.hold
+	}
 	summary, err := pump.Run(ctx)
 	e.lines, e.problems = summary.Lines, summary.Problems
 	if err == nil {
 		if !summary.Complete {
 			e.early = string(summary.Reason)
+			if kind.Framed() {
+				s.unfinished(c, control, summary.Reason)
+				return
+			}
 		}
+		output.end(summary)
 		// net/http reads on for a while when the handler has returned; a silent client must not hold it up.
 		control.SetReadDeadline(time.Now().Add(closing))
 		return
 	}
 	var broken *stream.BrokenError
 	var read *stream.ReadError
+	var refusal *format.Refusal
 	switch {
 	case errors.As(err, &broken):
 		s.logPanic(e, broken.Err, broken.Stack, slog.String("part", broken.Part))
@@ -119,6 +132,9 @@ func (s *Server) pump(c *gin.Context, control *http.ResponseController, form for
 			return
 		}
 		e.cut = "internal fault"
+	case errors.As(err, &refusal) && !c.Writer.Written():
+		s.refuseLate(c, control, refusal.Problem)
+		return
 	case errors.As(err, &read) && !c.Writer.Written():
 		closeConnection(c)
 		s.writeProblem(c, brokenBody())
@@ -129,27 +145,22 @@ func (s *Server) pump(c *gin.Context, control *http.ResponseController, form for
 	panic(http.ErrAbortHandler)
 }
 
-// A bulkOutput sends the header just before the first byte of a stream's answer.
-type bulkOutput struct {
-	c     *gin.Context
-	media []string
-	body  *countingBody
-	began atomic.Bool
+// unfinished ends an answer that cannot be whole and whose form cannot say so: by a problem while nothing of it is sent, else by breaking it off.
+func (s *Server) unfinished(c *gin.Context, control *http.ResponseController, reason stream.Reason) {
+	if c.Writer.Written() {
+		exchangeOf(c).cut = "unfinished, " + string(reason)
+		panic(http.ErrAbortHandler)
+	}
+	s.refuseLate(c, control, unfinished(reason, s.config.IdleLimit))
 }
 
-func (o *bulkOutput) Write(p []byte) (int, error) {
-	if !o.began.Swap(true) {
-		h := o.c.Writer.Header()
-		h["Content-Type"] = o.media
-		h["Cache-Control"] = noStore
-		if !o.body.ended.Load() || len(o.c.Request.TransferEncoding) > 0 {
-			// Whether the body will have been read to its end when the answer is complete is open. If not, the
-			// connection cannot be used again: what is left of the body would be taken for the next request. Chunks: see unary.
-			closeConnection(o.c)
-		}
-		o.c.Writer.WriteHeader(http.StatusOK)
-	}
-	return o.c.Writer.Write(p)
+// refuseLate is refuse after the pump, which has cut off reading, perhaps.
+func (s *Server) refuseLate(c *gin.Context, control *http.ResponseController, problem *wire.Problem) {
+	control.SetReadDeadline(time.Now().Add(s.config.IdleLimit))
+	control.SetWriteDeadline(time.Now().Add(s.config.IdleLimit + answerTime))
+	closeConnection(c)
+	skip(c.Request)
+	s.writeProblem(c, problem)
 }
 
 func (s *Server) isDraining() bool {

@@ -441,10 +441,14 @@ func TestConnectionAfterAStream(t *testing.T) {
 	}
 }
 
-// brokenFormat panics in its writer when the third answer is due.
-type brokenFormat struct{ format.Format }
-
-func (b brokenFormat) Writer() stream.Writer { return &brokenWriter{Writer: b.Format.Writer()} }
+// breakingWriter has a run panic in its writer when the third answer is due.
+func breakingWriter(open func(io.Reader) format.Stream) func(io.Reader) format.Stream {
+	return func(body io.Reader) format.Stream {
+		run := open(body)
+		run.Writer = &brokenWriter{Writer: run.Writer}
+		return run
+	}
+}
 
 type brokenWriter struct {
 	stream.Writer
@@ -486,7 +490,11 @@ func TestPanicAfterBytesBreaksTheAnswer(t *testing.T) {
 			if err := control.EnableFullDuplex(); err != nil {
 				panic(err)
 			}
-			r.pump(c, control, brokenFormat{format.NewNDJSON(fakeOperation("depths"), operation.Options{}, 1024)}, nil)
+			form, problem := format.New(fakeOperation("depths"), operation.Options{}, format.Choice{}, 1024)
+			if problem != nil {
+				panic(problem)
+			}
+			r.pump(c, control, breakingWriter(form.Open), format.NDJSON, nil)
 		},
 	} {
 		t.Run(name, func(t *testing.T) {

@@ -10,6 +10,8 @@ import (
 
 	"github.com/gin-gonic/gin"
 
+	"leat/api/format"
+	"leat/api/stream"
 	"leat/api/wire"
 )
 
@@ -34,22 +36,28 @@ func notAcceptable(offers ...string) *wire.Problem {
 	return wire.NotAcceptable(fmt.Sprintf("The Accept header refuses all that can be given here: %s. Name it, or leave the header out.", strings.Join(offers, ", ")))
 }
 
-func wrongMedia(given, want string) *wire.Problem {
+func wrongMedia(given string, wanted []string) *wire.Problem {
 	said := "The request has no Content-Type header"
 	if given != "" {
 		said = fmt.Sprintf("The request's Content-Type is %q", clip(given))
 	}
-	fix := fmt.Sprintf("; send Content-Type: %s.", want)
-	if strings.HasPrefix(strings.ToLower(given), "application/x-www-form-urlencoded") {
-		fix += fmt.Sprintf(" Some programs send this type unless told otherwise: give Python's urllib headers={\"Content-Type\": %q}, curl -H \"Content-Type: %s\".", want, want)
+	lower := strings.ToLower(given)
+	fix := fmt.Sprintf("; send Content-Type: %s.", oneOf(wanted))
+	if strings.HasPrefix(lower, "application/x-www-form-urlencoded") {
+		fix += fmt.Sprintf(" Some programs send this type unless told otherwise: give Python's urllib headers={\"Content-Type\": %q}, curl -H \"Content-Type: %s\".", wanted[0], wanted[0])
 	}
-	switch {
-	case want == mediaNDJSON && strings.HasPrefix(strings.ToLower(given), mediaJSON):
-		fix += " The body is one request a line, each an object, and no list."
-	case want == mediaJSON && strings.Contains(strings.ToLower(given), "ndjson"):
-		fix += " A request a line goes to the same operation under /v1/bulk."
+	if _, bulk := format.KindOf(strings.TrimSpace(strings.Split(lower, ";")[0])); bulk && len(wanted) == 1 || strings.Contains(lower, "ndjson") {
+		fix += " Many requests at once go to the same operation under /v1/bulk."
 	}
 	return wire.UnsupportedMediaType(said + fix)
+}
+
+// oneOf lists names in a sentence.
+func oneOf(names []string) string {
+	if len(names) == 1 {
+		return names[0]
+	}
+	return strings.Join(names[:len(names)-1], ", ") + " or " + names[len(names)-1]
 }
 
 func wrongCharset(charset string) *wire.Problem {
@@ -66,6 +74,17 @@ func tooLarge(limit bodyLimit) *wire.Problem {
 
 func slowBody() *wire.Problem {
 	return wire.RequestTimeout("The request body did not arrive in time; send it without pauses.")
+}
+
+// unfinished is the problem of a stream that ended early before anything of its answer was sent.
+func unfinished(reason stream.Reason, limit time.Duration) *wire.Problem {
+	switch reason {
+	case stream.Draining:
+		return aboutToStop()
+	case stream.Idle:
+		return wire.RequestTimeout(fmt.Sprintf("Nothing more of the request body came for idle_limit_seconds, %v; send it without such pauses, and end it.", limit.Seconds()))
+	}
+	return wire.Saturated("The answers found no room to wait in; send the request again after the seconds in Retry-After, in smaller parts or as application/x-ndjson.")
 }
 
 func brokenBody() *wire.Problem {

@@ -10,27 +10,67 @@ import (
 	"leat/api/wire"
 )
 
+// A call is what the query of a request says.
+type call struct {
+	operation.Options
+	flat   bool   // rows in bulk are flat
+	prefix string // of flat names in bulk
+}
+
 // A parameter is one query parameter of the operations and what it may be.
 type parameter struct {
 	name   string
-	values []string
-	apply  func(*operation.Options, string)
+	values []string          // accepted; nil where judge says
+	judge  func(string) bool // of a value that is not of a list
+	wanted string            // what judge accepts
+	apply  func(*call, string)
 }
 
 var parameters = []parameter{
-	{"detail", []string{"full", "brief"}, func(o *operation.Options, v string) { o.Brief = v == "brief" }},
-	{"units", []string{"si", "us"}, func(o *operation.Options, v string) {
+	{name: "detail", values: []string{"full", "brief"}, apply: func(o *call, v string) { o.Brief = v == "brief" }},
+	{name: "units", values: []string{"si", "us"}, apply: func(o *call, v string) {
 		o.Units = wire.SI
 		if v == "us" {
 			o.Units = wire.US
 		}
 	}},
-	{"fingerprint", []string{"true", "false"}, func(o *operation.Options, v string) { o.Fingerprint = v == "true" }},
+	{name: "fingerprint", values: []string{"true", "false"}, apply: func(o *call, v string) { o.Fingerprint = v == "true" }},
 }
 
-// readQuery reads an operation's query parameters into options that hold the defaults. Its problem names every fault: an unknown
+// bulkParameters are those of bulk: all of the others, and its own.
+var bulkParameters = append(slices.Clone(parameters),
+	parameter{name: "flat", values: []string{"true", "false"}, apply: func(o *call, v string) { o.flat = v == "true" }},
+	parameter{name: "prefix", judge: isPrefix, wanted: "up to 60 letters, digits and underscores that begin with a letter and end with an underscore, such as leat_", apply: func(o *call, v string) { o.prefix = v }},
+)
+
+// isPrefix reports whether a text can stand before flat names.
+func isPrefix(text string) bool {
+	for i, c := range text {
+		letter := 'a' <= c && c <= 'z' || 'A' <= c && c <= 'Z'
+		if !letter && (i == 0 || c != '_' && (c < '0' || c > '9')) {
+			return false
+		}
+	}
+	return len(text) >= 2 && len(text) <= 60 && strings.HasSuffix(text, "_")
+}
+
+func (p *parameter) accepts(value string) bool {
+	if p.judge != nil {
+		return p.judge(value)
+	}
+	return slices.Contains(p.values, value)
+}
+
+func (p *parameter) accepted() string {
+	if p.judge != nil {
+		return p.wanted
+	}
+	return "one of " + strings.Join(p.values, ", ")
+}
+
+// readQuery reads those of an operation's query parameters that there are into options that hold the defaults. Its problem names every fault: an unknown
 // name, an unknown value, a name given twice, text that is no query.
-func readQuery(raw string, options operation.Options) (operation.Options, *wire.Problem) {
+func readQuery(raw string, parameters []parameter, options call) (call, *wire.Problem) {
 	if raw == "" {
 		return options, nil
 	}
@@ -53,11 +93,11 @@ func readQuery(raw string, options operation.Options) (operation.Options, *wire.
 		case nameErr != nil || valueErr != nil:
 			fault(clip(name), "invalid_encoding", "%q cannot be read: %% must be followed by two hexadecimal digits.", clip(pair))
 		case i < 0:
-			fault(clip(name), "unknown_parameter", "%q is no query parameter of this operation; there are %s.", clip(name), parameterNames())
+			fault(clip(name), "unknown_parameter", "%q is no query parameter of this operation; there are %s.", clip(name), parameterNames(parameters))
 		case slices.Contains(seen, name):
 			fault(name, "duplicate_parameter", "%s is given more than once; give it once.", name)
-		case !slices.Contains(parameters[i].values, value):
-			fault(name, "unknown_value", "%s cannot be %q; it is one of %s.", name, clip(value), strings.Join(parameters[i].values, ", "))
+		case !parameters[i].accepts(value):
+			fault(name, "unknown_value", "%s cannot be %q; it is %s.", name, clip(value), parameters[i].accepted())
 		default:
 			parameters[i].apply(&options, value)
 		}
@@ -69,7 +109,7 @@ func readQuery(raw string, options operation.Options) (operation.Options, *wire.
 	return options, nil
 }
 
-func parameterNames() string {
+func parameterNames(parameters []parameter) string {
 	var names []string
 	for _, p := range parameters {
 		names = append(names, p.name)

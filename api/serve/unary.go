@@ -113,10 +113,11 @@ func answerAs(op *operation.Operation, forms []format.Rendering, accepted string
 // admit checks all that a POST says before its body: query, media type, and which of the offered media types it accepts.
 // defaults are the options where the query says nothing of them.
 func (s *Server) admit(c *gin.Context, defaults operation.Options, media string, offers ...string) (options operation.Options, accepted string, problem *wire.Problem) {
-	options, problem = readQuery(c.Request.URL.RawQuery, defaults)
+	said, problem := readQuery(c.Request.URL.RawQuery, parameters, call{Options: defaults})
+	options = said.Options
 	options.Limits = &s.limits
 	if problem == nil {
-		problem = checkMedia(c.Request.Header, c.Writer.Header(), media)
+		_, problem = checkMedia(c.Request.Header, c.Writer.Header(), media)
 	}
 	if problem == nil {
 		var found bool

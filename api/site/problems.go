@@ -21,6 +21,10 @@ var advices = map[string]advice{
 		"The body could not be read as one JSON value: a comma or a bracket is missing or too many, a member stands twice in one object, a text is not UTF-8, a number is NaN, infinite, too long or out of range, or something follows after the end. In bulk this is said of one line.",
 		"Go to the line, column and byte that the detail names. Better than to mend the text is to have it written by a JSON library; such libraries write NaN and Infinity unless told not to, so leave unknown numbers out or give null.",
 	},
+	"malformed_csv": {
+		"The body could not be read as comma-separated values (RFC 4180): there is no header line, another sign than the comma separates the columns, a quotation mark is never closed, or the text is not UTF-8.",
+		"Save the table anew with commas between columns, points before decimals and UTF-8 as its encoding; spreadsheets and GIS programs ask for these when they export. Have programs write CSV by a library, which sets quotation marks where they are needed.",
+	},
 	"bad_parameter": {
 		"The address bears a query parameter that this operation does not have, one that stands twice, or one with a value that is not accepted.",
 		"Look at the parameter that errors names; its detail lists what is accepted. What describes the asset belongs in the body, not in the address.",

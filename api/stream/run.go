@@ -29,7 +29,7 @@ type run struct {
 	spool *spool
 
 	inside  inside
-	holding atomic.Bool // the sender waits for more, because the output is held
+	holding atomic.Bool  // the sender waits for more, because the output is held
 	sent    atomic.Int64 // bytes given to Output
 	summary Summary      // the writer's
 	whole   atomic.Bool  // the end is sent

@@ -131,28 +131,38 @@ func (p *FlatPlan) Find(name string) (FlatPlace, bool) {
 	return FlatPlace{}, false
 }
 
-// Unknown returns the fault of a column or property that is no member; answers are the names that answers have.
-// shown is the name as the caller wrote it, name what of it was looked up.
-func (p *FlatPlan) Unknown(shown, name string, answers *FlatTable) Fault {
-	f := Fault{Column: clip(shown), Code: codeUnknownMember}
+// Unknown returns the fault of a column or property that is no member; answers are the names that answers have, nil for none. prefix is what of the
+// name, as the caller wrote it, stands before the name that was looked up.
+func (p *FlatPlan) Unknown(name, prefix string, answers *FlatTable) Fault {
+	f := Fault{Column: clip(name), Code: codeUnknownMember}
+	rest := strings.TrimPrefix(name, prefix)
 	switch {
-	case shown == "":
+	case name == "":
 		f.Column = " "
 		f.Detail = "A column has no name. Name it after a member, or leave it out."
-	case answers != nil && answers.has(name):
-		f.Detail = clip(shown) + " is a name of the answer, not of a request. Leave it out; with ?prefix=NAME_ answers bear a prefix of yours and replace what stood there."
+	case answers != nil && answers.has(rest):
+		f.Detail = clip(name) + " is a name of the answer, not of a request. Leave it out; with ?prefix=NAME_ answers bear a prefix of yours and replace what stood there."
+	case prefix != "":
+		f.Detail = "There is no member " + clip(rest) + " for " + clip(name) + " to stand for." + p.advice(rest, prefix)
 	default:
-		f.Detail = "There is no member " + clip(shown) + " here." + p.advice(name) + " With ?prefix=NAME_ only names that begin so are read, and all others are handed through."
+		f.Detail = "There is no member " + clip(name) + " here." + p.advice(name, "") + " With ?prefix=NAME_ only names that begin so are read, and all others are handed through."
 	}
 	return f
 }
 
 // advice says which member an unknown flat name most likely means.
-func (p *FlatPlan) advice(name string) string {
+func (p *FlatPlan) advice(name, prefix string) string {
+	if meant := p.meant(name); meant != "" {
+		return " Did you mean " + prefix + meant + "?"
+	}
+	return ""
+}
+
+func (p *FlatPlan) meant(name string) string {
 	plain := plainName(name)
 	for _, known := range p.names {
 		if plainName(known) == plain {
-			return " Did you mean " + known + "?"
+			return known
 		}
 	}
 	// A member's own name, or a symbol for it, without the way down to it.
@@ -160,12 +170,10 @@ func (p *FlatPlan) advice(name string) string {
 		member = plainName(member)
 		for i := range p.nodes {
 			if n := &p.nodes[i]; !n.object() && plainName(n.field.name) == member {
-				return " Did you mean " + n.name + "?"
+				return n.name
 			}
 		}
 	}
-	if near, found := nearest(name, p.names); found {
-		return " Did you mean " + near + "?"
-	}
-	return ""
+	near, _ := nearest(name, p.names)
+	return near
 }

@@ -187,9 +187,12 @@ func TestUnknownColumnsGetAdvice(t *testing.T) {
 		"Section_Kind": "section_kind", "kind": "section_kind", "diameter": "section_diameter", "bottom width": "section_bottom_width", "n": "roughness_manning",
 		"Q": "discharge", "slope": "bed_slope", "roughness_maning": "roughness_manning", "normal_depth": "name of the answer", "OBJECTID": "?prefix=NAME_",
 	} {
-		if f := plan.Unknown(name, name, answers); f.Column != name || !strings.Contains(f.Detail, want) {
+		if f := plan.Unknown(name, "", answers); f.Column != name || !strings.Contains(f.Detail, want) {
 			t.Errorf("%s: %+v, want %s", name, f, want)
 		}
+	}
+	if f := plan.Unknown("x_kind", "x_", nil); f.Column != "x_kind" || !strings.Contains(f.Detail, "x_section_kind") || strings.Contains(f.Detail, "prefix") {
+		t.Errorf("%+v", f)
 	}
 	for i := range plan.nodes {
 		if _, found := plan.Find(plan.nodes[i].name); !found {

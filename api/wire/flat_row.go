@@ -73,26 +73,26 @@ func (r *FlatRow) SetText(at FlatPlace, cell []byte) {
 	switch shape {
 	case shapeNumber, shapeWhole:
 		if !isBareNumber(cell) {
-			r.unreadable(at, numberCellText(string(cell), shape == shapeWhole))
+			r.Unreadable(at, numberCellText(string(cell), shape == shapeWhole))
 			return
 		}
 		r.room = append(r.room, cell...)
 	case shapeBool:
 		if string(cell) != "true" && string(cell) != "false" {
-			r.unreadable(at, truthCellText(string(cell)))
+			r.Unreadable(at, truthCellText(string(cell)))
 			return
 		}
 		r.room = append(r.room, cell...)
 	case shapeName, shapeID:
 		room, err := jsontext.AppendQuote(r.room, cell)
 		if err != nil {
-			r.unreadable(at, "The text is not valid UTF-8. Save the data as UTF-8.")
+			r.Unreadable(at, "The text is not valid UTF-8. Save the data as UTF-8.")
 			return
 		}
 		r.room = room
 	default:
 		if !jsontext.Value(cell).IsValid() {
-			r.unreadable(at, listCellText(f, cell))
+			r.Unreadable(at, listCellText(f, cell))
 			return
 		}
 		r.room = append(r.room, cell...)
@@ -126,7 +126,7 @@ func (r *FlatRow) SetNumber(at FlatPlace, value float64) {
 	start := len(r.room)
 	if r.room = appendNumber(r.room, value); r.room[start] == 'n' {
 		r.room = r.room[:start]
-		r.unreadable(at, "This is no finite number. Leave it empty where it is unknown.")
+		r.Unreadable(at, "This is no finite number. Leave it empty where it is unknown.")
 		return
 	}
 	r.set(at, span{start, len(r.room)})
@@ -158,8 +158,8 @@ func (r *FlatRow) mark(at FlatPlace) {
 	}
 }
 
-// unreadable notes a cell that is not what its member wants.
-func (r *FlatRow) unreadable(at FlatPlace, detail string) {
+// Unreadable notes a cell that is not what its member wants. The member does not count as missing too.
+func (r *FlatRow) Unreadable(at FlatPlace, detail string) {
 	r.Fault(Fault{Column: r.Column(at), Code: codeWrongType, Detail: detail})
 	place := r.plan.pointer(at.node)
 	if at.name != "" {

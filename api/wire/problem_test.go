@@ -27,6 +27,7 @@ func TestProblems(t *testing.T) {
 		{RequestTimeout("D."), "request_timeout", 408},
 		{TooLarge(fault), "too_large", 413},
 		{UnsupportedMediaType("D."), "unsupported_media_type", 415},
+		{MalformedCSV(fault), "malformed_csv", 400},
 		{InvalidRequest(fault), "invalid_request", 422},
 		{NoSolution("/a", "c", "D."), "no_solution", 422},
 		{TooManyRequests("D."), "too_many_requests", 429},

@@ -28,6 +28,7 @@ func newProblemType(name, title string, status int) ProblemType {
 // The table of problems.
 var (
 	malformedJSON        = newProblemType("malformed_json", "The body is not acceptable JSON", http.StatusBadRequest)
+	malformedCSV         = newProblemType("malformed_csv", "The body is not acceptable CSV", http.StatusBadRequest)
 	badParameter         = newProblemType("bad_parameter", "A query parameter is not accepted", http.StatusBadRequest)
 	unauthorized         = newProblemType("unauthorized", "A key is needed", http.StatusUnauthorized)
 	notFound             = newProblemType("not_found", "There is nothing at this path", http.StatusNotFound)
@@ -66,6 +67,9 @@ func TooLarge(faults ...Fault) *Problem { return tooLarge.problem(summary(faults
 
 // MalformedJSON is 400: not I-JSON.
 func MalformedJSON(fault Fault) *Problem { return malformedJSON.problem(fault.Detail, fault) }
+
+// MalformedCSV is 400: CSV whose rows cannot be found.
+func MalformedCSV(fault Fault) *Problem { return malformedCSV.problem(fault.Detail, fault) }
 
 // BadParameter is 400: query parameters that are unknown or have an unknown value.
 func BadParameter(faults ...Fault) *Problem {

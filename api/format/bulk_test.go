@@ -53,10 +53,24 @@ func (a fixedAnswer) AppendJSON(dst []byte, _ wire.System, _ wire.ID) []byte {
 
 func (a fixedAnswer) SetFingerprint(string) {}
 
-func pump(t testing.TB, f Format, body io.Reader) (string, stream.Summary) {
+func newBulk(t testing.TB, op *operation.Operation, options operation.Options, choice Choice, lineBytes int) *Bulk {
+	t.Helper()
+	b, problem := New(op, options, choice, lineBytes)
+	if problem != nil {
+		t.Fatal(problem)
+	}
+	return b
+}
+
+func newNDJSON(t testing.TB, op *operation.Operation, options operation.Options, lineBytes int) *Bulk {
+	return newBulk(t, op, options, Choice{}, lineBytes)
+}
+
+func pump(t testing.TB, b *Bulk, body io.Reader) (string, stream.Summary) {
 	t.Helper()
 	var out bytes.Buffer
-	p := stream.Pump{Reader: f.Reader(body), Writer: f.Writer(), Solver: f, Output: &out, Workers: 3}
+	run := b.Open(body)
+	p := stream.Pump{Reader: run.Reader, Writer: run.Writer, Solver: run.Solver, Output: &out, Workers: 3}
 	s, err := p.Run(t.Context())
 	if err != nil {
 		t.Fatal(err)
@@ -91,7 +105,7 @@ func TestNDJSON(t *testing.T) {
 		`{"line":10,"result":{"double":8}}`,
 	}
 	for name, r := range map[string]io.Reader{"whole": strings.NewReader(body), "bytes": iotest.OneByteReader(strings.NewReader(body))} {
-		out, s := pump(t, NewNDJSON(double, operation.Options{Inside: true}, limit), r)
+		out, s := pump(t, newNDJSON(t, double, operation.Options{Inside: true}, limit), r)
 		lines := strings.SplitAfter(out, "\n")
 		if len(lines) != len(want)+2 || lines[len(want)+1] != "" {
 			t.Fatalf("%s: %d lines:\n%s", name, len(lines), out)
@@ -125,7 +139,7 @@ func TestTheEndOfAStreamThatStopsEarly(t *testing.T) {
 
 // The answer of a line is what the operation says of it alone, whatever stands around it and however it arrives.
 func TestABulkAnswerIsTheUnaryOne(t *testing.T) {
-	f := NewNDJSON(double, operation.Options{}, 100)
+	f := newNDJSON(t, double, operation.Options{}, 100)
 	rapid.Check(t, func(t *rapid.T) {
 		var body, want bytes.Buffer
 		var n, problems int64
@@ -154,7 +168,8 @@ func TestABulkAnswerIsTheUnaryOne(t *testing.T) {
 			in = iotest.OneByteReader(in)
 		}
 		var out bytes.Buffer
-		p := stream.Pump{Reader: f.Reader(in), Writer: f.Writer(), Solver: f, Output: &out, Workers: rapid.IntRange(1, 4).Draw(t, "workers")}
+		run := f.Open(in)
+		p := stream.Pump{Reader: run.Reader, Writer: run.Writer, Solver: run.Solver, Output: &out, Workers: rapid.IntRange(1, 4).Draw(t, "workers")}
 		s, err := p.Run(t.Context())
 		if err != nil || !s.Complete || s.Lines != n || s.Problems != problems || s.SHA256 != sha256.Sum256(want.Bytes()) {
 			t.Fatalf("summary %+v, error %v, want %d lines, %d problems", s, err, n, problems)
@@ -169,8 +184,9 @@ func TestABulkAnswerIsTheUnaryOne(t *testing.T) {
 func TestBlankLinesDoNotHoldAnswersBack(t *testing.T) {
 	in, feed := io.Pipe()
 	out, sink := io.Pipe()
-	f := NewNDJSON(double, operation.Options{}, 100)
-	p := stream.Pump{Reader: f.Reader(in), Writer: f.Writer(), Solver: f, Output: sink}
+	f := newNDJSON(t, double, operation.Options{}, 100)
+	run := f.Open(in)
+	p := stream.Pump{Reader: run.Reader, Writer: run.Writer, Solver: run.Solver, Output: sink}
 	done := make(chan error, 1)
 	go func() { _, err := p.Run(t.Context()); sink.Close(); done <- err }()
 	b := make([]byte, 1000)
@@ -202,14 +218,14 @@ func TestFindID(t *testing.T) {
 		``:                                    ``,
 		`{"id":"` + strings.Repeat("x", longestID) + `"}`: ``,
 	} {
-		if got := string(findID([]byte(request))); got != want {
+		if got := string(findID([]byte(request), "id")); got != want {
 			t.Errorf("%s: got %s, want %s", request, got, want)
 		}
 	}
 }
 
 func TestRefusalOfUnknownCauseIsOurFault(t *testing.T) {
-	if p := refusal(errors.New("whatever")); p.Status != 500 {
+	if p := refusal(errors.New("whatever"), NDJSON); p.Status != 500 {
 		t.Errorf("status %d", p.Status)
 	}
 }
@@ -218,11 +234,12 @@ func TestSolvingALineAllocatesNothing(t *testing.T) {
 	plain := &operation.Operation{Name: "plain", Solve: func(body []byte, _ operation.Options) (operation.Solved, *wire.Problem) {
 		return operation.Solved{Answer: fixedAnswer(`{"answer":1}`), ID: body[6:7]}, nil
 	}}
-	f := NewNDJSON(plain, operation.Options{}, 100)
+	f := newNDJSON(t, plain, operation.Options{}, 100)
+	solver := f.Open(strings.NewReader("")).Solver
 	record := stream.Record{Line: 7, Bytes: []byte(`{"id":5}`)}
 	dst := make([]byte, 0, 1000)
 	if n := testing.AllocsPerRun(1000, func() {
-		if out, problem := f.Solve(0, record, dst); problem || string(out) != `{"id":5,"line":7,"result":{"answer":1}}` {
+		if out, problem := solver.Solve(0, record, dst); problem || string(out) != `{"id":5,"line":7,"result":{"answer":1}}` {
 			t.Fatalf("%s", out)
 		}
 	}); n > 0 {
