@@ -17,7 +17,7 @@ func (c *Channel) Critical(discharge float64, dst []float64) (depths []float64, 
 
 func (m *Motion) critical(dst []float64) (depths []float64, absent Absence) {
 	form := m.channel.Section.Form()
-	if m.channel.constantCoefficients() && (form == section.Rising || form == section.Arched) {
+	if m.fixed && (form == section.Rising || form == section.Arched) {
 		hi := m.channel.Section.Height()
 		depth, ok := m.criticalBetween(0, hi)
 		if !ok {
@@ -63,8 +63,7 @@ func (m *Motion) criticalBetween(lo, hi float64) (depth float64, ok bool) {
 	if !math.IsInf(hi, 1) {
 		guess = lo + (hi-lo)/2
 	}
-	alpha := m.channel.coefficients(section.Geometry{}).Energy
-	c := alpha * m.head / m.cosine
+	c := m.given.Energy * m.head / m.cosine
 	depth, ok = solve.UnitRoot(func(depth float64) (float64, float64) {
 		g := m.channel.Section.At(depth)
 		return g.Area * g.Area * g.Area / (c * g.TopWidth), depth * (3*g.TopWidth/g.Area - g.TopWidthRate/g.TopWidth)
@@ -79,13 +78,13 @@ func (c *Channel) CriticalAt(depth float64) (discharge float64, absent Absence) 
 		return 0, Filled
 	}
 	g := c.Section.At(depth)
-	unit := Motion{channel: c, discharge: 1, head: 1 / c.Gravity, cosine: c.Cosine()}
+	unit := c.motion(1)
 	term := unit.froudeTerm(g)
 	if !(term > 0) {
 		return 0, NoMinimum
 	}
 	q := math.Sqrt(unit.cosine / term)
-	m := Motion{channel: c, discharge: q, head: q * q / c.Gravity, cosine: unit.cosine}
+	m := c.motion(q)
 	// The energy must rise above: a little below the depth its derivative is negative.
 	step := depth * 1e-6
 	if !(m.EnergyRate(c.Section.At(depth-step)) < 0) {

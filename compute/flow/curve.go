@@ -60,7 +60,7 @@ func (c *Channel) uniform() curve {
 // cos - constant*T/A^3.
 func (m *Motion) hollow(of quantity) curve {
 	f := curve{motion: *m, of: of}
-	if m.channel.constantCoefficients() {
+	if m.fixed {
 		switch m.channel.Section.Form() {
 		case section.Rising, section.Arched:
 			f.turning = once

@@ -1,6 +1,9 @@
 package flow
 
-import "leat/compute/section"
+import (
+	"leat/compute/friction"
+	"leat/compute/section"
+)
 
 // Motion is a discharge in a channel, with what its energy and force need. It belongs to one barrel.
 type Motion struct {
@@ -8,12 +11,48 @@ type Motion struct {
 	discharge float64 // of one barrel, m3/s
 	head      float64 // discharge squared over gravity, m5
 	cosine    float64
+
+	// What would else be asked of the channel and its law again at every depth:
+	fixed   bool                  // alpha and beta do not vary with depth:
+	given   friction.Coefficients // then these
+	byPower bool                  // the law is a power law:
+	power   friction.Power        // then this
 }
 
-// Motion returns the motion of a discharge (total, m3/s). The channel must outlive it.
-func (c *Channel) Motion(discharge float64) Motion {
-	q := discharge / c.barrels()
-	return Motion{channel: c, discharge: q, head: q * q / c.Gravity, cosine: c.Cosine()}
+// Motion returns the motion of a discharge (total, m3/s). The channel must outlive it and stay as it is.
+func (c *Channel) Motion(discharge float64) Motion { return c.motion(discharge / c.barrels()) }
+
+// motion returns the motion of a discharge of one barrel.
+func (c *Channel) motion(discharge float64) Motion {
+	m := Motion{channel: c, discharge: discharge, head: discharge * discharge / c.Gravity, cosine: c.Cosine()}
+	m.power, m.byPower = c.Law.(friction.Power)
+	if m.fixed = m.byPower || c.constantCoefficients(); m.fixed {
+		m.given = friction.Coefficients{Energy: orOne(c.EnergyCoefficient), Momentum: orOne(c.MomentumCoefficient)}
+	}
+	return m
+}
+
+func orOne(coefficient float64) float64 {
+	if coefficient == 0 {
+		return 1
+	}
+	return coefficient
+}
+
+// coefficients returns alpha and beta and their rates at a geometry.
+func (m *Motion) coefficients(g section.Geometry) friction.Coefficients {
+	if m.fixed {
+		return m.given
+	}
+	return m.channel.coefficients(g)
+}
+
+// conveyance returns the conveyance at a geometry; 0 where the law gives none.
+func (m *Motion) conveyance(g section.Geometry) float64 {
+	if m.byPower {
+		return m.power.At(g).K
+	}
+	return m.channel.Law.AtDischarge(m.channel.Wetted(g), m.discharge).K
 }
 
 // Discharge returns the discharge of one barrel in m3/s.
@@ -26,7 +65,7 @@ func (m *Motion) Energy(g section.Geometry) float64 {
 
 // VelocityHead returns alpha*V^2/2g in m.
 func (m *Motion) VelocityHead(g section.Geometry) float64 {
-	return m.channel.coefficients(g).Energy * m.head / (2 * g.Area * g.Area)
+	return m.coefficients(g).Energy * m.head / (2 * g.Area * g.Area)
 }
 
 // EnergyRate returns dE/ddepth = cos*(1 - F^2), with the change of alpha.
@@ -36,23 +75,23 @@ func (m *Motion) EnergyRate(g section.Geometry) float64 {
 
 // froudeTerm returns cos*F^2 = Q^2/g * (alpha*T/A^3 - (dalpha/ddepth)/(2 A^2)).
 func (m *Motion) froudeTerm(g section.Geometry) float64 {
-	k := m.channel.coefficients(g)
+	k := m.coefficients(g)
 	return m.head / (g.Area * g.Area) * (k.Energy*g.TopWidth/g.Area - k.EnergyRate/2)
 }
 
 // Force returns the specific force M = beta*Q^2/(g A) + cos*A*(depth of the centroid) in m3.
 func (m *Motion) Force(g section.Geometry) float64 {
-	return m.channel.coefficients(g).Momentum*m.head/g.Area + m.cosine*g.Moment
+	return m.coefficients(g).Momentum*m.head/g.Area + m.cosine*g.Moment
 }
 
 // ForceRate returns dM/ddepth in m2.
 func (m *Motion) ForceRate(g section.Geometry) float64 {
-	k := m.channel.coefficients(g)
+	k := m.coefficients(g)
 	return m.cosine*g.Area + m.head/g.Area*(k.MomentumRate-k.Momentum*g.TopWidth/g.Area)
 }
 
 // FrictionSlope returns (Q/K)^2 at a geometry; +Inf where the law gives no conveyance.
 func (m *Motion) FrictionSlope(g section.Geometry) float64 {
-	ratio := m.discharge / m.channel.Law.AtDischarge(m.channel.Wetted(g), m.discharge).K
+	ratio := m.discharge / m.conveyance(g)
 	return ratio * ratio
 }

@@ -4,7 +4,6 @@ import (
 	"math"
 
 	"leat/compute"
-	"leat/compute/friction"
 	"leat/compute/section"
 )
 
@@ -50,8 +49,18 @@ type State struct {
 
 // State describes a depth, 0 < depth <= the section's height. A discharge of 0 stands for none.
 func (c *Channel) State(depth, discharge float64) State {
+	var s State
+	m := c.Motion(discharge)
+	m.Describe(depth, discharge, &s)
+	return s
+}
+
+// Describe writes into s the state of a depth, 0 < depth <= the section's height, under this motion, whose total discharge in m3/s is told again; one of 0
+// stands for none. It is State for callers who describe many depths.
+func (m *Motion) Describe(depth, discharge float64, s *State) {
+	c := m.channel
 	g := c.Geometry(depth)
-	s := State{Geometry: g, Radius: g.Radius(), HydraulicDepth: math.NaN(), CentroidDepth: g.Moment / g.Area,
+	*s = State{Geometry: g, Radius: g.Radius(), HydraulicDepth: math.NaN(), CentroidDepth: g.Moment / g.Area,
 		Conveyance: math.NaN(), UniformDischarge: math.NaN(), FroudeNumber: math.NaN(), FrictionSlope: math.NaN(),
 		BedShearStress: math.NaN(), StreamPower: math.NaN()}
 	full := c.Full(depth)
@@ -59,15 +68,18 @@ func (c *Channel) State(depth, discharge float64) State {
 		s.HydraulicDepth = g.Area / g.TopWidth
 	}
 	if c.Law != nil && c.Slope > 0 {
-		s.Conveyance = c.Law.AtSlope(c.Wetted(g), c.Slope).K
+		if m.byPower {
+			s.Conveyance = m.power.At(g).K
+		} else {
+			s.Conveyance = c.Law.AtSlope(c.Wetted(g), c.Slope).K
+		}
 		s.UniformDischarge = c.barrels() * s.Conveyance * math.Sqrt(c.Slope)
 	}
 	if discharge > 0 {
-		c.move(&s, discharge, full)
+		m.move(s, discharge, full)
 	} else if c.Law != nil && !(c.Slope > 0) {
 		s.Conveyance = c.restingConveyance(g)
 	}
-	return s
 }
 
 // restingConveyance returns the conveyance where there is neither a discharge nor a positive slope: known for laws
@@ -80,12 +92,11 @@ func (c *Channel) restingConveyance(g section.Geometry) float64 {
 }
 
 // move fills in what a discharge adds to a state.
-func (c *Channel) move(s *State, discharge float64, full bool) {
-	g := s.Geometry
-	m := c.Motion(discharge)
+func (m *Motion) move(s *State, discharge float64, full bool) {
+	g, c := s.Geometry, m.channel
 	s.Discharge = discharge
 	s.Velocity = m.discharge / g.Area
-	s.VelocityHead = c.coefficients(g).Energy * m.head / (2 * g.Area * g.Area)
+	s.VelocityHead = m.VelocityHead(g)
 	s.SpecificEnergy = g.Depth*m.cosine + s.VelocityHead
 	s.SpecificForce = m.Force(g)
 	if full {
@@ -107,8 +118,8 @@ func (c *Channel) move(s *State, discharge float64, full bool) {
 	if c.Law == nil {
 		return
 	}
-	if _, power := c.Law.(friction.Power); !power || math.IsNaN(s.Conveyance) { // a power law's conveyance is one at every slope and discharge
-		s.Conveyance = c.Law.AtDischarge(c.Wetted(g), m.discharge).K
+	if !m.byPower || math.IsNaN(s.Conveyance) { // a power law's conveyance is one at every slope and discharge
+		s.Conveyance = m.conveyance(g)
 	}
 	if !(s.Conveyance > 0) {
 		s.Conveyance = math.NaN()
