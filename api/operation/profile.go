@@ -2,6 +2,7 @@ package operation
 
 import (
 	"errors"
+	"sync"
 
 	"leat/api/wire"
 	"leat/compute"
@@ -9,7 +10,17 @@ import (
 )
 
 // Profile is the operation profile: one steady run of gradually varied flow.
-var Profile = newProfile(profile.Solve)
+var Profile = newProfile(solve)
+
+// solvers keep their memory from one run to the next.
+var solvers = sync.Pool{New: func() any { return new(profile.Solver) }}
+
+func solve(run *profile.Run) (*profile.Answer, error) {
+	s := solvers.Get().(*profile.Solver)
+	answer, err := s.Solve(run)
+	solvers.Put(s)
+	return answer, err
+}
 
 // newProfile returns the operation with a solver.
 func newProfile(solve func(*profile.Run) (*profile.Answer, error)) Operation {

@@ -16,8 +16,7 @@ func (c *Channel) Critical(discharge float64, dst []float64) (depths []float64, 
 }
 
 func (m *Motion) critical(dst []float64) (depths []float64, absent Absence) {
-	form := m.channel.Section.Form()
-	if m.fixed && (form == section.Rising || form == section.Arched) {
+	if m.onceCritical() {
 		hi := m.channel.Section.Height()
 		depth, ok := m.criticalBetween(0, hi)
 		if !ok {
@@ -55,6 +54,12 @@ func (m *Motion) critical(dst []float64) (depths []float64, absent Absence) {
 		return dst, Kinked
 	}
 	return dst, FillsFirst
+}
+
+// onceCritical reports whether exactly one depth is known to be critical: alpha is constant, and A^3/T rises throughout.
+func (m *Motion) onceCritical() bool {
+	form := m.channel.Section.Form()
+	return m.fixed && (form == section.Rising || form == section.Arched)
 }
 
 // criticalBetween returns the depth between two others at which F^2 falls through one, where alpha is constant.

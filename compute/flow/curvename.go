@@ -6,20 +6,36 @@ import "math"
 // slope or for a full section (Bakhmeteff 1932; Chow 1959, section 9-3). The number is 1 where the bed falls faster than the energy and F < 1, 3 where
 // it falls more slowly and F > 1, else 2; 2 too at critical flow.
 func (c *Channel) CurveName(s *State, class SlopeClass, normal []float64) string {
-	for _, depth := range normal {
-		if math.Abs(s.Geometry.Depth-depth) <= same*depth {
+	return c.curveName(s.Geometry.Depth, s.FrictionSlope, s.Regime, class, normal)
+}
+
+// CurveName is Channel.CurveName at a depth, for callers who need nothing else of its state.
+func (m *Motion) CurveName(depth float64, class SlopeClass, normal []float64) string {
+	c := m.channel
+	g := c.Geometry(depth)
+	_, regime := m.regime(g, c.Full(depth))
+	slope := m.FrictionSlope(g)
+	if math.IsInf(slope, 1) {
+		slope = math.NaN() // no conveyance
+	}
+	return c.curveName(depth, slope, regime, class, normal)
+}
+
+func (c *Channel) curveName(depth, friction float64, regime Regime, class SlopeClass, normal []float64) string {
+	for _, n := range normal {
+		if math.Abs(depth-n) <= same*n {
 			return "uniform"
 		}
 	}
-	if class == Unclassed || s.Regime == FullFlow || math.IsNaN(s.FrictionSlope) {
+	if class == Unclassed || regime == FullFlow || math.IsNaN(friction) {
 		return ""
 	}
 	number := byte('2')
 	switch {
-	case s.Regime == CriticalFlow:
-	case c.Slope > s.FrictionSlope && s.Regime == Subcritical:
+	case regime == CriticalFlow:
+	case c.Slope > friction && regime == Subcritical:
 		number = '1'
-	case c.Slope < s.FrictionSlope && s.Regime == Supercritical:
+	case c.Slope < friction && regime == Supercritical:
 		number = '3'
 	}
 	return curveNames[class][number-'1']

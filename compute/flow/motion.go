@@ -58,6 +58,9 @@ func (m *Motion) conveyance(g section.Geometry) float64 {
 // Discharge returns the discharge of one barrel in m3/s.
 func (m *Motion) Discharge() float64 { return m.discharge }
 
+// Cosine returns the cosine of the bed's angle.
+func (m *Motion) Cosine() float64 { return m.cosine }
+
 // Energy returns the specific energy E = depth*cos + alpha*Q^2/(2 g A^2) in m.
 func (m *Motion) Energy(g section.Geometry) float64 {
 	return g.Depth*m.cosine + m.VelocityHead(g)

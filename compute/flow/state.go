@@ -99,22 +99,7 @@ func (m *Motion) move(s *State, discharge float64, full bool) {
 	s.VelocityHead = m.VelocityHead(g)
 	s.SpecificEnergy = g.Depth*m.cosine + s.VelocityHead
 	s.SpecificForce = m.Force(g)
-	if full {
-		s.Regime = FullFlow
-	} else {
-		square := m.froudeTerm(g) / m.cosine
-		if square >= 0 {
-			s.FroudeNumber = math.Sqrt(square)
-		}
-		switch {
-		case math.Abs(s.FroudeNumber-1) <= same:
-			s.Regime = CriticalFlow
-		case square > 1:
-			s.Regime = Supercritical
-		default:
-			s.Regime = Subcritical
-		}
-	}
+	s.FroudeNumber, s.Regime = m.regime(g, full)
 	if c.Law == nil {
 		return
 	}
@@ -129,4 +114,23 @@ func (m *Motion) move(s *State, discharge float64, full bool) {
 	s.FrictionSlope = ratio * ratio
 	s.BedShearStress = compute.WaterDensity * c.Gravity * s.Radius * s.FrictionSlope
 	s.StreamPower = s.BedShearStress * s.Velocity
+}
+
+// regime returns the Froude number (NaN where there is none) and the regime at a geometry.
+func (m *Motion) regime(g section.Geometry, full bool) (froude float64, regime Regime) {
+	if full {
+		return math.NaN(), FullFlow
+	}
+	square := m.froudeTerm(g) / m.cosine
+	froude = math.NaN()
+	if square >= 0 {
+		froude = math.Sqrt(square)
+	}
+	switch {
+	case math.Abs(froude-1) <= same:
+		return froude, CriticalFlow
+	case square > 1:
+		return froude, Supercritical
+	}
+	return froude, Subcritical
 }

@@ -5,20 +5,18 @@ import "math"
 // balance recomputes the energy along a segment from depths alone, piece by piece: the fall of the energy level must be what friction takes, by a quadrature
 // of its own. Its error is the checkpoint's.
 func (c *chain) balance(a *Answer, g *segment) error {
-	l, t := g.leg, g.trace
-	knots := g.knots()
+	l := g.leg
 	last := math.NaN() // the energy at the end of the piece before
-	for i := 1; i < len(knots); i++ {
+	for i := range g.pieces {
 		if err := c.check(); err != nil {
 			return err
 		}
-		from, to := knots[i-1], knots[i]
-		p := t.at(from + (to-from)/2)
-		s0, s1 := l.side(from), l.side(to)
+		p := &g.pieces[i]
+		s0, s1 := l.side(p.from), l.side(p.to)
 		// At a break of the section the energy may jump: the piece's own side of it counts.
-		y0, y1 := p.depth(from), p.depth(to)
+		y0, y1 := p.edges()
 		e0, e1 := s0.energy(math.Nextafter(y0, y1)), s1.energy(math.Nextafter(y1, y0))
-		residual := math.Abs(e1 - e0 - l.workIn(p, from, to, 1e-12*max(e0, e1)))
+		residual := math.Abs(e1 - e0 - l.workIn(p, e1-e0, 1e-12*max(e0, e1)))
 		if !math.IsNaN(last) {
 			residual = max(residual, math.Abs(e0-last)) // the depth may change between two pieces, at equal energy
 		}
@@ -30,18 +28,14 @@ func (c *chain) balance(a *Answer, g *segment) error {
 	return nil
 }
 
-// workIn returns the change of the specific energy between two chainages of one panel, by ever more parts until it stands.
-func (l *leg) workIn(p *panel, from, to, tolerance float64) float64 {
-	if p.held { // between two friction slopes any is possible, and the one that holds the depth is the true one
-		s0, s1 := l.side(from), l.side(to)
-		return s1.energy(p.y0) - s0.energy(p.y0)
+// workIn returns the change of the specific energy along a piece, of which its ends say what it is, by ever more parts until it stands.
+func (l *leg) workIn(p *piece, change, tolerance float64) float64 {
+	if p.panel.held { // between two friction slopes any is possible, and the one that holds the depth is the true one
+		return change
 	}
-	if p.form != straight {
+	if p.panel.form != straight {
 		// The pieces are resolved by fewer points than this rule has.
-		s0, s1 := l.side(from), l.side(to)
-		y0, y1 := p.depth(from), p.depth(to)
-		change := s1.energy(math.Nextafter(y1, y0)) - s0.energy(math.Nextafter(y0, y1))
-		if once := l.work(p, from, to); math.Abs(once-change) <= 100*tolerance {
+		if once := l.work(p.panel, p.from, p.to); math.Abs(once-change) <= 100*tolerance {
 			return once
 		}
 	}
@@ -49,9 +43,9 @@ func (l *leg) workIn(p *panel, from, to, tolerance float64) float64 {
 	for parts := 2; parts <= 64; parts *= 2 {
 		sum := 0.0
 		for k := range parts {
-			x0 := from + (to-from)*float64(k)/float64(parts)
-			x1 := from + (to-from)*float64(k+1)/float64(parts)
-			sum += l.work(p, x0, x1)
+			x0 := p.from + (p.to-p.from)*float64(k)/float64(parts)
+			x1 := p.from + (p.to-p.from)*float64(k+1)/float64(parts)
+			sum += l.work(p.panel, x0, x1)
 		}
 		if math.Abs(sum-work) <= tolerance {
 			return sum
@@ -76,7 +70,7 @@ func (l *leg) work(p *panel, x0, x1 float64) float64 {
 			sum += checking.weight[i] * l.energySlope(at, p.depth(at))
 			continue
 		}
-		run, slope := p.s.integral(at)
+		run, slope := p.s.at(at)
 		y, _, _ := p.chart.depth(p.u0 + (p.u1-p.u0)*(at+1)/2)
 		sum += checking.weight[i] * slope * l.energySlope(p.x0+run, y)
 	}
@@ -84,7 +78,7 @@ func (l *leg) work(p *panel, x0, x1 float64) float64 {
 }
 
 // checking is the rule of the balances, of more points than the solver's.
-var checking = newGauss(16)
+var checking = newGauss(20)
 
 // energySlope returns dE/dx: S0 - Sf, less (2*beta - alpha)*Q*q/(g A^2) for a lateral inflow that brings no momentum.
 func (l *leg) energySlope(x, y float64) float64 {

@@ -26,9 +26,10 @@ func BenchmarkSolveM1(b *testing.B) {
 	for k := range 100 {
 		run.Report.At = append(run.Report.At, length*float64(k)/99)
 	}
+	var solver profile.Solver
 	b.ReportAllocs()
 	for b.Loop() {
-		answer, err := profile.Solve(run)
+		answer, err := solver.Solve(run)
 		if err != nil || len(answer.Stations) < 100 {
 			b.Fatal(err)
 		}

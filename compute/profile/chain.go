@@ -3,6 +3,7 @@ package profile
 import (
 	"errors"
 	"math"
+	"slices"
 )
 
 // A chain is a run under way.
@@ -15,6 +16,8 @@ type chain struct {
 	jumps    []Jump
 	controls []Control
 	turns    []turn
+
+	memory memory
 }
 
 // A turn is a place where the specific forces balance.
@@ -23,16 +26,12 @@ type turn struct {
 	residual float64
 }
 
-// newChain lays out the legs of a run.
-func newChain(run *Run) (*chain, error) {
-	c := &chain{run: run}
-	var err error
-	if len(run.Stations) > 0 {
-		err = c.layStations()
-	} else {
-		err = c.layReaches()
+// lay lays out the legs of the run.
+func (c *chain) lay() error {
+	if len(c.run.Stations) > 0 {
+		return c.layStations()
 	}
-	return c, err
+	return c.layReaches()
 }
 
 // layReaches makes a leg of every reach and the joints between them.
@@ -45,11 +44,12 @@ func (c *chain) layReaches() error {
 			return err
 		}
 		total += r.Inflow
-		l := &leg{reach: i, start: at, length: r.Length, slope: r.Channel.Slope, prismatic: true}
+		l := c.memory.leg()
+		*l = leg{reach: i, start: at, length: r.Length, slope: r.Channel.Slope, prismatic: true, subs: l.subs}
 		var err error
 		if r.Lateral > 0 {
-			l.stretch = newFed(&r.Channel, total, r.Lateral, r.Length, c.run.Checkpoint)
-		} else if l.stretch, err = newPrismatic(&r.Channel, total, r.Length, c.run.Checkpoint); err != nil {
+			l.stretch = newFed(&r.Channel, total, r.Lateral, r.Length, c.run.Checkpoint, &c.memory)
+		} else if l.stretch, err = newPrismatic(&r.Channel, total, r.Length, c.run.Checkpoint, &c.memory); err != nil {
 			return err
 		}
 		if l.inside, err = l.stretch.controls(parts); err != nil {
@@ -141,6 +141,8 @@ type segment struct {
 	trace       *trace
 	from, to    float64 // chainages within the leg
 	subcritical bool
+	pieces      []piece // once the walk is over
+	places      int     // how many of it are reported
 }
 
 // walk goes downstream and decides what flows: the supercritical branch where its specific force is the larger, else the subcritical one.
@@ -171,7 +173,7 @@ func (c *chain) walk() error {
 					continue
 				}
 				end := t.panels[0].x0
-				c.segments = append(c.segments, segment{l, t, x, end, true})
+				c.segments = append(c.segments, segment{leg: l, trace: t, from: x, to: end, subcritical: true})
 				x = end
 				if x < l.length {
 					depth = t.panels[0].y0
@@ -200,7 +202,7 @@ func (c *chain) walk() error {
 				fromBoundary = false
 			}
 			if to > x || !jumps {
-				c.segments = append(c.segments, segment{l, t, x, to, false})
+				c.segments = append(c.segments, segment{leg: l, trace: t, from: x, to: to})
 			}
 			switch {
 			case jumps && to > x:
@@ -288,7 +290,7 @@ func (c *chain) control(l *leg, x float64, kind string, depth float64) {
 // finish decides whether the downstream boundary, noted first, governs.
 func (c *chain) finish(l *leg, shooting bool) {
 	end := c.controls[0]
-	c.controls = c.controls[1:]
+	c.controls = slices.Delete(c.controls, 0, 1)
 	if shooting {
 		if c.run.Downstream.Kind != FreeOverfall {
 			c.notes.end("boundary_does_not_govern", "downstream", "Supercritical flow arrives at the downstream end with the larger force, so that the boundary there does not govern.")
@@ -300,21 +302,20 @@ func (c *chain) finish(l *leg, shooting bool) {
 
 // Solve computes a run. The error is compute.Faults for inputs that break a rule, a *NoSolution with the physical reason, an *Unsolved where a search
 // did not converge, or what the checkpoint returned.
-func Solve(run *Run) (*Answer, error) {
-	if faults := check(run); len(faults) > 0 {
-		return nil, faults
-	}
-	c, err := newChain(run)
-	if err != nil {
+func Solve(run *Run) (*Answer, error) { return new(Solver).Solve(run) }
+
+func (c *chain) solve() (*Answer, error) {
+	if err := c.lay(); err != nil {
 		return nil, err
 	}
-	if err = c.sweepUp(); err != nil {
+	if err := c.sweepUp(); err != nil {
 		return nil, err
 	}
-	for more := 64 * parts; ; more *= 16 {
+	err := c.walk()
+	for more := 64 * parts; err != nil; more *= 16 {
 		var stuck *stuck
-		if err = c.walk(); !errors.As(err, &stuck) {
-			break
+		if !errors.As(err, &stuck) {
+			return nil, err
 		}
 		// A control inside was passed over: look closer, and begin again.
 		if more > 1024 {
@@ -327,9 +328,7 @@ func Solve(run *Run) (*Answer, error) {
 		if err = c.sweepUp(); err != nil {
 			return nil, err
 		}
-	}
-	if err != nil {
-		return nil, err
+		err = c.walk()
 	}
 	return c.answer()
 }
@@ -340,9 +339,9 @@ const parts = 1
 // restart forgets what the sweeps and the walk found, and keeps the legs.
 func (c *chain) restart() {
 	for _, l := range c.legs {
-		l.subs = nil
+		l.subs = l.subs[:0]
 	}
-	c.notes, c.segments, c.jumps, c.controls, c.turns = notes{}, nil, nil, nil, nil
+	c.notes, c.segments, c.jumps, c.controls, c.turns = notes{}, c.segments[:0], c.jumps[:0], c.controls[:0], c.turns[:0]
 }
 
 // stuck tells that supercritical flow came to critical depth in a leg where no subcritical flow meets it.

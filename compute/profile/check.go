@@ -19,21 +19,22 @@ func check(run *Run) compute.Faults {
 		fault("reaches", "missing_member", "Give either reaches or at least two stations, not both.")
 	}
 	for i := range run.Reaches {
-		r, at := &run.Reaches[i], "reaches/"+strconv.Itoa(i)
+		r := &run.Reaches[i]
+		at := func(member string) string { return "reaches/" + strconv.Itoa(i) + member }
 		if !(r.Length > 0) {
-			fault(at+"/length", "not_positive", "The length must be greater than 0.")
+			fault(at("/length"), "not_positive", "The length must be greater than 0.")
 		}
 		if r.Channel.Law == nil {
-			fault(at+"/roughness", "missing_member", "A reach needs a roughness; give one.")
+			fault(at("/roughness"), "missing_member", "A reach needs a roughness; give one.")
 		}
 		if r.Inflow < 0 || r.Lateral < 0 {
-			fault(at, "negative", "Inflows must be 0 or more.")
+			fault(at(""), "negative", "Inflows must be 0 or more.")
 		}
 		if i == 0 && (r.Inflow != 0 || r.Entry != 0) {
-			fault(at, "first_reach", "The first reach has no inflow at its upstream end and no entry loss: there is nothing above it. Leave them out.")
+			fault(at(""), "first_reach", "The first reach has no inflow at its upstream end and no entry loss: there is nothing above it. Leave them out.")
 		}
 		if i == len(run.Reaches)-1 && (r.Drop != 0 || r.Loss != 0) {
-			fault(at, "last_reach", "The last reach has no drop and no loss at its downstream end: there is nothing below it. Leave them out.")
+			fault(at(""), "last_reach", "The last reach has no drop and no loss at its downstream end: there is nothing below it. Leave them out.")
 		}
 	}
 	for i := 1; i < len(run.Stations); i++ {

@@ -40,7 +40,7 @@ var integrate = func() (m [order][order]float64) {
 const settled = 1e-12
 
 func (v *varying) sweep(x, depth, direction float64, subcritical bool) (*trace, error) {
-	c := &collocation{v: v, direction: direction, subcritical: subcritical, x: x, y: depth, slope: math.NaN(), trace: &trace{up: direction == upstream}}
+	c := &collocation{v: v, direction: direction, subcritical: subcritical, x: x, y: depth, slope: math.NaN(), trace: v.memory.trace(direction == upstream)}
 	if direction == downstream {
 		c.far = v.length
 	}
@@ -71,6 +71,7 @@ func (v *varying) sweep(x, depth, direction float64, subcritical bool) (*trace, 
 
 func (c *collocation) done() *trace {
 	c.trace.end, c.trace.last, c.trace.whole = c.x, c.y, c.x == c.far
+	c.v.memory.end(c.trace)
 	return c.trace
 }
 
@@ -422,7 +423,7 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 	if _, d := v.rates(x1, y1); !(y1 > 0) || !(d*c.sign() > 0) {
 		return p, false
 	}
-	return panel{x0: c.x, x1: x1, y0: c.y, y1: y1, form: overChainage, s: s}, true
+	return panel{x0: c.x, x1: x1, y0: c.y, y1: y1, form: overChainage, s: s.antiderivative()}, true
 }
 
 // piece returns the depths of the breaks below and above the depth of the sweep, as it sets out to rise or to fall.
@@ -493,7 +494,7 @@ func (p *panel) crossing(depth float64) float64 {
 	lo, hi := -1.0, 1.0
 	for range 60 {
 		t := lo + (hi-lo)/2
-		rise, _ := p.s.integral(t)
+		rise, _ := p.s.at(t)
 		if (p.y0+rise-depth)*(p.y1-depth) > 0 {
 			hi = t
 		} else {
@@ -603,7 +604,7 @@ func (c *collocation) panelOverDepth(to float64) (p panel, ok bool) {
 	if _, d := v.rates(c.x+whole, to); d*c.sign() < 0 {
 		return p, false // past critical depth
 	}
-	return panel{x0: c.x, x1: c.x + whole, y0: c.y, y1: to, form: overDepth, chart: chart{plain: true}, u0: c.y, u1: to, s: s}, whole != 0
+	return panel{x0: c.x, x1: c.x + whole, y0: c.y, y1: to, form: overDepth, chart: chart{plain: true}, u0: c.y, u1: to, s: s.antiderivative()}, whole != 0
 }
 
 // eliminate solves a linear system in place by Gauss's elimination with pivots; the solution stands in b.

@@ -11,6 +11,7 @@ import (
 type neighbourhood struct {
 	normal float64
 	reach  float64 // how far it holds on both sides, m; 0 for nowhere
+	known  bool    // what follows is
 	slope  float64
 	k      float64             // the conveyance at normal depth
 	c      [neighbours]float64 // the conveyance's difference is distance*(c0 + c1*t + ...) with t = distance/reach
@@ -31,10 +32,16 @@ func (s *sweeper) near(c chart, b flow.Branch) *neighbourhood {
 		n.reach = reach
 		return n
 	}
-	*n = neighbourhood{normal: c.pole, reach: reach, slope: s.p.channel.Slope}
-	q := s.p.motion.Discharge()
+	*n = neighbourhood{normal: c.pole, reach: reach}
+	return n
+}
+
+// learn looks at the conveyance round the normal depth.
+func (n *neighbourhood) learn(p *prismatic) {
+	n.known, n.slope = true, p.channel.Slope
+	q := p.motion.Discharge()
 	at := func(depth float64) (k, rate float64) {
-		v := s.p.channel.Law.AtDischarge(s.p.channel.Section.At(depth), q)
+		v := p.channel.Law.AtDischarge(p.channel.Section.At(depth), q)
 		return v.K, v.Rate
 	}
 	n.k, _ = at(n.normal)
@@ -42,7 +49,7 @@ func (s *sweeper) near(c chart, b flow.Branch) *neighbourhood {
 	var t, d [neighbours]float64
 	for i := range t {
 		t[i] = math.Cos(math.Pi * (float64(i) + 0.5) / neighbours)
-		_, d[i] = at(n.normal + reach*t[i])
+		_, d[i] = at(n.normal + n.reach*t[i])
 	}
 	for j := 1; j < neighbours; j++ {
 		for i := neighbours - 1; i >= j; i-- {
@@ -59,11 +66,13 @@ func (s *sweeper) near(c chart, b flow.Branch) *neighbourhood {
 	for k := range n.c {
 		n.c[k] /= float64(k + 1)
 	}
-	return n
 }
 
 // steepness returns S0 - Sf at a distance from normal depth.
-func (n *neighbourhood) steepness(distance float64) float64 {
+func (n *neighbourhood) steepness(p *prismatic, distance float64) float64 {
+	if !n.known {
+		n.learn(p)
+	}
 	t := distance / n.reach
 	more := distance * (n.c[0] + t*(n.c[1]+t*(n.c[2]+t*(n.c[3]+t*(n.c[4]+t*n.c[5])))))
 	k := n.k + more

@@ -23,13 +23,17 @@ type prismatic struct {
 	height    float64
 	arched    bool
 	check     func() error
+	memory    *memory
+	room      [8]float64 // for the normal depths
+	naming    naming
 }
 
-func newPrismatic(c *flow.Channel, discharge, length float64, check func() error) (*prismatic, error) {
-	p := &prismatic{channel: c, motion: c.Motion(discharge), discharge: discharge, length: length, height: c.Section.Height(),
+func newPrismatic(c *flow.Channel, discharge, length float64, check func() error, memory *memory) (*prismatic, error) {
+	p := memory.reach()
+	*p = prismatic{branches: p.branches, memory: memory, channel: c, motion: c.Motion(discharge), discharge: discharge, length: length, height: c.Section.Height(),
 		arched: c.Section.Closed() && c.Section.At(c.Section.Height()).TopWidth == 0, check: check}
 	if c.Slope > 0 {
-		normals, absent := c.Normal(discharge, nil)
+		normals, absent := c.Normal(discharge, p.room[:0])
 		if absent == flow.Unsolved {
 			return nil, unsolved("normal depth")
 		}
@@ -56,7 +60,7 @@ func (p *prismatic) steepness(g section.Geometry) float64 {
 // sweep follows the flow of one regime from a place and a depth to the end of the reach in a direction, or to where its branch of the specific
 // energy ends.
 func (p *prismatic) sweep(x, depth, direction float64, subcritical bool) (*trace, error) {
-	s := &sweeper{p: p, direction: direction, subcritical: subcritical, x: x, y: depth, trace: &trace{up: direction == upstream}}
+	s := &sweeper{p: p, direction: direction, subcritical: subcritical, x: x, y: depth, trace: p.memory.trace(direction == upstream)}
 	if direction == downstream {
 		s.far = p.length
 	}
@@ -69,6 +73,7 @@ func (p *prismatic) sweep(x, depth, direction float64, subcritical bool) (*trace
 	}
 	s.trace.end, s.trace.last = s.x, s.y
 	s.trace.whole = s.x == s.far
+	p.memory.end(s.trace)
 	return s.trace, nil
 }
 
@@ -316,12 +321,13 @@ func (s *sweeper) chartAt(stop float64) (c chart, until float64) {
 	return c, until
 }
 
-// resolved is the tail of a series below which its panel counts as resolved.
+// resolved is the tail of a function below which its panel counts as resolved.
 const resolved = 1e-12
 
-// stretched returns by what factor a panel could be wider for its tail to be just resolved: of an analytic function the tail goes with the order-th power of the width.
+// stretched returns by what factor a panel could be wider for its tail to be just resolved: of an analytic function the tail goes with the power of the width that
+// is the number of terms.
 func stretched(tail float64) float64 {
-	return math.Sqrt(math.Sqrt(math.Cbrt(resolved / max(tail, 1e-18))))
+	return math.Sqrt(math.Sqrt(math.Sqrt(math.Sqrt(resolved / max(tail, 1e-18)))))
 }
 
 // hop goes over a rise of the depth so small that its last places are all there is of it, with one value of dx/ddepth. It reports whether the stop was reached.
@@ -376,50 +382,52 @@ func (s *sweeper) step(b flow.Branch, stop float64, asymptote bool) bool {
 		} else {
 			y1, _, _ = c.depth(u1)
 		}
-		var values [order]float64
-		half := (u1 - u0) / 2
-		good := true
-		for j, t := range rule.node {
-			y, distance, rate := c.depth(u0 + half*(t+1))
-			g := p.channel.Section.At(y)
-			steepness := 0.0
-			if math.Abs(distance) <= near.reach {
-				steepness = near.steepness(distance)
-			} else {
-				steepness = p.steepness(g)
-			}
-			values[j] = p.motion.EnergyRate(g) / steepness * rate * half
-			good = good && values[j]*s.direction > 0
-		}
-		series := newSeries(&values)
-		tail := series.tail()
-		whole, _ := series.integral(1)
+		pn := s.trace.grow()
+		*pn = panel{x0: s.x, y0: s.y, y1: y1, form: overDepth, chart: c, u0: u0, u1: u1}
+		tail, good := s.integrate(pn, near)
+		whole := pn.s.whole()
 		settled := tail < resolved || tail*math.Abs(whole) < 1e-13*p.length || tails.reached(tail, noisyOverDepth)
 		if width > 1e-9 && (!settled || !good) && math.Abs(u1-u0) > 1e-9*math.Abs(u0) {
 			width = math.Min(width, math.Abs(u1-u0)) * min(max(0.9*stretched(tail), 0.25), 0.5)
+			s.trace.shrink()
 			continue
 		}
 		s.wider = 2
 		if tail < resolved {
 			s.wider = min(0.9*stretched(tail), 3)
 		}
-		x1 := s.x + whole
-		pn := panel{x0: s.x, x1: x1, y0: s.y, y1: y1, form: overDepth, chart: c, u0: u0, u1: u1, s: series}
-		if s.direction*(x1-s.far) >= 0 {
+		pn.x1 = s.x + whole
+		if s.direction*(pn.x1-s.far) >= 0 {
 			// The stretch ends inside the panel.
-			pn.x1 = x1
 			y := pn.depth(s.far)
-			if x1 == s.far {
-				y = y1
-			}
-			s.trace.panels = append(s.trace.panels, pn)
 			s.x, s.y = s.far, y
 			return true
 		}
-		s.trace.panels = append(s.trace.panels, pn)
-		s.x, s.y = x1, y1
+		s.x, s.y = pn.x1, y1
 		return clipped && until == stop
 	}
+}
+
+// integrate takes dx/ddepth at the points of a panel and sets its chainage. It returns the tail and whether the chainage goes the way of the sweep at
+// every point.
+func (s *sweeper) integrate(pn *panel, near *neighbourhood) (tail float64, good bool) {
+	p := s.p
+	c, u0, half := pn.chart, pn.u0, (pn.u1-pn.u0)/2
+	var values [terms]float64
+	good = true
+	for j, t := range points {
+		y, distance, rate := c.depth(u0 + half*(t+1))
+		g := p.channel.Section.At(y)
+		steepness := 0.0
+		if math.Abs(distance) <= near.reach {
+			steepness = near.steepness(p, distance)
+		} else {
+			steepness = p.steepness(g)
+		}
+		values[j] = p.motion.EnergyRate(g) / steepness * rate * half
+		good = good && values[j]*s.direction > 0
+	}
+	return pn.s.integrate(&values), good
 }
 
 // beyond decides what becomes of a sweep that has reached the end of its branch; it reports whether it goes on.

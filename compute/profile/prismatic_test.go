@@ -63,7 +63,7 @@ func TestCurvesAgainstRungeKutta(t *testing.T) {
 		{"A3", -0.001, 0.2, downstream, false, 10},
 	} {
 		c := trapezoid(t, 2, 1.5, 0.025, k.slope)
-		p, err := newPrismatic(c, 5, k.length, nil)
+		p, err := newPrismatic(c, 5, k.length, nil, new(memory))
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -93,7 +93,7 @@ func BenchmarkM1(b *testing.B) {
 	c := trapezoid(b, 2, 1.5, 0.025, 0.001)
 	b.ReportAllocs()
 	for b.Loop() {
-		p, _ := newPrismatic(c, 5, 3000, nil)
+		p, _ := newPrismatic(c, 5, 3000, nil, new(memory))
 		tr, _ := p.sweep(3000, 2.5, upstream, true)
 		for i := range 100 {
 			sink += tr.depth(30 * float64(i))

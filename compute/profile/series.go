@@ -2,7 +2,7 @@ package profile
 
 import "math"
 
-// order is the number of Gauss points of a panel; a panel's function is a polynomial of one degree less.
+// order is the number of Gauss points of a panel by collocation; the function sought is a polynomial of one degree less.
 const order = 12
 
 // A series is a function on [-1, 1] as a sum of Legendre polynomials, P_0 first.
@@ -121,31 +121,35 @@ var inverse = func() (r [order]float64) {
 	return r
 }()
 
-// invert returns the t in [-1, 1] at which the integral from -1, which must be monotone, is a value between 0 and the whole.
-func (s *series) invert(integral float64) float64 {
-	whole, _ := s.integral(1)
-	lo, hi := -1.0, 1.0
-	t := -1 + 2*integral/whole
-	sign := math.Copysign(1, whole)
-	for range 60 {
-		if !(t > lo && t < hi) {
-			t = lo + (hi-lo)/2
+// antiderivative returns the series' integral from -1.
+func (s *series) antiderivative() (a antiderivative) {
+	var c [terms + 2]float64
+	for k := range order {
+		for l := k; l < order; l += 2 {
+			c[k] += legendreInChebyshev[k][l] * s[l]
 		}
-		x, slope := s.integral(t)
-		e := x - integral
-		if sign*e < 0 {
-			lo = t
-		} else {
-			hi = t
-		}
-		step := e / slope
-		if !(math.Abs(step) > 4e-16) || hi-lo < 4e-16 {
-			return t
-		}
-		t -= step
 	}
-	return t
+	a.from(&c)
+	return a
 }
+
+// legendreInChebyshev[k][l] is the coefficient of T_k in P_l.
+var legendreInChebyshev = func() (m [order][order]float64) {
+	for j := range points {
+		p, below := 1.0, 0.0
+		for l := range order {
+			for k := range order {
+				weight := basis[k][min(j, terms-1-j)]
+				if j >= terms/2 && k%2 == 1 {
+					weight = -weight
+				}
+				m[k][l] += weight * p
+			}
+			p, below = legendre(l, points[j], p, below), p
+		}
+	}
+	return m
+}()
 
 // The most that a tail may be the noise of the last places, where the chainage is a series over the depth and where the depth is one over the chainage.
 const (

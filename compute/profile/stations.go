@@ -17,12 +17,13 @@ func (c *chain) layStations() error {
 		from, to := &channels[2*i], &channels[2*i+1]
 		*from, *to = a.Channel, b.Channel
 		from.Slope, to.Slope = slope, slope
-		l := &leg{reach: i, start: a.Chainage - stations[0].Chainage, length: length, slope: slope, bed: a.BedLevel}
+		l := c.memory.leg()
+		*l = leg{reach: i, start: a.Chainage - stations[0].Chainage, length: length, slope: slope, bed: a.BedLevel, subs: l.subs}
 		var err error
 		if l.prismatic = sameChannel(from, to); l.prismatic {
-			l.stretch, err = newPrismatic(from, c.run.Discharge, length, c.run.Checkpoint)
+			l.stretch, err = newPrismatic(from, c.run.Discharge, length, c.run.Checkpoint, &c.memory)
 		} else {
-			l.stretch = newInterval(from, to, c.run.Discharge, length, c.run.Checkpoint)
+			l.stretch = newInterval(from, to, c.run.Discharge, length, c.run.Checkpoint, &c.memory)
 		}
 		if err != nil {
 			return err

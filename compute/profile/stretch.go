@@ -30,7 +30,6 @@ type leg struct {
 	inside    []passage
 	subs      []*trace // subcritical sweeps, from downstream to upstream: from the end, and from each control inside
 	joint     joint    // to the next leg
-	naming    *naming  // of its curves, once known
 	above     above    // what the joint makes of the flow below it; of the last leg the boundary
 }
 

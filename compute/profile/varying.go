@@ -24,18 +24,19 @@ type varying struct {
 	breaks  []float64
 	height  float64
 	check   func() error
+	memory  *memory
 }
 
 // newFed returns a reach with lateral inflow.
-func newFed(c *flow.Channel, discharge, lateral, length float64, check func() error) *varying {
-	v := &varying{a: c, b: c, fed: true, slope: c.Slope, length: length, first: discharge, lateral: lateral, cosine: c.Cosine(), check: check}
+func newFed(c *flow.Channel, discharge, lateral, length float64, check func() error, memory *memory) *varying {
+	v := &varying{a: c, b: c, fed: true, slope: c.Slope, length: length, first: discharge, lateral: lateral, cosine: c.Cosine(), check: check, memory: memory}
 	v.prepare()
 	return v
 }
 
 // newInterval returns the interval between two stations, whose channels bear the slope of the interval.
-func newInterval(a, b *flow.Channel, discharge, length float64, check func() error) *varying {
-	v := &varying{a: a, b: b, slope: a.Slope, length: length, first: discharge, cosine: a.Cosine(), check: check}
+func newInterval(a, b *flow.Channel, discharge, length float64, check func() error, memory *memory) *varying {
+	v := &varying{a: a, b: b, slope: a.Slope, length: length, first: discharge, cosine: a.Cosine(), check: check, memory: memory}
 	v.prepare()
 	return v
 }

@@ -72,14 +72,3 @@ func exponential(p Pair) float64 {
 	s := Sum(1, t)
 	return math.Ldexp(s.High+(s.Low+small), int(n))
 }
-
-// Exp returns e^x to about one unit in the last place, by the same reduction and series as Power; 0 or +Inf where the result under- or overflows.
-func Exp(x float64) float64 {
-	switch {
-	case x > 709.78:
-		return math.Inf(1)
-	case x < -745.2:
-		return 0
-	}
-	return exponential(Pair{High: x})
-}

@@ -1,0 +1,48 @@
+package profile
+
+import (
+	"math"
+	"testing"
+)
+
+// e^(2t) and its integral from -1, which a series of sixteen terms resolves to the last places; cosh-like, so that even and odd terms both tell.
+func TestAntiderivative(t *testing.T) {
+	f := func(x float64) float64 { return math.Exp(2 * x) }
+	integral := func(x float64) float64 { return (math.Exp(2*x) - math.Exp(-2)) / 2 }
+	var values [terms]float64
+	for j, x := range points {
+		values[j] = f(x)
+	}
+	var a antiderivative
+	if tail := a.integrate(&values); !(tail < 1e-9 && tail > 1e-14) {
+		t.Errorf("tail %.1e", tail)
+	}
+	if got := a.whole(); !(math.Abs(got-integral(1)) <= 2e-13) {
+		t.Errorf("whole %v, want %v", got, integral(1))
+	}
+	for i := range 201 {
+		x := -1 + float64(i)/100
+		value, slope := a.at(x)
+		if !(math.Abs(value-integral(x)) <= 2e-13) || !(math.Abs(slope-f(x)) <= 2e-11) {
+			t.Errorf("at %v: %v, %v, want %v, %v", x, value, slope, integral(x), f(x))
+		}
+		for _, guess := range [4]float64{-1, x, 0.3, 1} {
+			if root, _, _, _ := a.invert(value, a.whole(), guess); !(math.Abs(root-x) <= 1e-14) {
+				t.Errorf("from %v: %v, want %v", guess, root, x)
+			}
+		}
+	}
+}
+
+// A Legendre series and what is made of it are one function.
+func TestLegendreInChebyshev(t *testing.T) {
+	s := series{1, -0.5, 0.25, 3, -2, 0.125, 0.7, 0.6, -0.3, 0.2, 0.1, -0.9}
+	a := s.antiderivative()
+	for i := range 21 {
+		x := -1 + float64(i)/10
+		want, rate := s.integral(x)
+		if value, slope := a.at(x); !(math.Abs(value-want) <= 1e-14) || !(math.Abs(slope-rate) <= 1e-12) {
+			t.Errorf("at %v: %v, %v, want %v, %v", x, value, slope, want, rate)
+		}
+	}
+}
