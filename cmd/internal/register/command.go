@@ -30,6 +30,7 @@ const Usage = `leat register carries every asset of a register through a calcula
   leat register check MAPPING   read everything and say what is wrong, by row and column; nothing is computed or written
   leat register run MAPPING     compute and write; started again after a break it goes on where it stopped
   leat register work MAPPING    join a run that was begun with run --shared, on this or another machine (PostgreSQL)
+  leat register demo FOLDER     write the register of an invented district there, as a GeoPackage and as SQL, to try all this on
 
 MAPPING is the YAML file that says where the register is, which column feeds which member in which unit, and where the
 results go. Passwords come from the environment (PGPASSWORD, PGPASSFILE) or a file, never from there or from a flag.
@@ -51,6 +52,9 @@ type command struct {
 
 // Run carries out check, run or work.
 func Run(ctx context.Context, arguments []string, stdout, stderr io.Writer) Outcome {
+	if len(arguments) > 0 && arguments[0] == "demo" {
+		return writeDemo(ctx, arguments[1:], stdout, stderr)
+	}
 	c := &command{stdout: stdout, stderr: stderr}
 	err := c.parse(arguments)
 	if errors.Is(err, flag.ErrHelp) {
@@ -120,9 +124,9 @@ func (c *command) judge() error {
 	switch c.name {
 	case "check", "run", "work":
 	case "":
-		return errors.New("say check, run or work; --help tells more")
+		return errors.New("say check, run, work or demo; --help tells more")
 	default:
-		return fmt.Errorf("there is no %q; say check, run or work", c.name)
+		return fmt.Errorf("there is no %q; say check, run, work or demo", c.name)
 	}
 	switch {
 	case c.mapping == "":

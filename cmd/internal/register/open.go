@@ -9,6 +9,7 @@ import (
 
 	"leat/cmd/internal/register/csvfile"
 	"leat/cmd/internal/register/geojson"
+	"leat/cmd/internal/register/geopackage"
 	"leat/cmd/internal/register/mapping"
 	"leat/cmd/internal/register/store"
 )
@@ -21,8 +22,9 @@ type format struct {
 
 // formats are all kinds, by the name that a mapping file gives them.
 var formats = map[string]format{
-	"csv":     {csvfile.OpenSource, csvfile.OpenTarget},
-	"geojson": {geojson.OpenSource, geojson.OpenTarget},
+	"csv":        {csvfile.OpenSource, csvfile.OpenTarget},
+	"geojson":    {geojson.OpenSource, geojson.OpenTarget},
+	"geopackage": {geopackage.OpenSource, geopackage.OpenTarget},
 }
 
 func openSource(ctx context.Context, file *mapping.File) (store.Source, error) {

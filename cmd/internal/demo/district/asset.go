@@ -3,6 +3,7 @@ package district
 import (
 	"fmt"
 	"math/rand/v2"
+	"slices"
 )
 
 // Rows is the number of assets.
@@ -52,6 +53,10 @@ func Channels() []Channel {
 	for i := range Rows {
 		p := parishOf(r)
 		k := classes[classOf(r)]
+		m, wrong := mistakeOf(i + 1)
+		if wrong {
+			k = classes[slices.IndexFunc(classes, func(c class) bool { return c.name == m.Class })]
+		}
 		c := k.draw(&pen{Rand: r, lattices: l, parish: p, class: k})
 		c.Code, c.Parish, c.Class = fmt.Sprintf("%s-%s-%04d", p.code, k.code, i+1), p.name, k.name
 		c.Status = "in_use"
@@ -62,7 +67,7 @@ func Channels() []Channel {
 			c.Status = "abandoned"
 		}
 		c.Surveyed = fmt.Sprintf("20%02d-%02d-%02d", 12+r.IntN(14), 1+r.IntN(12), 1+r.IntN(28))
-		if m, wrong := mistakeOf(i + 1); wrong {
+		if wrong {
 			c.Status = "in_use"
 			m.spoil(&c)
 		}
