@@ -89,12 +89,12 @@ func (f *File) Compile(columns, child []row.Column) (*Mapping, error) {
 	if f.classes != nil {
 		c.class()
 	}
-	if f.points != nil {
-		c.child(child)
-	}
-	c.m.root.kind = -1
+	c.m.root.kind, c.missing = -1, f.missing
 	for i := range f.feeds {
 		c.add(&f.feeds[i])
+	}
+	if f.points != nil {
+		c.child(child)
 	}
 	c.constants()
 	c.finish(&c.m.root)
@@ -115,6 +115,7 @@ type compiling struct {
 	reader
 	columns []row.Column
 	members []wire.MemberDescription
+	missing []row.Value // in every column
 	m       *Mapping
 }
 
@@ -165,6 +166,7 @@ func (c *compiling) child(columns []row.Column) {
 	}
 	c.m.Child = []string{s.Offset, s.Level}
 	length := wire.MemberDescription{Path: []string{"section", "points"}, Form: wire.FormNumber, Quantity: wire.QuantityLength}
+	c.missing = nil // what is missing in the columns of the assets need not be in those of points
 	c.m.points = &points{c.compile(&c.File.points.offset, &length, 0), c.compile(&c.File.points.level, &length, 1)}
 	i := slices.IndexFunc(c.feeds, func(f memberFeed) bool { return f.name == "section_points" })
 	if i >= 0 {

@@ -182,6 +182,9 @@ func (p *parsing) block(n ast.Node, name string, about *wire.MemberDescription, 
 			if along == "" {
 				p.fault(n, "length_along is missing: say whether the length is measured in plan (plan) or along the bed (bed).")
 			}
+			if values != nil || f.missing != nil || f.unit != "" {
+				p.fault(n, "values, missing and unit belong to upstream_level, downstream_level and length, each for itself.")
+			}
 			if f.column != "" || constant != nil {
 				p.fault(n, "bed_slope comes either from a column or from levels, not from both.")
 			}

@@ -322,6 +322,7 @@ func (p *parsing) pointsTable(e entry) {
 		return func(e entry) {
 			*f = p.feed(e.value, e.name, &length)
 			*into = f.column
+			p.places["source.points."+e.name] = f.columnAt
 			if f.column == "" {
 				p.fault(e.value, "%s of points must come from a column.", e.name)
 			}

@@ -126,9 +126,12 @@ func (r *reader) members(n ast.Node, what string, known map[string]func(e entry)
 	}
 }
 
+// shortCode is the length of codes that resemble each other too often for a guess.
+const shortCode = 2
+
 // advice says which known name is meant, or which there are.
 func advice(name string, known []string) string {
-	if near, found := wire.Nearest(name, known); found {
+	if near, found := wire.Nearest(name, known); found && (len(name) > shortCode || strings.EqualFold(near, name)) {
 		return fmt.Sprintf("; did you mean %q", near)
 	}
 	switch {
