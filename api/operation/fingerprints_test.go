@@ -70,6 +70,11 @@ func goldenRequests(t *testing.T) (out [][3]string) {
 			out = append(out, [3]string{"depths", fmt.Sprintf("register, line %d", i+1), line})
 		}
 	}
+	for i, line := range strings.Split(strings.TrimSpace(read("testdata/ostermere_appraisals.ndjson")), "\n") {
+		if i%everyLine == 0 {
+			out = append(out, [3]string{"appraisal", fmt.Sprintf("appraisals, line %d", i+1), line})
+		}
+	}
 	for i, line := range strings.Split(strings.TrimSpace(read("testdata/ostermere_profiles.ndjson")), "\n") {
 		out = append(out, [3]string{"profile", fmt.Sprintf("run, line %d", i+1), line})
 	}

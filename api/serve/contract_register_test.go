@@ -10,6 +10,25 @@ import (
 	"testing"
 )
 
+// TestContractAppraisals sends the appraisals of Ostermere through bulk, in every form that the query parameters allow; every line is judged on its way.
+func TestContractAppraisals(t *testing.T) {
+	appraisals, err := os.ReadFile(filepath.Join("..", "..", "testdata", "ostermere_appraisals.ndjson"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	s := startService(t)
+	for _, query := range []string{"?detail=full&units=si", "?detail=brief&fingerprint=true", "?units=us"} {
+		status, answer := s.post("/v1/bulk/appraisal"+query, ndjsonMedia, appraisals)
+		if status != 200 {
+			t.Fatalf("%s: %d %s", query, status, answer)
+		}
+		results, lines := bytes.Count(answer, []byte(`,"result":`)), bytes.Count(appraisals, []byte("\n"))
+		if results < lines*95/100 || bytes.Contains(answer, []byte(`"status":5`)) {
+			t.Errorf("%s: %d results of %d lines", query, results, lines)
+		}
+	}
+}
+
 // TestContractRegister sends the register of Ostermere through bulk, in every form that the query parameters allow, and asks the other operations
 // about its assets: at depths from a film to the crown or above the bank, and for ratings of both kinds with depths and discharges
 // that some cannot have. Every line of every answer is judged on its way; what is looked at here is that they were answers.

@@ -16,6 +16,8 @@ type Asset struct {
 	ID    string // its id as a JSON literal: "OST-MD-0041" in quotes, or a bare number
 	Place string // the part of the district that it lies in; empty for the rows that are wrong on purpose
 	Text  string // the row: one JSON object, without a line feed; not JSON where a mistake spoiled it
+
+	laid laid // as it was drawn; without content for the rows that are wrong on purpose
 }
 
 // Register returns the assets in the order of the file.
@@ -39,7 +41,8 @@ func Register() []Asset {
 		if k.numbered { // the roads department numbers its gutters and knows no letters
 			id = fmt.Sprint(70000 + line)
 		}
-		assets = append(assets, Asset{Line: line, ID: id, Place: p.name, Text: row(r, id, p, k)})
+		l := lay(r, p, k)
+		assets = append(assets, Asset{Line: line, ID: id, Place: p.name, Text: l.row(id), laid: l})
 	}
 	return assets
 }

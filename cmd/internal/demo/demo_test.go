@@ -14,7 +14,7 @@ import (
 
 const registerFile = "../../../testdata/ostermere.ndjson"
 
-var update = flag.Bool("update", false, "write the register of Ostermere and its runs to testdata")
+var update = flag.Bool("update", false, "write the register of Ostermere, its appraisals and its runs to testdata")
 
 func TestCommittedRegisterIsTheGeneratorsOutput(t *testing.T) {
 	var made bytes.Buffer

@@ -23,9 +23,22 @@ type design struct {
 	level     int  // of a hundred, how many lie level or fall backwards
 }
 
-// row writes one request. The slope is the one at which the design depth would run at a believable velocity, the discharge a
+// A laid is a design as it lies in the ground: its slope and the flow that it was laid out for. Texts are JSON, empty for what is left out.
+type laid struct {
+	class
+	parish
+	design
+	units, barrels string
+	slope          string
+	discharge      float64 // m3/s
+	seen           string  // a depth that was gauged there
+	alpha, beta    string
+	steep          bool // laid out to shoot
+}
+
+// lay draws an asset. The slope is the one at which the design depth would run at a believable velocity, the discharge a
 // share of what the section then carries; both by Manning's formula, which is near enough for other laws too.
-func row(r *rand.Rand, id string, p parish, c class) string {
+func lay(r *rand.Rand, p parish, c class) laid {
 	pen := &pen{Rand: r, parish: p}
 	d := c.draw(pen)
 	velocity := pen.between(d.slow, d.fast)
@@ -64,16 +77,25 @@ func row(r *rand.Rand, id string, p parish, c class) string {
 	if d.natural && pen.chance(15) { // Chow 1959, table 2-1: regular channels, averages
 		alpha, beta = "1.15", "1.05"
 	}
+	return laid{
+		class: c, parish: p, design: d, units: units, barrels: barrels, slope: slopeText, discharge: capacity * share, seen: seen, alpha: alpha, beta: beta,
+		steep: velocity > 3,
+	}
+}
+
+// row writes the request for the depths of an asset.
+func (l *laid) row(id string) string {
+	pen := &pen{parish: l.parish}
 	return object(
 		"id", id,
-		"units", units,
-		"section", d.section,
-		"barrels", barrels,
-		"roughness", d.roughness,
-		"bed_slope", slopeText,
-		"discharge", pen.discharge(capacity*share),
-		"depth", seen,
-		"energy_coefficient", alpha,
-		"momentum_coefficient", beta,
+		"units", l.units,
+		"section", l.section,
+		"barrels", l.barrels,
+		"roughness", l.roughness,
+		"bed_slope", l.slope,
+		"discharge", pen.discharge(l.discharge),
+		"depth", l.seen,
+		"energy_coefficient", l.alpha,
+		"momentum_coefficient", l.beta,
 	)
 }
