@@ -11,6 +11,7 @@ const (
 	BeyondTable          // the last row of a table carries less than the discharge
 	NoConveyance         // the law gives no conveyance at any depth
 	Jumped               // the conveyance jumps past the discharge at a depth where perimeter is added at once
+	LawChanges           // the friction law jumps past the discharge at a depth where one of its formulas gives way to another
 	FillsFirst           // the flow is supercritical at every free surface: the crown or last row is reached before critical depth
 	Kinked               // the specific energy has its only minimum at a kink, where dE/ddepth jumps from below to above 0
 	Above                // the depth would lie above the crown or the last row
@@ -28,6 +29,7 @@ var absences = [...]struct{ code, detail string }{
 	BeyondTable:  {"beyond_table", "The discharge is more than the section carries at any depth up to its last row."},
 	NoConveyance: {"no_conveyance", "The roughness is so large against the hydraulic radius that the friction law gives no conveyance."},
 	Jumped:       {"conveyance_jumps", "The conveyance jumps past the discharge at a depth where wetted perimeter is added at once, so that no depth balances friction."},
+	LawChanges:   {"friction_law_changes", "The friction law jumps past the discharge at a depth where one of its formulas gives way to another, so that no depth balances friction."},
 	FillsFirst:   {"fills_first", "The flow stays supercritical up to the crown or the last row, so that the specific energy has no minimum below it."},
 	Kinked:       {"minimum_at_kink", "The specific energy has its minimum at a kink of the section or its roughness, where its derivative jumps past zero."},
 	Above:        {"above_section", "It would lie above the crown or the last row."},

@@ -60,7 +60,7 @@ func (c *Channel) normalBetween(k float64, b Branch) (depth float64, ok bool) {
 func (c *Channel) search(dst []float64, k float64) (depths []float64, absent Absence) {
 	none := len(dst)
 	f := c.uniform()
-	greatest, jumped, failed, carries := 0.0, false, false, false
+	greatest, jump, failed, carries := 0.0, Present, false, false
 	previous := 0.0 // the conveyance at the upper end of the branch before
 	c.branches(&f, func(b Branch) bool {
 		from, to := 0.0, math.Inf(1)
@@ -74,7 +74,7 @@ func (c *Channel) search(dst []float64, k float64) (depths []float64, absent Abs
 			if math.Abs(from-previous) <= seam*k {
 				dst = append(dst, b.Lo)
 			} else {
-				jumped = true
+				jump = c.jump(b.Lo)
 			}
 		}
 		greatest = max(greatest, from, to)
@@ -99,12 +99,20 @@ func (c *Channel) search(dst []float64, k float64) (depths []float64, absent Abs
 		return dst, Present
 	case !carries:
 		return dst, NoConveyance
-	case jumped:
-		return dst, Jumped
+	case jump != Present:
+		return dst, jump
 	case c.Section.Closed():
 		return dst, BeyondCrown
 	}
 	return dst, BeyondTable
+}
+
+// jump returns why the conveyance jumps at a depth: the section adds perimeter there, or its law changes.
+func (c *Channel) jump(depth float64) Absence {
+	if below, above := c.Section.At(depth).Perimeter, c.Section.At(above(depth)).Perimeter; above-below > seam*below {
+		return Jumped
+	}
+	return LawChanges
 }
 
 // seam is the relative difference below which the two values of a curve at a break count as one.
