@@ -21,7 +21,6 @@ func init() {
 	covers(then(broadCrest, crestRun), "bcw-si", "bcw-us")
 	covers(brink, "rouse-brink-number")
 	covers(then(sluice, gateRun), "sluice-061")
-	covers(bendFroude, "superelevation-graf")
 }
 
 func (c *claim) chezy(coefficient float64) friction.Law {
@@ -192,13 +191,4 @@ func sluice(c *claim) {
 	c.want("depth_at_contraction", c.alternate(channel, q, depth))
 	c.want("energy_check", channel.State(jet, q).SpecificEnergy/channel.State(depth, q).SpecificEnergy)
 	c.want("discharge_coefficient", q/(opening*math.Sqrt(2*c.gravity()*depth)))
-}
-
-func bendFroude(c *claim) {
-	channel := c.unit()
-	depth := c.given("depth")
-	state := channel.State(depth, c.given("velocity")*channel.Section.At(depth).Area)
-	c.want("froude", state.FroudeNumber)
-	c.aside("bend_radius")
-	c.leave("no operation knows bends", "rise_total")
 }

@@ -14,8 +14,6 @@ func init() {
 	covers(bedAndSides, "subra-3-composite-b")
 	covers(lotter, "lotter")
 	covers(threePanels, "alpha-three-panels")
-	covers(rollWaveLimits, "vedernikov-limits")
-	covers(rollWaves, "vedernikov-rect")
 	covers(kutter, "chow-5-1-kutter")
 	belongs("tabulated practice; nothing computes it", "alpha-ranges")
 }
@@ -128,31 +126,6 @@ func threePanels(c *claim) {
 	c.want("mean_velocity", k.K/g.Area)
 	c.want("energy_coefficient", coefficients.Energy)
 	c.want("momentum_coefficient", coefficients.Momentum)
-}
-
-// kinematic returns the exponent of the area in Q ~ A^b: dlnK/dlnA = (dK/dy/K)(A/T).
-func kinematic(g section.Geometry, law friction.Law) float64 {
-	k := law.AtSlope(g, 0.01)
-	return k.Rate / k.K * g.Area / g.TopWidth
-}
-
-// rollWaveLimits: uniform flow is unstable above F = 1/(b-1), b the kinematic exponent that the laws' derivatives give.
-func rollWaveLimits(c *claim) {
-	chezy, err := friction.NewChezy(50)
-	sound(c, chezy, err)
-	wide := section.Geometry{Depth: 2, Area: 2, Perimeter: 1, TopWidth: 1}
-	vee := c.triangle(1.5).At(0.8)
-	for name, g := range map[string]section.Geometry{"wide": wide, "triangular": vee} {
-		c.want(name+"_chezy", 1/(kinematic(g, chezy)-1))
-		c.want(name+"_manning", 1/(kinematic(g, c.manning(0.02))-1))
-	}
-	c.leave("there is no laminar law", "wide_laminar")
-}
-
-func rollWaves(c *claim) {
-	g := c.section().At(c.given("depth"))
-	c.want("shape_factor", 1-g.Radius()*g.PerimeterRate/g.TopWidth)
-	c.want("vedernikov_number", (kinematic(g, c.manning(0.02))-1)*c.given("froude"))
 }
 
 // kutter: the formula of Ganguillet and Kutter (1869), in feet, gives a Chezy coefficient; what follows from that is checked.

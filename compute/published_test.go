@@ -137,7 +137,7 @@ func belongs(reason string, ids ...string) {
 func TestPublished(t *testing.T) {
 	known := map[string]bool{}
 	counts := map[string]int{}
-	for _, file := range []string{"../testdata/published.json", "../testdata/published_more.json"} {
+	for _, file := range []string{"../testdata/published.json", "../testdata/published_more.json", "../testdata/published_appraisal.json"} {
 		data, err := os.ReadFile(file)
 		if err != nil {
 			t.Fatal(err)
