@@ -163,12 +163,12 @@ func (a *Asset) judge(v *view, c Criterion, l *Limits) Finding {
 	case GreatestVedernikovNumber:
 		f.Limit = l.GreatestVedernikovNumber
 		switch {
-		case v.full:
-			f.Reason = FlowsFull
-		case v.flows:
-			f.atMost(v, VedernikovNumber(&a.Channel, &v.state))
-		default:
+		case !v.flows:
 			f.Reason = v.why
+		case v.state.Regime == flow.FullFlow:
+			f.Reason = FlowsFull
+		default:
+			f.atMost(v, VedernikovNumber(&a.Channel, &v.state))
 		}
 	case LeastLiningSafety:
 		f.Limit = l.LeastLiningSafety
@@ -260,11 +260,11 @@ func (f *Finding) outside(v *view) {
 	low, high := f.Band[0], f.Band[1]
 	froude := v.state.FroudeNumber
 	switch {
-	case v.full:
-		f.Reason = FlowsFull
-		return
 	case !v.flows:
 		f.Reason = v.why
+		return
+	case v.state.Regime == flow.FullFlow:
+		f.Reason = FlowsFull
 		return
 	case math.IsNaN(froude):
 		f.Reason = NoFroudeNumber

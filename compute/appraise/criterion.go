@@ -71,9 +71,15 @@ type Rule uint8
 
 const (
 	NoRule Rule = iota
-	Canal
-	Chute
+	Canal       // CanalFreeboard
+	Chute       // ChuteFreeboard
+	rules  = iota
 )
+
+var ruleNames = [rules]string{"", "canal", "chute"}
+
+// String returns the rule's name in snake_case.
+func (r Rule) String() string { return ruleNames[r] }
 
 // Limits are the criteria that a channel is held to. Only those in Given count.
 type Limits struct {

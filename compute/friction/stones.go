@@ -66,8 +66,8 @@ func NewStones(size, gravity float64, s section.Section) (Law, error) {
 	return law, nil
 }
 
-// looks is the number of depths at which a smooth piece of the section is looked at for a change of formula.
-const looks = 64
+// looks is the number of depths at which the section is looked at for a change of formula, leastLooks that of each smooth piece of it.
+const looks, leastLooks = 64, 4
 
 // part finds the depths at which the formula changes: at the breaks of the section and between them, where da is smooth.
 func (l *Stones) part(s section.Section) {
@@ -98,6 +98,7 @@ func (l *Stones) part(s section.Section) {
 		from = to
 	}
 	breaks := s.Breaks()
+	each := max(leastLooks, looks/(len(breaks)+1))
 	for i := 0; i <= len(breaks); i++ {
 		top := s.Height()
 		if i < len(breaks) {
@@ -113,8 +114,8 @@ func (l *Stones) part(s section.Section) {
 		}
 		reach(math.Nextafter(from, top))
 		bottom := from
-		for j := 1; j < looks; j++ {
-			if to := bottom * solve.Power(top/bottom, float64(j)/looks); to > from && to < top {
+		for j := 1; j < each; j++ {
+			if to := bottom * solve.Power(top/bottom, float64(j)/float64(each)); to > from && to < top {
 				reach(to)
 			}
 		}
