@@ -23,7 +23,8 @@ type reader struct {
 
 	sorted bool // one query for all
 	open   pgx.Rows
-	after  row.Value // the last key given
+	cancel context.CancelFunc // of the open query
+	after  row.Value          // the last key given
 	ended  bool
 }
 
@@ -53,6 +54,9 @@ func (s *source) Read(ctx context.Context, query *store.Query) (store.Reader, er
 	if r.sorted, err = r.mustSort(ctx); err != nil {
 		return nil, err
 	}
+	s.mutex.Lock()
+	defer s.mutex.Unlock()
+	s.readers[r] = true
 	return r, nil
 }
 
@@ -158,11 +162,17 @@ func (r *reader) rows(ctx context.Context, page *row.Page, limit int) error {
 		if err != nil {
 			return err
 		}
-		if r.open, err = r.source.pool.Query(ctx, text, inBinary(parameters)...); err != nil {
+		// The query may outlive this call.
+		var lasting context.Context
+		lasting, r.cancel = context.WithCancel(context.WithoutCancel(ctx))
+		if r.open, err = r.source.pool.Query(lasting, text, inBinary(parameters)...); err != nil {
+			r.cancel()
 			r.open = nil
 			return err
 		}
 	}
+	stop := context.AfterFunc(ctx, r.cancel)
+	defer stop()
 	for page.Rows() < limit && r.open.Next() {
 		if err := fill(page, page.Add(0), r.columns, r.open.RawValues()); err != nil {
 			r.close()
@@ -174,7 +184,7 @@ func (r *reader) rows(ctx context.Context, page *row.Page, limit int) error {
 	}
 	r.open.Close()
 	err := r.open.Err()
-	r.open = nil
+	r.close()
 	if err == nil && page.Rows() < limit {
 		r.ended = page.Rows() == 0 || r.sorted
 	}
@@ -241,6 +251,7 @@ func (r *reader) Faults() []store.RowFault { return nil }
 
 func (r *reader) close() {
 	if r.open != nil {
+		r.cancel() // else the rest of the rows would be read
 		r.open.Close()
 		r.open = nil
 	}
@@ -248,5 +259,8 @@ func (r *reader) close() {
 
 func (r *reader) Close() error {
 	r.close()
+	r.source.mutex.Lock()
+	defer r.source.mutex.Unlock()
+	delete(r.source.readers, r)
 	return nil
 }

@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"sync"
 	"time"
 
 	"github.com/jackc/pgx/v5/pgxpool"
@@ -22,6 +23,9 @@ type source struct {
 	key     *column
 
 	points *points
+
+	mutex   sync.Mutex
+	readers map[*reader]bool // not closed yet
 }
 
 // points is the table that holds the points of surveyed sections.
@@ -39,7 +43,7 @@ func OpenSource(ctx context.Context, spec *store.SourceSpec) (store.Source, erro
 	if err != nil {
 		return nil, err
 	}
-	s := &source{pool: pool}
+	s := &source{pool: pool, readers: map[*reader]bool{}}
 	if err := s.open(ctx, spec); err != nil {
 		pool.Close()
 		return nil, err
@@ -138,6 +142,12 @@ func public(columns []column) []row.Column {
 func (s *source) Ordered() bool { return true }
 
 func (s *source) Close() error {
+	s.mutex.Lock()
+	for r := range s.readers {
+		r.close() // the pool waits for their connections
+	}
+	clear(s.readers)
+	s.mutex.Unlock()
 	s.pool.Close()
 	return nil
 }
