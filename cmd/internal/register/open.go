@@ -11,6 +11,7 @@ import (
 	"leat/cmd/internal/register/geojson"
 	"leat/cmd/internal/register/geopackage"
 	"leat/cmd/internal/register/mapping"
+	"leat/cmd/internal/register/postgres"
 	"leat/cmd/internal/register/store"
 )
 
@@ -25,6 +26,7 @@ var formats = map[string]format{
 	"csv":        {csvfile.OpenSource, csvfile.OpenTarget},
 	"geojson":    {geojson.OpenSource, geojson.OpenTarget},
 	"geopackage": {geopackage.OpenSource, geopackage.OpenTarget},
+	"postgres":   {postgres.OpenSource, postgres.OpenTarget},
 }
 
 func openSource(ctx context.Context, file *mapping.File) (store.Source, error) {
