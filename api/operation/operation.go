@@ -1,11 +1,7 @@
 // Package operation holds one file an operation of the contract: decode, check, solve, answer. It knows no HTTP.
 package operation
 
-import (
-	"reflect"
-
-	"leat/api/wire"
-)
+import "leat/api/wire"
 
 // Options are what a call says beside its request.
 type Options struct {
@@ -55,13 +51,6 @@ func (o *Operation) Fingerprint(body []byte, options Options) (string, *wire.Pro
 		return "", problem
 	}
 	return wire.Fingerprint(o.Name, body, system), nil
-}
-
-// Check decodes one request object and checks it, as Solve does before it solves. What only the geometry of a section or the physics of
-// the flow can tell, Solve alone says.
-func (o *Operation) Check(body []byte, options Options) *wire.Problem {
-	request := reflect.New(reflect.TypeOf(o.Request).Elem()).Interface().(wire.Request)
-	return wire.Decode(body, options.Units, options.limits(), request)
 }
 
 // Solved is the answer to one request, with what its forms need beside it.

@@ -20,6 +20,8 @@ type source struct {
 	spec    *store.SourceSpec
 	columns []row.Column
 	count   int64
+
+	ownID, ownGeometry bool // the columns id and geometry are the features' own, not properties
 }
 
 // The columns that are no properties, unless a property bears the name.
@@ -75,10 +77,11 @@ func (s *source) survey(ctx context.Context) error {
 			return fmt.Errorf("the properties of feature %d are no object", f.index)
 		}
 	}
-	if hasID && !known[idColumn] {
+	s.ownID, s.ownGeometry = hasID && !known[idColumn], !known[geometryColumn]
+	if s.ownID {
 		s.columns = append(s.columns, row.Column{Name: idColumn})
 	}
-	if !known[geometryColumn] {
+	if s.ownGeometry {
 		s.columns = append(s.columns, row.Column{
 			Name: geometryColumn, Kind: row.Bytes, Geometry: coding,
 			Spatial: &row.Spatial{Type: "GEOMETRY", System: row.ReferenceSystem{Definition: string(d.system)}},
@@ -170,12 +173,10 @@ func (s *source) read(q *store.Query) (*reader, error) {
 		}
 	}
 	for i, name := range names {
-		at := slices.IndexFunc(s.columns, func(c row.Column) bool { return c.Name == name })
-		isOwn := at >= 0 && slices.ContainsFunc(s.columns[at:], func(c row.Column) bool { return c.Geometry != "" })
 		switch {
-		case name == geometryColumn && s.columns[at].Geometry != "":
+		case name == geometryColumn && s.ownGeometry:
 			r.geometry = i
-		case name == idColumn && isOwn && s.isFeatureID(at):
+		case name == idColumn && s.ownID:
 			r.id = i
 		default:
 			r.places[name] = i
@@ -183,11 +184,6 @@ func (s *source) read(q *store.Query) (*reader, error) {
 	}
 	r.names = names
 	return r, nil
-}
-
-// isFeatureID reports whether a column called id is the features' own, which stands behind all properties.
-func (s *source) isFeatureID(at int) bool {
-	return at == len(s.columns)-1 || at == len(s.columns)-2 && s.columns[len(s.columns)-1].Geometry != ""
 }
 
 // A reader reads the features that its query lets through.

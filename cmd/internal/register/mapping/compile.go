@@ -38,7 +38,8 @@ type node struct {
 	flat    string
 	about   wire.MemberDescription
 	sources []source
-	points  bool // its value is the list of points
+	points  bool  // its value is the list of points
+	needs   *node // left out where this one is: the flows of a criterion by which the row is not judged
 }
 
 // A source is a feed compiled.
@@ -103,6 +104,7 @@ func (f *File) Compile(columns, child []row.Column) (*Mapping, error) {
 			c.m.section = n
 		}
 	}
+	c.criterionFlows()
 	c.copied()
 	if err := c.faults.err(); err != nil {
 		return nil, err
@@ -298,6 +300,29 @@ func (c *compiling) finish(n *node) {
 		c.finish(&n.nodes[i])
 		if n.nodes[i].name == "kind" && n.nodes[i].about.Form == wire.FormName {
 			n.kind = i
+		}
+	}
+}
+
+// criterionFlows ties the flows of each criterion to the criterion, which some classes of assets may not have.
+func (c *compiling) criterionFlows() {
+	find := func(n *node, name string) *node {
+		if n != nil {
+			if i := slices.IndexFunc(n.nodes, func(o node) bool { return o.name == name }); i >= 0 {
+				return &n.nodes[i]
+			}
+		}
+		return nil
+	}
+	flows := find(&c.m.root, "criterion_flows")
+	if flows == nil {
+		return
+	}
+	for i := range flows.nodes {
+		n := &flows.nodes[i]
+		if n.needs = find(find(&c.m.root, "criteria"), n.name); n.needs == nil {
+			at := slices.IndexFunc(c.feeds, func(f memberFeed) bool { return f.name == n.flat })
+			c.faultAt(c.feeds[at].at, "criteria has no %s whose flows could be chosen.", n.name)
 		}
 	}
 }

@@ -151,6 +151,14 @@ func (w *writing) object(dst []byte, object *node, kind int) ([]byte, bool) {
 
 // value appends a member's value from the first source that applies and is given.
 func (w *writing) value(dst []byte, n *node, kind int) ([]byte, bool) {
+	if n.needs != nil {
+		mark, known := len(dst), len(w.problems)
+		written, given := w.value(dst, n.needs, kind)
+		w.problems = w.problems[:known] // told in its own place
+		if dst = written[:mark]; !given {
+			return dst, false
+		}
+	}
 	for i := range n.sources {
 		s := &n.sources[i]
 		if s.class >= 0 && s.class != w.class {
@@ -398,22 +406,31 @@ func (w *writing) points(dst []byte, n *node, s *source) ([]byte, bool) {
 // levels appends the slope between two levels.
 func (w *writing) levels(dst []byte, n *node, s *source) ([]byte, bool) {
 	var numbers [3]float64
-	missing := ""
-	for i, part := range [3]*source{&s.levels.upstream, &s.levels.downstream, &s.levels.length} {
+	parts := [3]*source{&s.levels.upstream, &s.levels.downstream, &s.levels.length}
+	var absent [3]bool
+	missing := 0
+	for i, part := range parts {
 		var ok, given bool
-		numbers[i], given, ok = w.part(n, part)
-		switch {
-		case !ok:
+		if numbers[i], given, ok = w.part(n, part); !ok {
 			return dst, true
-		case !given && missing == "":
-			missing = part.label()
+		}
+		if absent[i] = !given; absent[i] {
+			missing++
 		}
 	}
-	if missing != "" {
-		if s.fallback != nil {
-			return append(dst, s.fallback...), true
+	switch {
+	case missing == 0:
+	case s.fallback != nil:
+		return append(dst, s.fallback...), true
+	case missing == len(parts) || s != &n.sources[len(n.sources)-1]:
+		return dst, false // another source may know the slope; if none does, the request says whether it is missing
+	default:
+		for i, part := range parts {
+			if absent[i] {
+				w.problem(n, part, CodeMissing, "Column %s is empty, so that the slope between the two levels is not known.", part.name)
+			}
 		}
-		return dst, false // another source may know the slope; if none does, the request says what is missing
+		return dst, true
 	}
 	drop, length := numbers[0]-numbers[1], numbers[2]
 	switch {

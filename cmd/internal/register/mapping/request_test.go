@@ -218,7 +218,8 @@ func TestProblems(t *testing.T) {
 		{"diameter", math.Inf(1), CodeNotANumber, "/section/diameter", "not a number", nil},
 		{"diameter", true, CodeNotANumber, "/section/diameter", "true or false, not a number", nil},
 		{"material", "wood", CodeUnknownValue, "/roughness/manning", "there are concrete", nil},
-		{"length", 0.0, "", "", "", nil}, // missing, for 0 is; the request says so
+		{"length", 0.0, CodeMissing, "/bed_slope", "Column length is empty", nil}, // 0 is missing
+		{"up", nil, CodeMissing, "/bed_slope", "Column up is empty", nil},
 		{"length", -5, CodeLength, "/bed_slope", "not greater than 0", nil},
 		{"down", 10.5, CodeFlat, "/bed_slope", "flat: keep", nil},
 		{"down", 11, CodeReversed, "/bed_slope", "reversed: swap", []string{"reversed: swap", "reversed: report"}},

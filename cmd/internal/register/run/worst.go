@@ -5,7 +5,6 @@ import (
 	"fmt"
 	"math"
 	"slices"
-	"strings"
 
 	"leat/api/wire"
 	"leat/cmd/internal/register/row"
@@ -20,7 +19,8 @@ type worst struct{ assets []Worst }
 // A Worst is an asset that stands high in the list of the worst.
 type Worst struct {
 	Asset string
-	// Measure is how far it is beyond what is allowed: more than 1 is too much.
+	// Measure is by what share of its limit an appraisal's governing value is beyond it, less than 0 where it is not; without an appraisal the
+	// discharge as a share of the capacity.
 	Measure float64
 	Text    string // for people
 }
@@ -55,29 +55,29 @@ func (w *worst) merge(other *worst) {
 
 // measure says how bad an answer is.
 func (p *plan) measure(answer *wire.FlatAnswer) (known bool, measure float64, text func() string) {
-	number := func(name string) (float64, bool) {
-		i, found := p.table.Find(name)
-		if !found {
-			return 0, false
+	cell := func(name string) wire.FlatValue {
+		if i, found := p.table.Find(name); found {
+			return p.table.Value(answer, i)
 		}
-		v := p.table.Value(answer, i)
-		return v.Number, v.Given
+		return wire.FlatValue{}
 	}
-	if value, given := number("governing_value"); given {
-		limit, _ := number("governing_limit")
-		i, _ := p.table.Find("governing_criterion")
-		criterion := p.table.Value(answer, i).Text
-		measure = value / limit
-		if strings.HasPrefix(criterion, "least_") || criterion == "freeboard_rule" {
-			measure = limit / value
-			if value <= 0 {
-				measure = math.Inf(1) // nothing is left of what must be there
-			}
-		}
-		return limit != 0 || value != 0, measure, func() string {
-			return fmt.Sprintf("%s %.4g, limit %.4g", criterion, value, limit)
-		}
+	verdict := cell("verdict")
+	if !verdict.Given {
+		ratio := cell("capacity_ratio")
+		return ratio.Given, ratio.Number, func() string { return fmt.Sprintf("carries %.4g times its capacity", ratio.Number) }
 	}
-	ratio, given := number("capacity_ratio")
-	return given, ratio, func() string { return fmt.Sprintf("carries %.4g times its capacity", ratio) }
+	value, limit := cell("governing_value"), cell("governing_limit")
+	if measure = math.Abs(value.Number-limit.Number) / math.Abs(limit.Number); math.IsNaN(measure) {
+		measure = 0
+	}
+	if verdict.Text != "falls_short" {
+		measure = -measure
+	}
+	return limit.Given, measure, func() string {
+		where := cell("governing_criterion").Text
+		if flow := cell("governing_flow").Text; flow != "" {
+			where += " under " + flow
+		}
+		return fmt.Sprintf("%s: %s %.4g, limit %.4g %s", verdict.Text, where, value.Number, limit.Number, cell("governing_unit").Text)
+	}
 }
