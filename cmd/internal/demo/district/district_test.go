@@ -5,6 +5,8 @@ import (
 	"context"
 	"crypto/sha256"
 	"encoding/hex"
+	"errors"
+	"flag"
 	"math"
 	"os"
 	"path/filepath"
@@ -61,6 +63,46 @@ func TestTheFileKeepsTheStandardsRules(t *testing.T) {
 	defer f.Close()
 	if n, err := f.Integer("SELECT count(*) FROM channels"); err != nil || n != district.Rows {
 		t.Errorf("%d rows, %v", n, err)
+	}
+}
+
+var (
+	into  = flag.String("into", "", "where the long register of TestMultiply is to be left")
+	times = flag.Int("times", 3, "its length, in demos of 1,200 assets")
+)
+
+func TestMultiply(t *testing.T) {
+	path := *into
+	if path == "" {
+		path = filepath.Join(t.TempDir(), "long.gpkg")
+	}
+	if err := district.WriteGeoPackage(t.Context(), path); err != nil {
+		t.Fatal(err)
+	}
+	f, err := geopackage.Open(t.Context(), path, geopackage.Write)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := errors.Join(f.Run("PRAGMA synchronous = OFF"), district.Multiply(f, *times)); err != nil {
+		t.Fatal(err)
+	}
+	one, err := f.Integer("SELECT count(*) FROM section_points WHERE length(asset_code) = 11")
+	if err != nil || one == 0 {
+		t.Fatal(one, err)
+	}
+	for statement, want := range map[string]int64{
+		"SELECT count(DISTINCT asset_code) FROM channels":                    int64(*times * district.Rows),
+		"SELECT count(*) FROM channels WHERE geom IS NULL":                   0,
+		"SELECT count(*) FROM section_points":                                int64(*times) * one,
+		"SELECT count(*) FROM rtree_channels_geom":                           int64(*times * district.Rows),
+		"SELECT count(*) FROM channels WHERE asset_code LIKE '%-0023-00001'": 1,
+	} {
+		if got, err := f.Integer(statement); err != nil || got != want {
+			t.Errorf("%s: %d, %v, want %d", statement, got, err, want)
+		}
+	}
+	if err := f.Close(); err != nil {
+		t.Fatal(err)
 	}
 }
 

@@ -127,7 +127,8 @@ func (t *target) openToWrite(ctx context.Context) error {
 		return fmt.Errorf("%s cannot be put into SQLite's WAL mode, which a run needs; is it on a network drive? Copy it to a local disk first", t.spec.Path)
 	}
 	// What was committed survives a killed process in any case; after a loss of power the last batches may be missing, mark and all, and are done again.
-	for _, set := range []string{"PRAGMA synchronous = NORMAL", "PRAGMA wal_autocheckpoint = 8000"} {
+	// A statement's own journal (each result has one, for its triggers) in memory is a small piece; beside a file it is 64 KiB taken from the system and given back.
+	for _, set := range []string{"PRAGMA synchronous = NORMAL", "PRAGMA wal_autocheckpoint = 8000", "PRAGMA temp_store = MEMORY"} {
 		if err := t.writing.Run(set); err != nil {
 			return err
 		}
