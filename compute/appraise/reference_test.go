@@ -15,8 +15,8 @@ import (
 	"leat/compute/section"
 )
 
-// lined is a case of testdata/references/lining.json.
-type lined struct {
+// liningCase is a case of testdata/references/lining.json.
+type liningCase struct {
 	What            string   `json:"what"`
 	Bottom          float64  `json:"bottom"`
 	Left            float64  `json:"left"`
@@ -74,7 +74,7 @@ func TestReferences(t *testing.T) {
 	data := must(os.ReadFile("../../testdata/references/lining.json"))
 	decoder := json.NewDecoder(bytes.NewReader(data))
 	decoder.DisallowUnknownFields()
-	var cases []lined
+	var cases []liningCase
 	if err := decoder.Decode(&cases); err != nil {
 		t.Fatal(err)
 	}
@@ -134,7 +134,7 @@ func TestReferences(t *testing.T) {
 }
 
 // steep holds the safety of stones on a steep slope at a given depth.
-func steep(t *testing.T, c lined) {
+func steep(t *testing.T, c liningCase) {
 	s := must(section.NewTrapezoidal(2, c.SideSlope, c.SideSlope))
 	rock := must(appraise.NewRiprap(appraise.Rock{StoneSize: c.Roughness, SpecificGravity: c.SpecificGravity, AngleOfRepose: c.Repose, Viscosity: math.NaN()}))
 	channel := flow.Channel{Section: s, Law: must(rock.Roughness(s, c.Gravity)), Slope: c.Slope, Gravity: c.Gravity}
