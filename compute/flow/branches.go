@@ -151,7 +151,8 @@ func (c *Channel) sample(f *curve, lo, hi float64, knot *[knots + 1]float64) int
 		x := at[i]
 		if i < samples {
 			p, q, r := rate[i-1], rate[i], rate[i+1]
-			if p*q > 0 && q*r > 0 && math.Abs(q) <= math.Abs(p) && math.Abs(q) <= math.Abs(r) {
+			flat := p == q && q == r // no conveyance yet
+			if !flat && p*q > 0 && q*r > 0 && math.Abs(q) <= math.Abs(p) && math.Abs(q) <= math.Abs(r) {
 				x = c.nearestZero(f, at[i-1], at[i], at[i+1])
 			}
 		}
