@@ -218,6 +218,39 @@ func TestImportsPointOneWay(t *testing.T) {
 	}
 }
 
+// What the packages of leat register may import of ours. None of them knows HTTP.
+var ofRegister = map[string][]string{
+	"row": {}, "wholefile": {}, "store": {"row"},
+	"csvfile": {"row", "store", "wholefile"}, "geojson": {"row", "store", "wholefile", "csvfile"},
+	"geopackage": {"row", "store", "cmd/internal/geopackage"}, "postgres": {"row", "store"},
+	"mapping": {"row", "store", "api/wire", "api/operation"},
+	"run":     {"row", "store", "mapping", "api/wire", "api/operation", "compute"},
+}
+
+func TestRegisterImportsPointOneWay(t *testing.T) {
+	const register = "cmd/internal/register/"
+	found := 0
+	for folder, files := range readHouse(t) {
+		name, inside := strings.CutPrefix(folder, register)
+		if _, isSupport := supported(folder); !inside || isSupport {
+			continue
+		}
+		allowed, known := ofRegister[name]
+		if !known {
+			t.Errorf("package %s has no place in the register: give it one here and in DEVELOPERS.md", folder)
+		}
+		found++
+		for _, imported := range importsOf(files) {
+			if own, isOwn := ours(imported); isOwn && !slices.Contains(allowed, strings.TrimPrefix(own, register)) {
+				t.Errorf("%s imports %s", folder, imported)
+			}
+		}
+	}
+	if found < len(ofRegister)-2 {
+		t.Errorf("only %d packages of the register were found", found)
+	}
+}
+
 func TestOnlyServeImportsGin(t *testing.T) {
 	for folder, files := range readHouse(t) {
 		for _, name := range importsOf(files) {

@@ -310,3 +310,38 @@ criteria: {least_freeboard: 0.2}
 		t.Errorf("%v", problems)
 	}
 }
+
+// The mapping file that the README shows does what it says on a register of its columns.
+func TestReadmeMapping(t *testing.T) {
+	text, err := os.ReadFile(filepath.Join("..", "..", "..", "README.md"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	_, block, _ := strings.Cut(string(text), "## A register in files and databases")
+	_, block, _ = strings.Cut(block, "```yaml\n")
+	block, _, found := strings.Cut(block, "```")
+	if !found {
+		t.Fatal("no mapping file in the README")
+	}
+	path := folder(t, map[string]string{"drains.yaml": block, "drains.csv": `asset,shape,size,side,bank,material,up,down,length,flow
+D1,CIRC,600,,,concrete,12.4,12.1,60,90
+D2,DITCH,500,1:1.5,0.9,earth,10.0,9.9,50,250
+D3,DITCH,500,1:1.5,0.3,earth,10.0,9.9,50,250
+D4,DITCH,-999,1:1.5,0.9,earth,10.0,9.9,50,250
+`})
+	outcome, out, stderr := command(t, "run", filepath.Join(path, "drains.yaml"))
+	if outcome != register.Problems {
+		t.Fatalf("%v\n%s%s", outcome, out, stderr)
+	}
+	var verdicts []string
+	for _, row := range records(t, filepath.Join(path, "verdicts.csv")) {
+		verdicts = append(verdicts, row["asset"]+" "+row["verdict"])
+	}
+	if got := strings.Join(verdicts, ", "); got != "D1 meets, D2 meets, D3 falls_short" {
+		t.Error(got)
+	}
+	problems := records(t, filepath.Join(path, "verdicts_problems.csv"))
+	if len(problems) != 1 || problems[0]["asset"] != "D4" || problems[0]["column"] != "size" || problems[0]["code"] != "missing_member" {
+		t.Errorf("%v", problems)
+	}
+}

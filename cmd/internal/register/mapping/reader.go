@@ -119,7 +119,9 @@ func (r *reader) members(n ast.Node, what string, known map[string]func(e entry)
 		}
 		names := make([]string, 0, len(known))
 		for name := range known {
-			names = append(names, name)
+			if name != "password" { // known to be refused
+				names = append(names, name)
+			}
 		}
 		slices.Sort(names)
 		r.faultAt(e.at, "%s has no member %q%s.", what, e.name, advice(e.name, names))

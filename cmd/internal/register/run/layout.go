@@ -75,7 +75,7 @@ func (p *plan) lay(columns []row.Column, flat []wire.FlatColumn) error {
 	system := p.file.System
 	add := func(name string, role store.Role, kind row.Kind, q wire.Quantity, description string) {
 		c := store.ResultColumn{Column: row.Column{Name: p.file.Target.Prefix + name, Kind: kind}, Role: role, Description: description}
-		if role == store.RoleAnswer {
+		if role == store.RoleAnswer && q != wire.QuantityTold {
 			c.Unit, c.UCUM = system.Unit(q), system.UCUM(q)
 		}
 		p.layout.Columns = append(p.layout.Columns, c)
