@@ -127,7 +127,7 @@ func (c *collocation) run() error {
 		if !v.a.Section.Closed() && c.y >= v.height {
 			return aboveLastRow
 		}
-		if !c.subcritical && v.a.Section.Closed() && c.y >= v.height*(1-1e-8) {
+		if !c.subcritical && v.a.Section.Closed() && c.y >= v.height*(1-1e-7) {
 			return nil // filled: the supercritical branch ends
 		}
 		if c.subcritical && v.a.Section.Closed() && c.y == v.height {
@@ -144,6 +144,13 @@ func (c *collocation) run() error {
 			width = min(width, 2*c.width)
 		}
 		if !c.advance(width) {
+			if n, d := c.ahead(); len(c.trace.panels) > 0 && math.Abs(d) <= 1e-5*v.cosine {
+				// So near to critical depth, in a section that turns within a hair of depth, no panel can be had.
+				if s := v.side(c.x); c.toNextBranch(c.y, c.rise(n) > 0, s.energy(c.y)) {
+					continue
+				}
+				return nil
+			}
 			if _, here := c.breakAt(c.y); here && len(c.trace.panels) > 0 {
 				return nil // its branch ends at the break, and there is none to go on
 			}
@@ -180,44 +187,6 @@ func (c *collocation) drift(x, b float64) (up, down bool) {
 	return d2*c.sign() >= 0 && beyond*c.sign()*c.direction > 0, d1*c.sign() >= 0 && below*c.sign()*c.direction < 0
 }
 
-// holds adds a panel on which the depth stands at a break where the conveyance jumps, as far as it is pushed back from both sides; it reports whether it did.
-func (c *collocation) holds() bool {
-	b, here := c.breakAt(c.y)
-	if !here {
-		return false
-	}
-	free := func(x float64) bool {
-		up, down := c.drift(x, b)
-		return up || down
-	}
-	if _, d := c.v.rates(c.x, b); d*c.sign() <= 0 || free(c.x) {
-		return false
-	}
-	const parts = 64
-	last, to := c.x, c.far
-	for i := 1; i <= parts; i++ {
-		x := c.x + (c.far-c.x)*float64(i)/parts
-		if free(x) {
-			for range 60 {
-				if middle := last + (x-last)/2; free(middle) {
-					x = middle
-				} else {
-					last = middle
-				}
-			}
-			to = x
-			break
-		}
-		last = x
-	}
-	if to == c.x {
-		return false
-	}
-	c.trace.panels = append(c.trace.panels, panel{x0: c.x, x1: to, y0: b, y1: b, form: straight, held: true})
-	c.x, c.y, c.width = to, b, 0
-	return true
-}
-
 // changeBranch takes the sweep on, at equal energy, to the next branch of its regime in the direction in which the depth was moving, where its own ends at a
 // break: there the width jumps, and F past one, or the coefficient alpha jumps, and the energy with it. It reports whether it did.
 func (c *collocation) changeBranch() bool {
@@ -229,6 +198,20 @@ func (c *collocation) changeBranch() bool {
 	was := c.trace.panels[n-1]
 	rising := was.y1 > was.y0
 	s := c.v.side(c.x)
+	if was.held && was.y0 != was.y1 { // it has left the break's other side behind
+		to := b
+		if rising {
+			to = justAbove(b)
+		}
+		if _, d := c.v.rates(c.x, to); d*c.sign() > 0 {
+			return false
+		}
+		return c.toNextBranch(b, rising, s.energy(to))
+	}
+	if was.held {
+		n, _ := c.v.rates(c.x, b)
+		rising = n*c.sign()*c.direction > 0
+	}
 	own, beyond := b, justAbove(b)
 	if !rising { // it came from above the break
 		own, beyond = beyond, own
@@ -247,10 +230,10 @@ func (c *collocation) changeBranch() bool {
 func (c *collocation) toNextBranch(from float64, up bool, energy float64) bool {
 	s, found := c.v.side(c.x), math.NaN()
 	s.motion.EnergyBranches(func(e flow.Branch) bool {
-		if e.Rising != c.subcritical || up && e.Hi <= from || !up && e.Lo >= from {
-			return true
+		if e.Rising != c.subcritical || up && (e.Hi <= from || e.Lo < from) || !up && (e.Lo >= from || e.Hi > from) {
+			return true // of the other regime, not in this direction, or the one that ends here
 		}
-		if depth, ok := onBranch(&s.motion, s.channel, e, energy); ok && (depth > from) == up && math.Abs(depth-from) > 1e-6*from {
+		if depth, ok := onBranch(&s.motion, s.channel, e, energy); ok && depth != from && (depth > from) == up {
 			found = depth
 			return !up // going down, the last found is the nearest
 		}

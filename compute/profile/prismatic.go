@@ -443,18 +443,19 @@ func (s *sweeper) beyond(b flow.Branch) bool {
 	}
 	at := s.y
 	next := p.branches[j]
-	energy := p.motion.Energy(p.channel.Section.At(at))
+	energy, there := p.motion.Energy(p.channel.Section.At(at)), p.motion.Energy(p.channel.Section.At(math.Nextafter(at, math.Inf(1))))
 	if s.rise < 0 {
-		energy = p.motion.Energy(p.channel.Section.At(math.Nextafter(at, math.Inf(1))))
+		energy, there = there, energy
 	}
-	if next.Rising == s.subcritical {
-		there := p.motion.Energy(p.channel.Section.At(at))
-		if s.rise > 0 {
-			there = p.motion.Energy(p.channel.Section.At(math.Nextafter(at, math.Inf(1))))
+	onward := next.Rising == s.subcritical
+	switch {
+	case onward && math.Abs(there-energy) <= 1e-12*energy:
+		return true // a break of the section only
+	case s.crosses(at, energy, there):
+		if onward || s.x == s.far {
+			return true
 		}
-		if math.Abs(there-energy) <= 1e-12*energy {
-			return true // a break of the section only
-		}
+		energy = there
 	}
 	// On, at equal energy, on the next branch of the regime in the direction in which the depth was moving.
 	for ; j >= 0 && j < len(p.branches); j += int(s.rise) {
