@@ -63,6 +63,9 @@ func solveAppraisal(r *wire.AppraisalRequest, options *Options) (wire.Answer, *w
 		j := asset.Judge(f.Discharge, &d, &limits, judged(r, f.Name), findings[:0])
 		overall.Add(i, j.Findings)
 		describeJudgement(f, r, &j)
+		if r.Bend.Given {
+			w.bend(&asset.Channel, &d, &j)
+		}
 	}
 	a.Verdict = overall.Verdict().String()
 	a.Governing = wire.Governing{Value: math.NaN(), Limit: math.NaN()}
@@ -134,6 +137,17 @@ func judged(r *wire.AppraisalRequest, name string) appraise.Set {
 		}
 	}
 	return set
+}
+
+// bend says why the effect of a bend is not known.
+func (w *warnings) bend(c *flow.Channel, d *flow.Depths, j *appraise.Judgement) {
+	switch {
+	case !math.IsNaN(j.BendRise) || len(d.Normal) == 0 && !c.Section.Closed():
+	case c.Section.Closed():
+		w.add(appraise.BendInClosed.Code, "/bend", appraise.BendInClosed.Detail)
+	default:
+		w.add(appraise.TightBend.Code, "/bend/radius", appraise.TightBend.Detail)
+	}
 }
 
 // describeJudgement tells a judgement in the contract's terms.

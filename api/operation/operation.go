@@ -13,7 +13,7 @@ type Options struct {
 	Fingerprint bool // ?fingerprint=true: the answer tells its request's fingerprint
 
 	// Begin, unless nil, is called where a solve begins that may take long. What it returns is called at least every 0.1 ms of the
-	// solve, and an error of it ends the solve: where that is a *wire.Problem, it is the request's.
+	// solve of a Long operation, between the parts of others, and an error of it ends the solve: where that is a *wire.Problem, it is the request's.
 	Begin func() (checkpoint func() error)
 }
 

@@ -35,10 +35,8 @@ func (s *Server) bulk(op *operation.Operation) gin.HandlerFunc {
 			return
 		}
 		said, choice, problem := s.admitBulk(c)
-		if op.Long {
-			// The request's own context ends when the pump has reading stopped, too, which is no sign of a client gone.
-			said.Begin = checkpoints(context.WithoutCancel(c.Request.Context()), s.config.TimeLimit)
-		}
+		// The request's own context ends when the pump has reading stopped, too, which is no sign of a client gone.
+		said.Begin = checkpoints(context.WithoutCancel(c.Request.Context()), s.config.TimeLimit)
 		var form *format.Bulk
 		if problem == nil {
 			form, problem = format.New(op, said.Options, choice, int(s.config.LineBytes))

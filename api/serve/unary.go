@@ -52,9 +52,7 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 			s.refuse(c, problem)
 			return
 		}
-		if op.Long {
-			options.Begin = checkpoints(c.Request.Context(), s.config.TimeLimit)
-		}
+		options.Begin = checkpoints(c.Request.Context(), s.config.TimeLimit)
 		if len(c.Request.TransferEncoding) > 0 {
 			// net/http hides a Content-Length beside chunks. A proxy that went by it would see other requests on
 			// this connection than we do, so there must be no further ones (RFC 9112, 6.3).

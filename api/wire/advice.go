@@ -56,6 +56,29 @@ func bySymbol(name string, known []string) (string, bool) {
 	return "", false
 }
 
+// extremes are what others put before a name where the contract says least and greatest.
+var extremes = []struct{ before, here string }{
+	{"minimum", "least"}, {"maximum", "greatest"}, {"min", "least"}, {"max", "greatest"}, {"lowest", "least"}, {"highest", "greatest"},
+	{"smallest", "least"}, {"largest", "greatest"}, {"permissible", "greatest"}, {"allowable", "greatest"},
+}
+
+// byExtreme returns the known member of the least or the greatest of a thing that a name in others' words stands for.
+func byExtreme(name string, known []string) (string, bool) {
+	plain := plainName(name)
+	for _, e := range extremes {
+		thing, found := strings.CutPrefix(plain, e.before)
+		if !found {
+			thing, found = strings.CutSuffix(plain, e.before)
+		}
+		for _, member := range known {
+			if found && thing != "" && strings.HasPrefix(plainName(member), e.here+thing) {
+				return member, true
+			}
+		}
+	}
+	return "", false
+}
+
 // unknownMemberAdvice says which of the known members an unknown one of an object was meant to be, or which are accepted.
 func unknownMemberAdvice(name string, known, accepted []string) string {
 	switch {
@@ -65,6 +88,9 @@ func unknownMemberAdvice(name string, known, accepted []string) string {
 		return " Leave it out: type and coordinates are enough."
 	}
 	if member, ok := bySymbol(name, known); ok {
+		return " Did you mean " + member + "?"
+	}
+	if member, ok := byExtreme(name, known); ok {
 		return " Did you mean " + member + "?"
 	}
 	if near, ok := nearest(name, known); ok {
@@ -78,13 +104,26 @@ func unknownValueAdvice(given string, known []string) string {
 	if given == "MultiLineString" && slices.Contains(known, "LineString") {
 		return " Merge its parts to one LineString, from upstream to downstream."
 	}
+	if kind, ok := linings[plainName(given)]; ok && slices.Contains(known, kind) {
+		return ` Did you mean "` + kind + `"?`
+	}
+	if plainName(given) == "concrete" && slices.Contains(known, string(ShearLimited)) {
+		return " Concrete is judged by criteria such as greatest_velocity: leave lining out."
+	}
 	if near, ok := nearest(given, known); ok {
 		return ` Did you mean "` + near + `"?`
 	}
 	return ""
 }
 
-// objectExamples hold, for members that are objects, the shortest object that says something.
+// linings leads from what a lining is called elsewhere, in plain letters, to its kind.
+var linings = map[string]string{
+	"grass": string(Vegetation), "turf": string(Vegetation), "vegetated": string(Vegetation), "grasslined": string(Vegetation),
+	"rock": string(Riprap), "stone": string(Riprap), "stones": string(Riprap), "rockfill": string(Riprap), "cobbles": string(Riprap),
+	"unlined": string(BareSoil), "bare": string(BareSoil), "mat": string(ShearLimited), "geotextile": string(ShearLimited), "mattress": string(ShearLimited),
+}
+
+// objectExamples hold, for members that are objects or pairs, the shortest one that says something.
 var objectExamples = map[string]string{
 	"section":         `{"kind": "rectangular", "bottom_width": 2}`,
 	"roughness":       `{"manning": 0.03}`,
@@ -98,6 +137,7 @@ var objectExamples = map[string]string{
 	"criterion_flows": `{"least_freeboard": ["hundred_year"]}`,
 	"lining":          `{"kind": "riprap", "stone_size": 0.15}`,
 	"bend":            `{"radius": 30}`,
+	"critical_band":   `[0.86, 1.13]`,
 	"geometry":        `{"type": "LineString", "coordinates": [[0, 0], [100, 20]]}`,
 }
 

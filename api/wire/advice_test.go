@@ -88,6 +88,7 @@ func TestObjectExamples(t *testing.T) {
 		"criteria":        appraised + roughness + `,"flows":{"a":1},"criteria":%}`,
 		"criterion_flows": appraised + roughness + `,"flows":{"hundred_year":1},"criteria":{"least_freeboard":1},"criterion_flows":%}`,
 		"lining":          appraised + `"flows":{"a":1},"criteria":{"least_lining_safety":1},"lining":%}`,
+		"critical_band":   appraised + roughness + `,"flows":{"a":1},"criteria":{"critical_band":%}}`,
 		"bend":            appraised + roughness + `,"flows":{"a":1},"criteria":{"least_freeboard":1},"bend":%}`,
 	}
 	for name, example := range objectExamples {

@@ -55,7 +55,7 @@ var units = [quantities]unit{
 	QuantityChezy:              {name: "chezy", si: "m^(1/2)/s", us: "ft^(1/2)/s", inSI: rootFoot},
 	QuantityManning:            {name: "manning", si: "s/m^(1/3)", us: "s/m^(1/3)", inSI: 1},
 	QuantityStrickler:          {name: "strickler", si: "m^(1/3)/s", us: "m^(1/3)/s", inSI: 1},
-	QuantityAngle:              {name: "angle", si: "degree", us: "degree", siUCUM: "deg", usUCUM: "deg", inSI: 1},
+	QuantityAngle:              {name: "angle", si: "degrees", us: "degrees", siUCUM: "deg", usUCUM: "deg", inSI: 1},
 	QuantityTold:               {name: "told", si: "told_beside_it", us: "told_beside_it", inSI: 1},
 }
 

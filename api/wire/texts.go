@@ -127,7 +127,7 @@ func (f *field) wanted() string {
 		}
 		return "an object"
 	case shapePair:
-		return f.tupleType()
+		return f.tupleWanted()
 	case shapeNamed:
 		if example, known := objectExamples[f.name]; known {
 			return "an object of numbers such as " + example
@@ -161,6 +161,14 @@ func (f *field) tupleType() string {
 		return "a list of two to four numbers"
 	}
 	return "a list of two numbers"
+}
+
+// tupleWanted is tupleType with an example, where there is one.
+func (f *field) tupleWanted() string {
+	if example, known := objectExamples[f.name]; known && f.shape == shapePair {
+		return f.tupleType() + " such as " + example
+	}
+	return f.tupleType()
 }
 
 func wrongLengthText(f *field, n int) string {

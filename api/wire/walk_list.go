@@ -73,7 +73,7 @@ func (w *walk) rowList(f *field) [][4]float64 {
 // tuple reads a list of exactly as many numbers as into has room for.
 func (w *walk) tuple(f *field, into []float64) {
 	if w.decoder.PeekKind() != '[' {
-		w.wrongType(f.tupleType())
+		w.wrongType(f.tupleWanted())
 		return
 	}
 	w.delimiter()
