@@ -3,6 +3,7 @@ package demo_test
 import (
 	"bytes"
 	"encoding/json"
+	"fmt"
 	"maps"
 	"os"
 	"slices"
@@ -138,6 +139,9 @@ func TestEveryAppraisalIsAnswered(t *testing.T) {
 				t.Errorf("line %d, %s: judged %v, want %v", a.Line, flow, judged, want)
 			}
 		}
+	}
+	if told := fmt.Sprintf("%d meet their criteria, %d fall short, %d cannot be told", verdicts["meets"], verdicts["falls_short"], verdicts["undetermined"]); !bytes.Contains(readme(t), []byte(told)) {
+		t.Errorf("the README does not say that %s", told)
 	}
 	t.Logf("verdicts %v\ncriteria %v\nreasons %v\nlinings %v", verdicts, criteria, reasons, linings)
 	for verdict, least := range map[string]int{"meets": 200, "falls_short": 60, "undetermined": 10} {

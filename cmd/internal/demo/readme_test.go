@@ -26,9 +26,9 @@ func readme(t *testing.T) []byte {
 
 // The requests that the README shows get the answers that it shows, but for line breaks, a problem's instance, and the last digits of a profile.
 func TestReadmeShowsRealAnswers(t *testing.T) {
-	shown := regexp.MustCompile("(?s)```sh\n(curl [^`]*?/v1/(depths|profile)[^`]*?)-d '(.*?)'\n```\n\n```json\n(.*?)```").FindAllSubmatch(readme(t), -1)
-	if len(shown) != 3 {
-		t.Fatalf("%d requests with answers in the README, want 3", len(shown))
+	shown := regexp.MustCompile("(?s)```sh\n(curl [^`]*?/v1/(depths|profile|appraisal)[^`]*?)-d '(.*?)'\n```\n\n```json\n(.*?)```").FindAllSubmatch(readme(t), -1)
+	if len(shown) != 4 {
+		t.Fatalf("%d requests with answers in the README, want 4", len(shown))
 	}
 	instance := regexp.MustCompile(`"instance":"[^"]*",`)
 	for _, s := range shown {
