@@ -48,7 +48,7 @@ type attack struct {
 }
 
 // SideFactor returns the greatest shear stress on the sides of a channel over that on its bed, for a side slope (horizontal per unit vertical):
-// 0.77 up to 1.5, 0.066 z + 0.67, and 1 from 5 on (HEC-15, third edition, equation 3.4, after A. G. Anderson and others 1970).
+// 0.77 up to 1.5, 0.066 z + 0.67, and 1 from 5 on (HEC-15, third edition, chapter 3, after A. G. Anderson and others 1970).
 func SideFactor(slope float64) float64 {
 	switch {
 	case slope <= 1.5:
@@ -60,7 +60,7 @@ func SideFactor(slope float64) float64 {
 }
 
 // BendFactor returns the greatest shear stress in a bend over that in a straight channel, for the radius of the centreline over the width of the water surface:
-// 2 up to 2, 2.38 - 0.206 x + 0.0073 x^2, and 1.05 from 10 on (HEC-15, third edition, equation 3.7, after K. F. Lane 1955 and C. A. Young and others 1996).
+// 2 up to 2, 2.38 - 0.206 x + 0.0073 x^2, and 1.05 from 10 on (HEC-15, third edition, chapter 3).
 func BendFactor(ratio float64) float64 {
 	switch {
 	case ratio <= 2:

@@ -40,7 +40,7 @@ type Soil struct {
 //
 //	tau = (c1 PI^2 + c2 PI + c3) (c4 + c5 e)^2 c6   in N/m2
 //
-// for a plasticity index from 10 to 20 and above (HEC-15, third edition, table 4.6 and equation 4.6, after USDA 1987).
+// for a plasticity index from 10 to 20 and above (HEC-15, third edition, table 4.6, after USDA 1987).
 var cohesive = [soilGroups]struct {
 	plastic      [3]float64 // c1, c2, c3 from 10 to 20
 	plasticScale float64    // c6
@@ -57,13 +57,13 @@ var cohesive = [soilGroups]struct {
 	FatClay:      {[3]float64{math.NaN(), math.NaN(), math.NaN()}, math.NaN(), 0.097, 1.38, -0.373},
 }
 
-// The grain sizes in m between which, without cohesion, what the ground stands is in proportion to its grain (HEC-15, third edition, section 4.3).
+// The grain sizes in m between which, without cohesion, what the ground stands is in proportion to its grain (HEC-15, third edition, chapter 4).
 const (
 	fineGrain     = 0.0013
 	greatestGrain = 0.050
 )
 
-// cohesiveRoughness is Manning's n of the grains of a fine or cohesive soil (HEC-15, third edition, section 4.2).
+// cohesiveRoughness is Manning's n of the grains of a fine or cohesive soil (HEC-15, third edition, chapter 4).
 const cohesiveRoughness = 0.016
 
 func (s *Soil) check(c *check) {
@@ -84,7 +84,7 @@ func (s *Soil) check(c *check) {
 
 // Stands returns the permissible shear stress of the bare soil in N/m2 and Manning's n of its grains, or the reason why they are not known:
 // for cohesive soils as the coefficients above say; else 1 N/m2 below 1.3 mm, and 0.75 N/m2 for each mm of the grain size up to 50 mm (HEC-15, third
-// edition, equation 4.5); n = 0.016, for coarse grains 0.015 D^(1/6) with D in mm (equation 4.4).
+// edition, chapter 4); n = 0.016, for coarse grains 0.015 D^(1/6) with D in mm.
 func (s *Soil) Stands() (shear, roughness float64, reason Reason) {
 	switch {
 	case s.Group == NoSoilGroup && math.IsNaN(s.GrainSize):

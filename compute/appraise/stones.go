@@ -73,7 +73,7 @@ func ShieldsNumber(reynolds float64) (shields, safety float64) {
 }
 
 // TractiveForceRatio returns what a stone stands on a side slope (horizontal per unit vertical) over what it stands on a level bed, given the sine of its angle of
-// repose: sqrt(1 - (sin/sin repose)^2), 0 where the side is steeper (E. W. Lane 1955; V. T. Chow 1959, section 7-12; HEC-15, third edition, equation 6.10).
+// repose: sqrt(1 - (sin/sin repose)^2), 0 where the side is steeper (E. W. Lane 1955; V. T. Chow 1959, section 7-12; HEC-15, third edition, section 6.3).
 func TractiveForceRatio(slope, sine float64) float64 {
 	square := 1 / ((1 + slope*slope) * sine * sine)
 	if !(square < 1) {
@@ -129,28 +129,32 @@ func (l Riprap) resist(a attack, s LiningState) (LiningState, Reason) {
 	return s, Reason{}
 }
 
-// steep returns the safety of stones on the side of a steep channel (HEC-15, third edition, equations 6.11 to 6.15, solved for the safety factor SF):
-//
-//	D = SF d S Delta/(F (G - 1)),  Delta = K1 (1 + sin(alpha + beta)) tan(phi) / (2 (cos(theta) tan(phi) - SF sin(theta) cos(beta)))
-//	tan(beta) = cos(alpha)/(2 sin(theta)/(eta tan(phi)) + sin(alpha)),  eta = side shear/(F (rho_s - rho) g D)
-//
-// with the angles alpha of the bed, theta of the sides and phi of repose.
+// steep returns the safety of stones on the side of a steep channel.
 func (l Riprap) steep(a *attack, s *LiningState) float64 {
-	root := math.Sqrt(1 + a.side*a.side)
-	sine, cosine := 1/root, a.side/root
-	if math.IsInf(a.side, 1) {
-		sine, cosine = 0, 1
+	return StoneStability(s.SideShear/s.PermissibleShear, a.side, l.sine/l.cosine, a.slope)
+}
+
+// StoneStability returns the safety factor of a stone on a side slope (horizontal per unit vertical) under flow down a bed, from the stability number, shear stress
+// over what a level bed of such stones stands, the tangent of the angle of repose and the sine of the bed's angle:
+//
+//	SF = cos(theta) tan(phi)/(eta' tan(phi) + sin(theta) cos(beta)),  eta' = eta (1 + sin(alpha + beta))/2
+//	tan(beta) = cos(alpha)/(2 sin(theta)/(eta tan(phi)) + sin(alpha))
+//
+// with the angles alpha of the bed, theta of the side and phi of repose (M. A. Stevens and D. B. Simons 1971; HEC-15, third edition, section 6.3 and appendix D, where
+// it is solved for the size of the stones). It is 0 where the side is as steep as the angle of repose.
+func StoneStability(stability, side, tangent, bed float64) float64 {
+	sine, cosine := 0.0, 1.0
+	if !math.IsInf(side, 1) {
+		root := math.Sqrt(1 + side*side)
+		sine, cosine = 1/root, side/root
 	}
-	tangent := l.sine / l.cosine
 	if !(sine < tangent*cosine) {
 		return 0
 	}
-	eta := s.SideShear / s.PermissibleShear
-	alphaSine, alphaCosine := a.slope, a.cosine
-	pull := 2*sine/(eta*tangent) + alphaSine
-	length := math.Hypot(alphaCosine, pull)
-	betaSine, betaCosine := alphaCosine/length, pull/length
-	sum := alphaSine*betaCosine + alphaCosine*betaSine // sin(alpha + beta)
-	x := 2 * s.PermissibleShear / s.BedShear
-	return x * cosine * tangent / (SideFactor(a.side)*(1+sum)*tangent + x*sine*betaCosine)
+	level := math.Sqrt((1 - bed) * (1 + bed))
+	pull := 2*sine/(stability*tangent) + bed
+	length := math.Sqrt(level*level + pull*pull)
+	betaSine, betaCosine := level/length, pull/length
+	sum := bed*betaCosine + level*betaSine // sin(alpha + beta)
+	return cosine * tangent / (stability*(1+sum)/2*tangent + sine*betaCosine)
 }

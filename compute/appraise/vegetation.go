@@ -96,7 +96,7 @@ func NewVegetation(grass Grass) (Lining, error) {
 }
 
 // GrassCoefficient returns the roughness coefficient of grass from its stem height in m and its condition: 0.35 Cs^0.10 h^0.528 (HEC-15, third edition,
-// equation 4.1).
+// section 4.1).
 func GrassCoefficient(stemHeight float64, condition Condition) float64 {
 	return 0.35 * solve.Power(density[condition], 0.10) * solve.Power(stemHeight, 0.528)
 }
@@ -109,7 +109,7 @@ func (l Vegetation) Roughness(s section.Section, gravity float64) (friction.Law,
 	return friction.NewGrass(l.coefficient, gravity)
 }
 
-// resist implements Lining: tau = soil/(1 - Cf) (n/ns)^2 (HEC-15, third edition, equation 4.7).
+// resist implements Lining: tau = soil/(1 - Cf) (n/ns)^2 (HEC-15, third edition, chapter 4).
 func (l Vegetation) resist(_ attack, s LiningState) (LiningState, Reason) {
 	if l.reason.Code == "" {
 		s = s.standing(l.factor * s.Roughness * s.Roughness)
