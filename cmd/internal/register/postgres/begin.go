@@ -96,7 +96,7 @@ func (t *target) begin(ctx context.Context, tx pgx.Tx, start store.Start, shared
 		resumed = nil
 	}
 	if resumed != nil {
-		if _, err := tx.Exec(ctx, "update "+t.runs.quoted()+" set owner = $1 where run = $2", t.owner, resumed.run); err != nil {
+		if _, err := tx.Exec(ctx, "update "+t.runs.quoted()+" set owner = $1, resumed_at = now() where run = $2", t.owner, resumed.run); err != nil {
 			return store.State{}, fmt.Errorf("writing the table %s: %w", t.runs, err)
 		}
 		t.run, t.count = resumed.run, resumed.batches

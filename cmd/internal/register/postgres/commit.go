@@ -10,7 +10,6 @@ import (
 	"time"
 
 	"github.com/jackc/pgx/v5"
-	"github.com/jackc/pgx/v5/pgxpool"
 
 	"leat/cmd/internal/register/row"
 	"leat/cmd/internal/register/store"
@@ -29,17 +28,15 @@ var errTaken = errors.New("another process has taken this run over")
 type writer struct {
 	target     *target
 	shared     bool // hold the lock together with others
-	connection *pgxpool.Conn
+	connection *pgx.Conn
 	buffer     copyBuffer
 }
 
 func (w *writer) close() {
 	if w.connection != nil {
-		// The lock and the staging table go with the connection, so that it is not to be used again.
-		connection := w.connection.Hijack()
 		ctx, cancel := context.WithTimeout(context.Background(), time.Second)
 		defer cancel()
-		connection.Close(ctx)
+		_ = w.connection.Close(ctx) // whatever it says, the lock and the staging table are gone with it
 		w.connection = nil
 	}
 }
@@ -49,12 +46,12 @@ const lockPatience = 30 * time.Second
 
 // ready makes a connection ready unless one is.
 func (w *writer) ready(ctx context.Context) error {
-	if w.connection != nil && !w.connection.Conn().IsClosed() {
+	if w.connection != nil && !w.connection.IsClosed() {
 		return nil
 	}
 	w.close()
 	t := w.target
-	connection, err := t.pool.Acquire(ctx)
+	connection, err := pgx.ConnectConfig(ctx, t.pool.Config().ConnConfig)
 	if err != nil {
 		return err
 	}

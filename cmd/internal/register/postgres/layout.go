@@ -114,6 +114,7 @@ func (t *target) definitions(shared bool) []definition {
 			{name: "mark", kind: "text", comment: "Key of the last asset whose batch is written"},
 			{name: "batches", kind: "bigint", rest: "not null default 0", comment: "Number of batches written"},
 			{name: "owner", kind: "text", rest: "not null", comment: "A word of the process that may write"},
+			{name: "resumed_at", kind: "timestamp with time zone", comment: "When it was gone on with; what was written before is looked at once more"},
 		}}
 	for _, name := range countNames {
 		runs.columns = append(runs.columns, tableColumn{name: name, kind: "bigint", rest: "not null default 0", comment: countComments[name]})
@@ -128,7 +129,7 @@ func (t *target) definitions(shared bool) []definition {
 				{name: "after", kind: "text", comment: "Its assets have keys after this one"},
 				{name: "until", kind: "text", comment: "and up to this one"},
 				{name: "job", kind: "bigint", comment: "Number of its job"},
-				{name: "state", kind: "text", rest: "not null", comment: "waiting, done or failed"},
+				{name: "state", kind: "text", rest: "not null", comment: "waiting, done, failed (given up for good) or left (a newer run was begun)"},
 				{name: "error", kind: "text", comment: "Why it failed"},
 				{name: "worker", kind: "text", comment: "Who did it"},
 				{name: "done_at", kind: "timestamp with time zone"},
