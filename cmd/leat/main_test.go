@@ -25,7 +25,7 @@ func TestMain(m *testing.M) {
 	os.Exit(m.Run())
 }
 
-func command(t *testing.T, environment []string, arguments ...string) *exec.Cmd {
+func command(t testing.TB, environment []string, arguments ...string) *exec.Cmd {
 	t.Helper()
 	c := exec.CommandContext(t.Context(), os.Args[0], arguments...)
 	c.Env = append(environment, asCommand+"=1", "TMPDIR="+t.TempDir())
