@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"os"
 	"path/filepath"
+	"regexp"
 	"strings"
 	"testing"
 
@@ -137,6 +138,27 @@ func TestOstermereAsAGeoPackage(t *testing.T) {
 		t.Error("a second run has changed results")
 	}
 	geopackagetest.Judge(t, file)
+}
+
+// What the README says of the demo is so.
+func TestTheReadmeTellsOfTheDemo(t *testing.T) {
+	readme, err := os.ReadFile("../../../README.md")
+	if err != nil {
+		t.Fatal(err)
+	}
+	shown := regexp.MustCompile("```sh\ngo run ./cmd/leat register demo (\\S+)\ngo run ./cmd/leat register run (\\S+)\n```").FindSubmatch(readme)
+	if shown == nil || filepath.Dir(string(shown[2])) != string(shown[1]) {
+		t.Fatal("the README has no block that makes and runs the demo")
+	}
+	numbers := regexp.MustCompile(`of the ([\d,]+) assets in use (\d+) are wrong on purpose`).FindSubmatch(readme)
+	if numbers == nil {
+		t.Fatal("the README does not say how many assets there are")
+	}
+	rows, bad := strings.ReplaceAll(string(numbers[1]), ",", ""), string(numbers[2])
+	outcome, out, errText := command(t, "run", "--quiet", demo(t, filepath.Base(string(shown[2]))))
+	if outcome != register.Problems || !strings.Contains(out, ": "+rows+" rows") || !strings.Contains(out, bad+" bad") {
+		t.Errorf("%v\n%s\n%s", outcome, out, errText)
+	}
 }
 
 func TestTheDemoOverwritesNothing(t *testing.T) {
