@@ -187,6 +187,9 @@ func (f *Finding) hold(v *view, value float64, met bool) {
 	case !v.flows:
 		f.Reason = v.why
 		return
+	case math.IsNaN(value) && v.full && math.IsNaN(v.state.Conveyance):
+		f.Reason = absent(flow.NoConveyance)
+		return
 	case math.IsNaN(value) || math.IsInf(value, 0) || math.IsNaN(f.Limit):
 		f.Reason = OutOfRange
 		return
@@ -297,8 +300,12 @@ func (a *Asset) linings(v *view, f *Finding) {
 		}
 	default:
 		f.atLeast(v, v.lining.Safety)
-		if f.Reason.Code == "" {
+		switch {
+		case f.Reason.Code != "":
+		case v.liningReason.Code != "":
 			f.Reason = v.liningReason
+		case f.Met == Yes && v.lining.Safety < v.lining.RecommendedSafety:
+			f.Reason = BelowRecommended
 		}
 	}
 }

@@ -38,9 +38,10 @@ var (
 		"The lining's roughness changes so with depth that the discharge flows uniformly at several depths; the lowest is shown."}
 	DepthsDisagree = Reason{"several_normal_depths",
 		"The lining's roughness changes so with depth that the discharge flows uniformly at several depths, of which some meet the criterion and some do not."}
-	BendInClosed = Reason{"bend_in_closed_section", "The effect of a bend is known for open channels only."}
-	TightBend    = Reason{"bend_too_tight", "The bend's radius is less than half the width of the water surface."}
-	OutOfRange   = Reason{"not_a_number", "The value is too large or too small to be computed."}
+	BendInClosed     = Reason{"bend_in_closed_section", "The effect of a bend is known for open channels only."}
+	TightBend        = Reason{"bend_too_tight", "The bend's radius is less than half the width of the water surface."}
+	BelowRecommended = Reason{"below_recommended_safety", "The limit is met, but the lining is less safe than the source of its rules recommends for such flow; see recommended_safety."}
+	OutOfRange       = Reason{"not_a_number", "The value is too large or too small to be computed."}
 )
 
 // absent returns the reason for a normal depth that does not exist.

@@ -149,6 +149,19 @@ func TestSurchargedValues(t *testing.T) {
 	}
 }
 
+// A conduit rougher than it is wide lets nothing through: its shear stress is not known, and it is said why.
+func TestNoConveyance(t *testing.T) {
+	a := pipe()
+	a.Channel.Law = must(friction.NewSandRoughness(100, 1.14e-6, 9.80665))
+	found := findings(t, a, 0.1, everything)
+	if f := found[appraise.LeastShear]; f.Met != appraise.Unknown || f.Reason.Code != "no_conveyance" {
+		t.Errorf("shear: %v %v", f.Met, f.Reason)
+	}
+	if f := found[appraise.GreatestFill]; f.Met != appraise.No || f.Reason.Code != "surcharged" {
+		t.Errorf("fill: %v %v", f.Met, f.Reason)
+	}
+}
+
 // A channel without a law can be judged in nothing, and says so.
 func TestNoRoughness(t *testing.T) {
 	a := canal(2)

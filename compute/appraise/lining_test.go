@@ -157,6 +157,11 @@ func TestNotes(t *testing.T) {
 	if f, _ := safety(t, deep, 0.5); f.Met != appraise.Yes || f.Reason.Code != "" {
 		t.Errorf("shallow canal: %v %v", f.Met, f.Reason)
 	}
+	// Large stones in fast water: HEC-15 asks for half as much again.
+	rough := lined(must(section.NewTrapezoidal(2, 3, 3)), 0.04, must(appraise.NewRiprap(appraise.Rock{StoneSize: 0.4, SpecificGravity: nan, AngleOfRepose: nan, Viscosity: nan})))
+	if f, s := safety(t, rough, 30); f.Met != appraise.Yes || !(s.RecommendedSafety == 1.5) || f.Value < 1.5 != (f.Reason.Code == "below_recommended_safety") || f.Value >= 1.5 {
+		t.Errorf("fast over stones: %v %v %v, recommended %v", f.Met, f.Value, f.Reason, s.RecommendedSafety)
+	}
 	gravel := lined(must(section.NewTrapezoidal(5, 4, 4)), 0.0005, must(appraise.NewRiprap(appraise.Rock{StoneSize: 0.005, SpecificGravity: nan, AngleOfRepose: nan, Viscosity: nan})))
 	if f, _ := safety(t, gravel, 40); f.Met == appraise.Unknown || f.Reason.Code != "beyond_roughness_range" {
 		t.Errorf("deep over gravel: %v %v", f.Met, f.Reason)
