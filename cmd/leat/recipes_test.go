@@ -6,15 +6,20 @@ import (
 	"encoding/json"
 	"flag"
 	"fmt"
+	neturl "net/url"
 	"os"
 	"os/exec"
 	"path/filepath"
 	"slices"
+	"strconv"
 	"strings"
 	"testing"
 
+	"zombiezen.com/go/sqlite"
+
 	"leat/api/operation"
 	"leat/cmd/internal/demo/district"
+	"leat/cmd/internal/geopackage"
 	"leat/cmd/internal/geopackage/geopackagetest"
 	"leat/cmd/internal/register/postgres/postgrestest"
 )
@@ -333,4 +338,65 @@ func TestRecipesInSQL(t *testing.T) {
 			t.Errorf("PL/Python and \\copy differ:\n%.500s\n%.500s", byPython, again)
 		}
 	})
+}
+
+// A run over PostgreSQL, and the view that joins its results with the assets: every asset once, with a verdict or the reason why there is none. The same
+// register in a GeoPackage gets the same verdicts and numbers.
+func TestRecipeForAView(t *testing.T) {
+	folder := t.TempDir()
+	url := database(t, folder)
+	address, err := neturl.Parse(url)
+	if err != nil {
+		t.Fatal(err)
+	}
+	environment := []string{"PGHOST=" + address.Query().Get("host"), "PGUSER=" + address.Query().Get("user"), "PGDATABASE=" + strings.TrimPrefix(address.Path, "/")}
+	if host := address.Hostname(); host != "" { // a server that LEAT_TEST_POSTGRES names
+		password, _ := address.User.Password()
+		environment = []string{"PGHOST=" + host, "PGPORT=" + address.Port(), "PGUSER=" + address.User.Username(), "PGPASSWORD=" + password, "PGDATABASE=" + strings.TrimPrefix(address.Path, "/")}
+	}
+	c := command(t, environment, "register", "run", "--quiet", "../../deploy/register/ostermere_postgres.yaml")
+	if out, _ := c.CombinedOutput(); c.ProcessState.ExitCode() != exitProblems {
+		t.Fatalf("%v\n%s", c.ProcessState, out)
+	}
+	psql(t, folder, url, nil, "-f", recipe(t, "results_view.sql"))
+	psql(t, folder, url, nil, "-f", recipe(t, "results_view.sql")) // a view can be made anew
+	got := psql(t, folder, url, nil, "--csv", "-c", `select verdict, count(*), count(distinct asset_code) as assets, count(problems) as with_problems from ostermere.appraised_channels group by 1 order by 1`)
+	got += psql(t, folder, url, nil, "--csv", "-c", `select asset_code, class, verdict, governing_flow, governing_criterion, governing_value, governing_limit, governing_unit, problems from ostermere.appraised_channels order by asset_code collate "C" limit 40`)
+	golden(t, "view.csv", []byte(got))
+
+	mapping := makeRegister(t, 1)
+	if out, _ := command(t, nil, "register", "run", "--quiet", mapping).CombinedOutput(); !strings.Contains(string(out), "1130 computed") {
+		t.Fatalf("%s", out)
+	}
+	const compared = "asset, verdict, governing_flow, governing_criterion, governing_value, governing_limit, governing_unit, fingerprint"
+	inPostgres := psql(t, folder, url, nil, "-A", "-t", "-c", "select "+compared+" from ostermere.leat_results order by asset collate \"C\"")
+	f, err := geopackage.Open(t.Context(), filepath.Join(filepath.Dir(mapping), "ostermere.gpkg"), geopackage.Read)
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer f.Close()
+	lines := strings.Split(strings.TrimSpace(inPostgres), "\n")
+	at := 0
+	err = f.Rows("SELECT "+compared+" FROM leat_results ORDER BY asset", func(s *sqlite.Stmt) error {
+		if at >= len(lines) {
+			at++
+			return nil
+		}
+		cells := strings.Split(lines[at], "|")
+		at++
+		for i, cell := range cells {
+			same := cell == s.ColumnText(i)
+			if s.ColumnType(i) == sqlite.TypeFloat {
+				number, err := strconv.ParseFloat(cell, 64)
+				same = err == nil && number == s.ColumnFloat(i)
+			}
+			if !same {
+				t.Errorf("%s: PostgreSQL has %q where the GeoPackage has %q", cells[0], cell, s.ColumnText(i))
+			}
+		}
+		return nil
+	})
+	if err != nil || at != len(lines) {
+		t.Errorf("%d results in the GeoPackage, %d in PostgreSQL, %v", at, len(lines), err)
+	}
 }
