@@ -8,6 +8,8 @@ import (
 	"path/filepath"
 	"strconv"
 	"testing"
+
+	"leat/api/serve"
 )
 
 // TestContractAppraisals sends the appraisals of Ostermere through bulk, in every form that the query parameters allow; every line is judged on its way.
@@ -116,5 +118,31 @@ func TestContractRegister(t *testing.T) {
 				}
 			}
 		}
+	}
+}
+
+// TestContractFlowsLimit: the number of an appraisal's flows is bounded before they are solved, and the answer names the limit.
+func TestContractFlowsLimit(t *testing.T) {
+	s := startService(t)
+	ask := func(n int) (int, []byte) {
+		flows := map[string]float64{}
+		for i := range n {
+			flows[strconv.Itoa(i)] = 1
+		}
+		text, err := json.Marshal(map[string]any{
+			"section": map[string]any{"kind": "rectangular", "bottom_width": 2}, "roughness": map[string]any{"manning": 0.02}, "bed_slope": 0.001,
+			"flows": flows, "criteria": map[string]any{"greatest_velocity": 2},
+		})
+		if err != nil {
+			t.Fatal(err)
+		}
+		return s.post("/v1/appraisal?detail=brief", jsonMedia, text)
+	}
+	limit := serve.Default().Flows
+	if status, answer := ask(limit); status != 200 {
+		t.Errorf("%d flows: %d %s", limit, status, answer)
+	}
+	if status, answer := ask(limit + 1); status != 413 || !bytes.Contains(answer, []byte("the limit `flows` of this service")) {
+		t.Errorf("%d flows: %d %s", limit+1, status, answer)
 	}
 }

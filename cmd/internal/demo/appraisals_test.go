@@ -5,6 +5,7 @@ import (
 	"encoding/json"
 	"fmt"
 	"maps"
+	"math"
 	"os"
 	"slices"
 	"strings"
@@ -68,6 +69,83 @@ func TestAppraisalsAreOfTheRegister(t *testing.T) {
 	}
 }
 
+// An appraisedAsset is an answer as callers read it.
+type appraisedAsset struct {
+	Verdict   string
+	Flow      string   `json:"governing_flow"`
+	Criterion string   `json:"governing_criterion"`
+	Value     *float64 `json:"governing_value"`
+	Limit     *float64 `json:"governing_limit"`
+	Flows     map[string]struct {
+		Findings []struct {
+			Criterion, Reason string
+			Value, Limit      *float64
+			Met               *bool
+		}
+	}
+}
+
+// judge draws the verdict and the governing finding from the findings, by the words of the contract: `falls_short` if any is not met, else `undetermined` if any
+// could not be judged, else `meets`; the unmet one furthest beyond its limit governs, else the met one nearest to it.
+func (a *appraisedAsset) judge(t *testing.T, line int) {
+	t.Helper()
+	const unmet, unknown, met = 0, 1, 2
+	var count [3]int
+	furthest, nearest := -1.0, math.Inf(1)
+	distance := func(value, limit *float64) float64 {
+		if value == nil || limit == nil || *limit == 0 && *value != 0 {
+			return math.Inf(1)
+		}
+		if *value == *limit {
+			return 0
+		}
+		return math.Abs(*value-*limit) / math.Abs(*limit)
+	}
+	for _, flow := range a.Flows {
+		for _, f := range flow.Findings {
+			switch {
+			case f.Reason == "not_applicable":
+				if f.Met != nil {
+					t.Errorf("line %d: %s does not apply and is judged", line, f.Criterion)
+				}
+			case f.Met == nil:
+				count[unknown]++
+			case *f.Met:
+				count[met]++
+				nearest = min(nearest, distance(f.Value, f.Limit))
+			default:
+				count[unmet]++
+				furthest = max(furthest, distance(f.Value, f.Limit))
+			}
+		}
+	}
+	want, governs := "meets", nearest
+	switch {
+	case count[unmet] > 0:
+		want, governs = "falls_short", furthest
+	case count[unknown] > 0 || count[met] == 0:
+		want = "undetermined"
+	}
+	if a.Verdict != want {
+		t.Errorf("line %d: %s, want %s: %+v", line, a.Verdict, want, a.Flows)
+	}
+	if count[unmet]+count[met] == 0 {
+		if a.Criterion != "" || a.Flow != "" || a.Value != nil {
+			t.Errorf("line %d: %s governs, and nothing was judged", line, a.Criterion)
+		}
+		return
+	}
+	if got := distance(a.Value, a.Limit); got != governs {
+		t.Errorf("line %d: %s governs at a distance of %v, want %v", line, a.Criterion, got, governs)
+	}
+	for _, f := range a.Flows[a.Flow].Findings {
+		if f.Criterion == a.Criterion && f.Met != nil && *f.Met != (count[unmet] > 0) {
+			return
+		}
+	}
+	t.Errorf("line %d: the finding of %s by %s that governs is not there", line, a.Flow, a.Criterion)
+}
+
 // The rows that are wrong on purpose get the problem that the table promises; every other row gets a verdict, for each flow a finding for each criterion that is about it, and a
 // reason for whatever is not judged.
 func TestEveryAppraisalIsAnswered(t *testing.T) {
@@ -97,16 +175,7 @@ func TestEveryAppraisalIsAnswered(t *testing.T) {
 			t.Errorf("line %d: %s\n%s", a.Line, problem.Detail, a.Text)
 			continue
 		}
-		var got struct {
-			Verdict string
-			Flows   map[string]struct {
-				Findings []struct {
-					Criterion, Reason string
-					Met               *bool
-				}
-			}
-			Warnings []struct{ Code string }
-		}
+		var got appraisedAsset
 		var asked struct {
 			Flows    map[string]float64
 			Criteria map[string]any
@@ -117,6 +186,7 @@ func TestEveryAppraisalIsAnswered(t *testing.T) {
 			t.Fatalf("line %d: %s", a.Line, answer)
 		}
 		verdicts[got.Verdict]++
+		got.judge(t, a.Line)
 		linings[asked.Lining.Kind]++
 		for flow := range asked.Flows {
 			var want, judged []string
