@@ -33,7 +33,7 @@ var (
 	MissingBank    = Reason{"missing_bank_height", "No bank height is known: bank_height is missing."}
 	MissingLaw     = Reason{"missing_roughness", "No roughness is known: roughness is missing."}
 	MissingLining  = Reason{"missing_lining", "No lining is known: lining is missing."}
-	NoFroudeNumber = Reason{"froude_number_undefined", "The energy coefficient rises so fast with depth that there is no Froude number."}
+	NoFroudeNumber = Reason{"froude_number_absent", "The energy coefficient rises so fast with depth that there is no Froude number."}
 	SeveralDepths  = Reason{"several_normal_depths",
 		"The lining's roughness changes so with depth that the discharge flows uniformly at several depths; the lowest is shown."}
 	DepthsDisagree = Reason{"several_normal_depths",

@@ -162,6 +162,35 @@ func TestNoConveyance(t *testing.T) {
 	}
 }
 
+// The rules of freeboard are worked out from the flow that is judged: depth, and discharge of one barrel or velocity.
+func TestRulesOfFreeboard(t *testing.T) {
+	a := canal(2)
+	a.Channel.Slope, a.Channel.Barrels = 0.05, 2
+	limits := everything
+	depth := must2(a.Channel.Normal(8, nil))
+	near(t, "canal", findings(t, a, 8, limits)[appraise.FreeboardRule].Limit, appraise.CanalFreeboard(4, depth), 1e-14)
+	limits.FreeboardRule = appraise.Chute
+	f := findings(t, a, 8, limits)[appraise.FreeboardRule]
+	near(t, "chute", f.Limit, appraise.ChuteFreeboard(4/a.Channel.Section.At(depth).Area, depth), 1e-14)
+	near(t, "freeboard", f.Value, 2-depth, 1e-14)
+	if f.Met != appraise.Yes {
+		t.Errorf("chute: %v", f.Met)
+	}
+}
+
+// Where the energy coefficient rises steeply with depth, no Froude number is there to be held against a band.
+func TestNoFroudeNumber(t *testing.T) {
+	flood := must(section.NewTwoStage(section.TwoStage{BottomWidth: 0.5, BenchHeight: 1, LeftBenchWidth: 1, RightBenchWidth: 1, UpperSideSlope: 1}))
+	law := must(friction.NewZones(flood.(section.Zoned), []float64{0.224, 1.06}, []float64{0.2, 0.02, 0.4}, friction.Divided))
+	a := &appraise.Asset{Channel: flow.Channel{Section: flood, Law: law, Slope: 0.001, Gravity: 9.80665, Bank: 3}}
+	depths := flow.Depths{Normal: []float64{1.0001}, Bank: 3}
+	discharge, _ := a.Channel.UniformAt(1.0001)
+	f := a.Judge(discharge, &depths, &everything, appraise.Of(appraise.CriticalBand), nil).Findings[0]
+	if f.Met != appraise.Unknown || f.Reason != appraise.NoFroudeNumber {
+		t.Errorf("%v at %v: %v", f.Met, f.Value, f.Reason)
+	}
+}
+
 // A channel without a law can be judged in nothing, and says so.
 func TestNoRoughness(t *testing.T) {
 	a := canal(2)

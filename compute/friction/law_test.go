@@ -285,6 +285,10 @@ func TestExtremes(t *testing.T) {
 func TestRefusals(t *testing.T) {
 	nan, inf := math.NaN(), math.Inf(1)
 	flood := compound()
+	pipe, err := section.NewCircular(1)
+	if err != nil {
+		t.Fatal(err)
+	}
 	failing := flood
 	failing.parting = compute.Faults{{Member: "1", Code: "outside"}}
 	for _, row := range []struct {
@@ -299,6 +303,9 @@ func TestRefusals(t *testing.T) {
 		{"manning tiny", second(friction.NewManning(9e-7)), []string{"manning out_of_range"}},
 		{"strickler", second(friction.NewStrickler(inf)), []string{"strickler not_finite"}},
 		{"chezy", second(friction.NewChezy(2e6)), []string{"chezy out_of_range"}},
+		{"grass", second(friction.NewGrass(0, nan)), []string{"grass_roughness not_positive", "gravity not_finite"}},
+		{"stones", second(friction.NewStones(-1, 0, ditch{width: 1})), []string{"stone_size not_positive", "gravity not_positive"}},
+		{"stones in a pipe", second(friction.NewStones(0.2, 9.8, pipe)), []string{" closed_section"}},
 		{"sand", second(friction.NewSandRoughness(0, 2, nan)), []string{"sand_roughness not_positive", "kinematic_viscosity out_of_range", "gravity not_finite"}},
 		{"no rows", second(friction.NewManningByDepth(nil)), []string{"manning_by_depth empty"}},
 		{"rows", second(friction.NewManningByDepth([][2]float64{{-1, 0.03}, {1, 0}, {1, 0.03}, {nan, inf}, {inf, 0.1}, {1e101, 0.1}})),
