@@ -49,11 +49,10 @@ func Open(ctx context.Context, path string, access Access) (*File, error) {
 	}
 	flags := sqlite.OpenReadOnly
 	if access == Write {
-		flags = sqlite.OpenReadWrite
-		if handle, err := os.OpenFile(path, os.O_RDWR, 0); err != nil {
-			return nil, fmt.Errorf("%s cannot be written to: %w", path, err)
-		} else if err := handle.Close(); err != nil {
-			return nil, err
+		// Whether it really can be written to is SQLite's to find out: to open the file here and close it again would take away the locks that
+		// other connections of this process hold on it.
+		if flags = sqlite.OpenReadWrite; info.Mode().Perm()&0o222 == 0 {
+			return nil, fmt.Errorf("%s is read-only", path)
 		}
 	}
 	f, err := connect(ctx, path, flags)

@@ -116,6 +116,9 @@ func (t *target) openToWrite(ctx context.Context) error {
 	if err != nil {
 		return err
 	}
+	if err := t.writing.Within(func() error { return nil }); err != nil { // tells a file that cannot be written to from one that is locked
+		return err
+	}
 	if t.journal, err = t.writing.Text("PRAGMA journal_mode"); err != nil {
 		return err
 	}
