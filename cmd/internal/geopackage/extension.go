@@ -1,7 +1,5 @@
 package geopackage
 
-import "zombiezen.com/go/sqlite"
-
 // Extend registers an extension for a table (requirements 58 to 64), or for a column of it. Doing so twice is doing it once.
 func (f *File) Extend(table, column, name, definition, scope string) error {
 	if has, err := f.Has("gpkg_extensions"); err != nil {
@@ -17,17 +15,4 @@ func (f *File) Extend(table, column, name, definition, scope string) error {
 	}
 	return f.Run("INSERT INTO gpkg_extensions SELECT ?1, ?2, ?3, ?4, ?5 WHERE NOT EXISTS (SELECT 1 FROM gpkg_extensions WHERE table_name = ?1 AND column_name IS ?2 AND extension_name = ?3)",
 		table, col, name, definition, scope)
-}
-
-// Extended returns the tables for which an extension is registered.
-func (f *File) Extended(name string) ([]string, error) {
-	if has, err := f.Has("gpkg_extensions"); err != nil || !has {
-		return nil, err
-	}
-	var out []string
-	err := f.Rows("SELECT DISTINCT table_name FROM gpkg_extensions WHERE extension_name = ? AND table_name IS NOT NULL ORDER BY 1", func(s *sqlite.Stmt) error {
-		out = append(out, s.ColumnText(0))
-		return nil
-	}, name)
-	return out, err
 }

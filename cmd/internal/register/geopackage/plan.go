@@ -6,16 +6,18 @@ import (
 	"strings"
 	"time"
 
+	"zombiezen.com/go/sqlite"
+
 	"leat/cmd/internal/geopackage"
 	"leat/cmd/internal/register/row"
 	"leat/cmd/internal/register/store"
 )
 
-// extension marks the tables that are ours, in gpkg_extensions: no other may be written to.
-const (
-	extension           = "leat_register"
-	extensionDefinition = "Written by leat register; see the README of Leat. The table may be dropped; it must not gain or lose columns."
-)
+// ledger is the table that names the tables which are ours; no other may be written to. An extension of the standard's kind would say so too, but then
+// programs that do not know it warn against editing anything.
+const ledger = "leat_register_tables"
+
+const ledgerText = "Tables that leat register made. They may be dropped; they must not gain or lose columns"
 
 // names are those of the three tables.
 type names struct{ results, problems, runs string }
@@ -110,7 +112,7 @@ func (p *plan) columns() (results, problems, runs [][2]string) {
 
 // check makes sure that what is there is ours and of this layout. A file that was copied without some of our tables gets them anew.
 func (p *plan) check(f *geopackage.File) error {
-	ours, err := f.Extended(extension)
+	ours, err := written(f)
 	if err != nil {
 		return err
 	}
@@ -149,6 +151,19 @@ func (p *plan) check(f *geopackage.File) error {
 	return p.checkSystem(f)
 }
 
+// written returns the tables that are ours.
+func written(f *geopackage.File) ([]string, error) {
+	if has, err := f.Has(ledger); err != nil || !has {
+		return nil, err
+	}
+	var out []string
+	err := f.Rows("SELECT table_name FROM "+ledger, func(s *sqlite.Stmt) error {
+		out = append(out, s.ColumnText(0))
+		return nil
+	})
+	return out, err
+}
+
 // checkSystem makes sure that the number which the geometries bear means the same reference system in this file, or nothing yet.
 func (p *plan) checkSystem(f *geopackage.File) error {
 	s := &p.layout.Columns[p.geometry].Spatial.System
@@ -178,6 +193,16 @@ func difference(have, want [][2]string) string {
 
 // make makes the tables that are missing, lists and describes them.
 func (p *plan) make(f *geopackage.File, now time.Time) error {
+	if has, err := f.Has(ledger); err != nil {
+		return err
+	} else if !has {
+		if err := f.Run("CREATE TABLE " + ledger + " (fid INTEGER PRIMARY KEY, table_name TEXT NOT NULL UNIQUE)"); err != nil {
+			return err
+		}
+		if err := f.ListAttributes(geopackage.Description{Table: ledger, Identifier: ledger, Description: ledgerText, Changed: now}); err != nil {
+			return err
+		}
+	}
 	results, problems, runs := p.columns()
 	asset := geopackage.Quote(p.layout.Columns[0].Name)
 	source := "Results of leat register"
@@ -212,7 +237,7 @@ func (p *plan) make(f *geopackage.File, now time.Time) error {
 		if err := p.list(f, geopackage.Description{Table: t.name, Identifier: t.name, Description: t.title, Changed: now}); err != nil {
 			return err
 		}
-		if err := f.Extend(t.name, "", extension, extensionDefinition, "write-only"); err != nil {
+		if err := f.Run("INSERT OR IGNORE INTO "+ledger+" (table_name) VALUES (?)", t.name); err != nil {
 			return err
 		}
 	}
