@@ -84,6 +84,9 @@ func (c *columns) appendReplaced(dst []byte, r *request, m *member, row *wire.Fl
 		return append(dst, m.value...)
 	}
 	r.replaced[m.found] = true
+	if m.asked && m.found == 0 { // the id
+		return append(dst, m.value...)
+	}
 	before := len(dst)
 	dst = c.table.AppendJSON(dst, row, m.found)
 	if (m.asked || !c.prefixed) && string(dst[before:]) == "null" {

@@ -275,7 +275,7 @@ func (t *csvTarget) tell(dst []byte, r *request, a *answer) []byte {
 			column := &t.from.columns[i]
 			next()
 			before := len(dst)
-			if column.found >= 0 {
+			if column.found >= 0 && !column.id {
 				dst = appendCell(dst, t.b.table, &row, column.found)
 			}
 			if len(dst) == before && i < len(r.cells) && (column.found < 0 || column.asked) {
