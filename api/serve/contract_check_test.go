@@ -234,8 +234,9 @@ func faults(problem map[string]any) error {
 		fault := e.(map[string]any)
 		_, pointer := fault["pointer"]
 		_, parameter := fault["parameter"]
-		if pointer == parameter {
-			return fmt.Errorf("errors/%d has pointer %t, parameter %t: want one of them", i, pointer, parameter)
+		_, column := fault["column"]
+		if places := []bool{pointer, parameter, column}; len(slices.DeleteFunc(places, func(has bool) bool { return !has })) != 1 {
+			return fmt.Errorf("errors/%d has pointer %t, parameter %t, column %t: want one of them", i, pointer, parameter, column)
 		}
 	}
 	return nil
