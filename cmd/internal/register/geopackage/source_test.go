@@ -232,3 +232,14 @@ func TestColumnsSayWhatTheyHold(t *testing.T) {
 		t.Errorf("%+v %+v", shape, shape.Spatial)
 	}
 }
+
+// SQLite types cells, not columns: a text in a column of numbers comes as a text, and is the mapping's to report.
+func TestCellsOfAnotherKind(t *testing.T) {
+	x := build(t, 3, false)
+	x.run(t, "UPDATE channels SET width = '450 mm' WHERE number = 0", "UPDATE channels SET width = NULL, \"in use\" = 'yes' WHERE number = 1", "UPDATE channels SET number = 2.5 WHERE number = 2")
+	got := read(t, open(t, x.source()), &store.Query{Columns: []string{"code", "width", "in use", "number"}}, 10)
+	want := []string{"text C-000000,text 450 mm,true or false true,whole number 0", "text C-000001,any ,text yes,whole number 1", "text C-000002,number 0.2,true or false false,number 2.5"}
+	if !slices.Equal(got, want) {
+		t.Errorf("%q\nwant\n%q", got, want)
+	}
+}

@@ -373,6 +373,26 @@ func TestWhatIsNotOursIsRefused(t *testing.T) {
 	}
 }
 
+// A style that somebody has changed stays; tables that were deleted in a GIS, which may leave their index and their entries behind, come again; and a copied column may
+// have the name that the results' own key would have.
+func TestTablesThatOthersChanged(t *testing.T) {
+	x := build(t, 12, false)
+	x.write(t, x.path, firstStart)
+	x.run(t, "UPDATE layer_styles SET styleQML = 'mine'", "DROP TABLE results", "DROP TABLE results_runs", "DELETE FROM gpkg_contents WHERE table_name = 'results_runs'")
+	second := firstStart
+	second.New = "run-2"
+	x.write(t, x.path, second)
+	geopackagetest.Judge(t, x.path)
+	if got := texts(t, x.path, "SELECT styleQML, (SELECT count(*) FROM results) FROM layer_styles"); !slices.Equal(got, []string{"mine|10"}) {
+		t.Errorf("%q", got)
+	}
+
+	l := layout(x.spatial(t))
+	l.Columns[2].Name = "FID"
+	target := openTarget(t, t.TempDir()+"/fid.gpkg")
+	begin(t, target, l, firstStart)
+}
+
 // A program that shows the file, with a transaction open all the while, sees the state of its beginning and stops nothing.
 func TestReadersAndTheRunDoNotStopEachOther(t *testing.T) {
 	x := build(t, 43, false)
