@@ -76,12 +76,17 @@ func TestFeatures(t *testing.T) {
 	if strings.Join(names, " ") != "kind width open points extra id geometry" {
 		t.Fatalf("%v", names)
 	}
+	for i, want := range []row.Kind{row.Text, row.Float, row.Bool, row.Null, row.Null, row.Text, row.Bytes} {
+		if got := s.Columns()[i].Kind; got != want {
+			t.Errorf("%s: %v, want %v", names[i], got, want)
+		}
+	}
 	geometry := s.Columns()[len(names)-1]
 	if geometry.Geometry != coding || !strings.Contains(geometry.Spatial.System.Definition, "EPSG::3035") {
 		t.Errorf("%+v", geometry)
 	}
 	want := []string{
-		`text A1|text box|whole number 300|true or false true|bytes [[0,1],[1,0]]|bytes {"type":"LineString","coordinates":[[1.50,2,3],[4,5e0,6]]}`,
+		`text A1|text box|number 300|true or false true|bytes [[0,1],[1,0]]|bytes {"type":"LineString","coordinates":[[1.50,2,3],[4,5e0,6]]}`,
 		`text A2|text a "b" é|number 2.5|any |any |any `,
 		"text A3|any |any |any |any |any ",
 		"text A4|any |number 12345678901234567000|any |any |any ",

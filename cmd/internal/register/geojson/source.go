@@ -52,8 +52,10 @@ func (s *source) survey(ctx context.Context) error {
 		return err
 	}
 	defer d.Close()
-	known := map[string]bool{}
-	hasID := false
+	places := map[string]int{}
+	var names []string
+	var seen []kinds
+	var id kinds
 	for {
 		f, err := d.next()
 		if errors.Is(err, io.EOF) {
@@ -65,21 +67,31 @@ func (s *source) survey(ctx context.Context) error {
 		if ctx.Err() != nil {
 			return context.Cause(ctx)
 		}
-		hasID = hasID || f.id != nil
 		s.count++
-		err = members(f.properties, func(name string, _ jsontext.Value) {
-			if !known[name] {
-				known[name] = true
-				s.columns = append(s.columns, row.Column{Name: name})
+		if f.id != nil {
+			id.add(cell(f.id))
+		}
+		err = members(f.properties, func(name string, value jsontext.Value) {
+			at, known := places[name]
+			if !known {
+				at = len(names)
+				places[name], names, seen = at, append(names, name), append(seen, 0)
 			}
+			seen[at].add(cell(value))
 		})
 		if err != nil {
 			return fmt.Errorf("the properties of feature %d are no object", f.index)
 		}
 	}
-	s.ownID, s.ownGeometry = hasID && !known[idColumn], !known[geometryColumn]
+	for i, name := range names {
+		s.columns = append(s.columns, row.Column{Name: name, Kind: seen[i].common()})
+	}
+	_, isProperty := places[idColumn]
+	s.ownID = id != 0 && !isProperty
+	_, isProperty = places[geometryColumn]
+	s.ownGeometry = !isProperty
 	if s.ownID {
-		s.columns = append(s.columns, row.Column{Name: idColumn})
+		s.columns = append(s.columns, row.Column{Name: idColumn, Kind: id.common()})
 	}
 	if s.ownGeometry {
 		s.columns = append(s.columns, row.Column{
@@ -88,6 +100,26 @@ func (s *source) survey(ctx context.Context) error {
 		})
 	}
 	return nil
+}
+
+// kinds are those that the values of a property have, as bits.
+type kinds uint
+
+func (k *kinds) add(v row.Value) { *k |= 1 << v.Kind }
+
+// common is the kind that they have in common, whole numbers being numbers; Null where there is none. Where values are missing does not count.
+func (k kinds) common() row.Kind {
+	switch k &^ (1 << row.Null) {
+	case 1 << row.Int:
+		return row.Int
+	case 1 << row.Float, 1<<row.Float | 1<<row.Int:
+		return row.Float
+	case 1 << row.Text:
+		return row.Text
+	case 1 << row.Bool:
+		return row.Bool
+	}
+	return row.Null
 }
 
 // Columns are those of all features.
@@ -183,6 +215,10 @@ func (s *source) read(q *store.Query) (*reader, error) {
 		}
 	}
 	r.names = names
+	r.numbers = make([]bool, len(names))
+	for i, name := range names {
+		r.numbers[i] = slices.ContainsFunc(s.columns, func(c row.Column) bool { return c.Name == name && c.Kind == row.Float })
+	}
 	return r, nil
 }
 
@@ -192,7 +228,8 @@ type reader struct {
 	query        *store.Query
 	names        []string // the query's columns, and then those of the filter only
 	places       map[string]int
-	id, geometry int // places; -1 where not wanted
+	numbers      []bool // by name: whole numbers are numbers there too
+	id, geometry int    // places; -1 where not wanted
 	first, last  int64
 	ended        bool
 	faults       []store.RowFault
@@ -260,7 +297,11 @@ func (r *reader) feature(f *feature) error {
 	}
 	return members(f.properties, func(name string, value jsontext.Value) {
 		if at, wanted := r.places[name]; wanted {
-			r.values[at] = cell(value)
+			v := cell(value)
+			if r.numbers[at] && v.Kind == row.Int {
+				v = row.OfFloat(float64(v.Int()))
+			}
+			r.values[at] = v
 		}
 	})
 }

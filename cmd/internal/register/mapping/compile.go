@@ -123,7 +123,7 @@ type compiling struct {
 
 // known reports a column that a table does not have.
 func (c *compiling) known(name string, at place, columns []row.Column) bool {
-	if slices.ContainsFunc(columns, func(k row.Column) bool { return k.Name == name }) {
+	if hasColumn(columns, name) {
 		return true
 	}
 	names := make([]string, len(columns))
@@ -132,6 +132,10 @@ func (c *compiling) known(name string, at place, columns []row.Column) bool {
 	}
 	c.faultAt(at, "The table has no column %q%s.", name, advice(name, names))
 	return false
+}
+
+func hasColumn(columns []row.Column, name string) bool {
+	return slices.ContainsFunc(columns, func(c row.Column) bool { return c.Name == name })
 }
 
 // use returns the place of a column among those to read.
@@ -211,7 +215,11 @@ func (c *compiling) add(f *memberFeed) {
 	for i := range f.feeds {
 		from := &f.feeds[i]
 		column := -1
-		if from.column != "" {
+		switch {
+		case from.column == "":
+		case slices.Contains(f.about.Names, from.column) && !hasColumn(c.columns, from.column):
+			c.faultAt(from.columnAt, "The table has no column %q; if all assets are of that kind, write {constant: %s}.", from.column, from.column)
+		default:
 			column = c.use(from.column, from.columnAt)
 		}
 		n.sources = append(n.sources, c.compile(from, &f.about, column))
@@ -350,6 +358,11 @@ func (c *compiling) copied() {
 			c.m.Copied = append(c.m.Copied, at)
 		}
 	}
+}
+
+// Feeds reports whether anything feeds a member at the top of the request.
+func (m *Mapping) Feeds(name string) bool {
+	return slices.ContainsFunc(m.root.nodes, func(n node) bool { return n.name == name })
 }
 
 // ColumnsAt names the source's columns that feed what a JSON Pointer points to, joined with a comma; empty where none does.

@@ -118,6 +118,7 @@ func TestEveryFaultHasItsLine(t *testing.T) {
 		{"units as a column", "  section_diameter:", "  units: status\n  section_diameter:", 25, "top of the mapping"},
 		{"object as a member", "  section_diameter:", "  section: status\n  section_diameter:", 25, "no member"},
 		{"unknown column", "{column: diameter, unit: mm}", "{column: diamter, unit: mm}", 25, `did you mean "diameter"`},
+		{"kind as a column", "  section_kind:\n    column: shape\n    values: {C: circular, B: box, S: surveyed}\n", "  section_kind: circular\n", 22, "{constant: circular}"},
 		{"unknown column, short", "    upstream_level: up", "    upstream_level: upp", 32, `did you mean "up"`},
 		{"unknown unit", "{column: diameter, unit: mm}", "{column: diameter, unit: milimetre}", 25, "it may be in m, mm"},
 		{"unit of another quantity", "{column: flow, unit: l/s}", "{column: flow, unit: mm}", 37, "it may be in m3/s, l/s"},
@@ -185,7 +186,7 @@ func TestAllFaultsAtOnce(t *testing.T) {
 
 // No text of a fault repeats a secret.
 func TestFaultsTellNoPassword(t *testing.T) {
-	for _, line := range []string{"  password: hunter2hunter2", "  host: {password: hunter2hunter2}"} {
+	for _, line := range []string{"  password: hunter2hunter2", "  database: postgres://u:hunter2@h/d", "  host: h password=hunter2", "  host: {password: hunter2hunter2}"} {
 		_, _, err := compileText(strings.Replace(sound, "  path: results.csv", "  path: results.csv\n"+line, 1))
 		if err == nil || strings.Contains(fmt.Sprint(err), "hunter2") {
 			t.Errorf("%v", err)

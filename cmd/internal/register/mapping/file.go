@@ -297,7 +297,14 @@ func (p *parsing) csv(known map[string]func(entry), into *store.CSVSpec) {
 }
 
 func (p *parsing) database(known map[string]func(entry), part string, into *store.DatabaseSpec) {
-	text := func(into *string) func(entry) { return func(e entry) { *into = p.note(part, e) } }
+	text := func(into *string) func(entry) {
+		return func(e entry) {
+			*into = p.note(part, e)
+			if strings.Contains(*into, "://") || strings.Contains(strings.ToLower(*into), "password") {
+				p.faultAt(e.at, "%s is a plain name, not an address with several parts. %s", e.name, passwordDetail)
+			}
+		}
+	}
 	known["host"] = text(&into.Host)
 	known["port"] = text(&into.Port)
 	known["database"] = text(&into.Name)

@@ -27,8 +27,9 @@ type Problem struct {
 
 // Codes of problems that only a mapping can find. Those of requests are in the contract.
 const (
-	CodeUnknownValue = "unknown_value"  // not in the table of values
-	CodeNotANumber   = "not_a_number"   //
+	CodeUnknownValue = "unknown_value" // not in the table of values
+	CodeNotANumber   = "not_a_number"  //
+	CodeOutOfRange   = "number_out_of_range"
 	CodeNotTrue      = "not_true_false" //
 	CodeNotAList     = "not_a_list"     //
 	CodeReversed     = "reversed_slope" // the downstream level lies above the upstream one
@@ -200,24 +201,37 @@ func (w *writing) source(dst []byte, n *node, s *source) ([]byte, bool) {
 	}
 	switch n.about.Form {
 	case wire.FormNumber:
-		number, ok := w.number(n, s, v)
-		if !ok {
-			return dst, true
+		if number, ok := w.number(n, s, v); ok {
+			dst = w.append(dst, n, s, number)
 		}
-		return wire.AppendNumber(dst, number), true
+		return dst, true
 	case wire.FormWhole:
 		number, ok := w.number(n, s, v)
 		if ok && number != math.Trunc(number) {
 			w.problem(n, s, CodeNotANumber, "Column %s holds %s, which is not a whole number.", s.name, shown(v))
 			return dst, true
 		}
-		return wire.AppendNumber(dst, number), true
+		return w.append(dst, n, s, number), true
 	case wire.FormBool:
 		return w.truth(dst, n, s, v), true
 	case wire.FormName:
 		return w.name(dst, n, s, v), true
 	}
 	return w.list(dst, n, s, v), true
+}
+
+// The contract's bounds on the size of a number that is not 0.
+const (
+	leastSize    = 1e-100
+	greatestSize = 1e100
+)
+
+// append appends a number in the member's units.
+func (w *writing) append(dst []byte, n *node, s *source, number float64) []byte {
+	if size := math.Abs(number); size != 0 && !(size >= leastSize && size <= greatestSize) {
+		w.problem(n, s, CodeOutOfRange, "Column %s gives %s the value %g; numbers are 0 or between 1e-100 and 1e100 in size.", s.name, n.flat, number)
+	}
+	return wire.AppendNumber(dst, number)
 }
 
 // isMissing reports whether a value means that nothing is known. A text loses the white space around it.
@@ -394,7 +408,7 @@ func (w *writing) points(dst []byte, n *node, s *source) ([]byte, bool) {
 			if !ok {
 				return dst, true
 			}
-			dst = append(wire.AppendNumber(dst, number), ',')
+			dst = append(w.append(dst, n, part, number), ',')
 		}
 		dst[len(dst)-1] = ']'
 		dst = append(dst, ',')
@@ -453,7 +467,7 @@ func (w *writing) levels(dst []byte, n *node, s *source) ([]byte, bool) {
 		w.problem(n, &s.levels.length, CodeLength, "The levels differ by more than the length along the bed; either is wrong.")
 		return dst, true
 	}
-	return wire.AppendNumber(dst, slope), true
+	return w.append(dst, n, s, slope), true
 }
 
 // part returns the number of a source that is a part of another's value.

@@ -216,6 +216,8 @@ func TestProblems(t *testing.T) {
 		{"diameter", "NaN", CodeNotANumber, "/section/diameter", "say so with missing", nil},
 		{"diameter", math.NaN(), CodeNotANumber, "/section/diameter", "say so with missing", nil},
 		{"diameter", math.Inf(1), CodeNotANumber, "/section/diameter", "not a number", nil},
+		{"diameter", 1e200, CodeOutOfRange, "/section/diameter", "between 1e-100 and 1e100", nil},
+		{"diameter", "1e-200", CodeOutOfRange, "/section/diameter", "between 1e-100 and 1e100", nil},
 		{"diameter", true, CodeNotANumber, "/section/diameter", "true or false, not a number", nil},
 		{"material", "wood", CodeUnknownValue, "/roughness/manning", "there are concrete", nil},
 		{"length", 0.0, CodeMissing, "/bed_slope", "Column length is empty", nil}, // 0 is missing

@@ -9,6 +9,7 @@ import (
 	"slices"
 	"strings"
 
+	"leat/api/operation"
 	"leat/api/wire"
 	"leat/cmd/internal/register/mapping"
 	"leat/cmd/internal/register/row"
@@ -27,13 +28,18 @@ type plan struct {
 // notAnswers are the columns of flat answers that results have in other places.
 var notAnswers = []string{"id", "line", "problem", "fingerprint"}
 
+// ofGivenDepth reports whether a column of depths tells of the depth that a request may give: without one it is always empty.
+func ofGivenDepth(op *operation.Operation, name string) bool {
+	return op == &operation.Depths && (strings.HasPrefix(name, "given_") || slices.Contains([]string{"alternate_depth", "sequent_depth", "curve"}, name))
+}
+
 // newPlan lays out the results. columns are those of the source's table. The error is mapping.Faults.
 func newPlan(file *mapping.File, m *mapping.Mapping, columns []row.Column) (*plan, error) {
 	p := &plan{file: file, mapping: m, table: wire.FlatTableOf(file.Operation.Form)}
 	flat := p.table.Columns()
 	if file.Target.Columns == nil {
 		for i := range flat {
-			if !slices.Contains(notAnswers, flat[i].Name) {
+			if !slices.Contains(notAnswers, flat[i].Name) && (m.Feeds("depth") || !ofGivenDepth(file.Operation, flat[i].Name)) {
 				p.answers = append(p.answers, i)
 			}
 		}

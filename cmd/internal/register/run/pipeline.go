@@ -106,7 +106,7 @@ func (p *pipeline) read(ctx context.Context, reader store.Reader, free <-chan *t
 			until = t.page.Row(t.page.Rows() - 1)[0]
 		}
 		// The end is a stretch too: what is stored beyond the last row is of assets that are gone.
-		t.stretch(p.source.Ordered(), after, until)
+		t.stretch(p.layout.Columns[0].Kind, p.source.Ordered(), after, until)
 		after = until.Clone()
 		t.skip = p.skip
 		if p.mark && !end {

@@ -214,7 +214,7 @@ func (j *Job) stretch(ctx context.Context, target store.Target, w *worker, t *ta
 		return err
 	}
 	t.faults = append(t.faults[:0], reader.Faults()...)
-	t.stretch(true, after, until)
+	t.stretch(j.plan.layout.Columns[0].Kind, true, after, until)
 	t.skip = skip
 	if err := target.Stored(ctx, &t.batch.Stretch, func(key row.Value, stored store.Stored) { t.known.add(key, stored) }); err != nil {
 		return err

@@ -68,14 +68,19 @@ type task struct {
 	done chan struct{}
 }
 
-// stretch sets what part of the register the page is.
-func (t *task) stretch(ordered bool, after, until row.Value) {
+// stretch sets what part of the register the page is. Where keys are texts, others (of a GeoJSON file whose ids are of several types) become texts.
+func (t *task) stretch(keys row.Kind, ordered bool, after, until row.Value) {
 	t.memory.Reset()
 	t.keys = t.keys[:0]
 	for i := range t.page.Rows() {
-		if key := t.page.Row(i)[0]; !key.IsNull() {
-			t.keys = append(t.keys, key)
+		key := &t.page.Row(i)[0]
+		if key.IsNull() {
+			continue
 		}
+		if keys == row.Text && key.Kind != row.Text {
+			*key = t.memory.Text(key.String())
+		}
+		t.keys = append(t.keys, *key)
 	}
 	t.batch = store.Batch{
 		Stretch: store.Stretch{Ordered: ordered, After: t.memory.Keep(after), Until: t.memory.Keep(until), Keys: t.keys},

@@ -4,6 +4,7 @@ package wholefile
 import (
 	"bufio"
 	"errors"
+	"fmt"
 	"os"
 	"path/filepath"
 )
@@ -18,26 +19,55 @@ type File struct {
 // bufferBytes are written at a time.
 const bufferBytes = 256 << 10
 
-// Create begins a file. What stands under the path stays until Finish.
+// Create begins a file, under a hidden name that a process that was killed may have left. What stands under the path stays until Finish. While
+// one process writes a path, another cannot begin.
 func Create(path string) (*File, error) {
-	file, err := os.CreateTemp(filepath.Dir(path), "."+filepath.Base(path)+".unfinished-*")
-	if err != nil {
-		return nil, err
+	hidden := filepath.Join(filepath.Dir(path), "."+filepath.Base(path)+".unfinished")
+	for {
+		file, err := os.OpenFile(hidden, os.O_RDWR|os.O_CREATE, 0o600)
+		if err != nil {
+			return nil, err
+		}
+		if err := lock(file); err != nil {
+			file.Close()
+			return nil, fmt.Errorf("another process is writing %s: %w", path, err)
+		}
+		// Between opening and locking another process may have finished the file and given it its name.
+		if !isStill(hidden, file) {
+			file.Close()
+			continue
+		}
+		if err := file.Truncate(0); err != nil {
+			file.Close()
+			return nil, err
+		}
+		return &File{bufio.NewWriterSize(file, bufferBytes), file, path}, nil
 	}
-	return &File{bufio.NewWriterSize(file, bufferBytes), file, path}, nil
+}
+
+// isStill reports whether a name is still that of an open file.
+func isStill(name string, file *os.File) bool {
+	named, err := os.Stat(name)
+	if err != nil {
+		return false
+	}
+	opened, err := file.Stat()
+	return err == nil && os.SameFile(named, opened)
 }
 
 // Finish makes sure that all is on the disk and gives the file its name.
 func (f *File) Finish() error {
-	err := errors.Join(f.Flush(), f.mode(), f.file.Sync(), f.file.Close())
+	err := errors.Join(f.Flush(), f.mode(), f.file.Sync())
 	if err == nil {
-		err = os.Rename(f.file.Name(), f.path)
+		err = os.Rename(f.file.Name(), f.path) // under the lock
 	}
 	if err != nil {
-		os.Remove(f.file.Name())
+		return errors.Join(err, f.Discard())
+	}
+	err, f.file = f.file.Close(), nil
+	if err != nil {
 		return err
 	}
-	f.file = nil
 	return syncFolder(filepath.Dir(f.path))
 }
 
@@ -55,8 +85,7 @@ func (f *File) Discard() error {
 	if f.file == nil {
 		return nil
 	}
-	name := f.file.Name()
-	err := errors.Join(f.file.Close(), os.Remove(name))
+	err := errors.Join(os.Remove(f.file.Name()), f.file.Close()) // removed under the lock
 	f.file = nil
 	return err
 }
