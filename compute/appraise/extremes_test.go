@@ -15,7 +15,7 @@ import (
 func TestExtremes(t *testing.T) {
 	r := rand.New(rand.NewPCG(4, 6))
 	judged := map[appraise.Met]int{}
-	for range 6000 {
+	for range 2000 {
 		var s section.Section
 		switch r.IntN(6) {
 		case 0:

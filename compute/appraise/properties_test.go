@@ -176,7 +176,7 @@ func TestCanalRule(t *testing.T) {
 func TestUniformFlowOfLinings(t *testing.T) {
 	r := rand.New(rand.NewPCG(4, 3))
 	several, none := 0, 0
-	for range 1500 {
+	for range 700 {
 		s := randomDitch(r)
 		for _, l := range linings(r) {
 			law := must(l.Roughness(s, 9.80665))
