@@ -63,13 +63,15 @@ func TestMoreFlowNeverBearsLess(t *testing.T) {
 			}
 			limits := everything
 			b, c := a.Judge(q, &before, &limits, appraise.All, nil), a.Judge(more, &after, &limits, appraise.All, nil)
-			compared++
 			if stones, own := a.Channel.Law.(*friction.Stones); own && stones.Formula(before.Normal[0]) != stones.Formula(after.Normal[0]) {
 				continue
 			}
+			compared++
 			value := func(j appraise.Judgement, c appraise.Criterion) float64 { return j.Findings[c].Value }
-			if !(value(c, appraise.GreatestShear) >= value(b, appraise.GreatestShear) && c.Lining.BedShear >= b.Lining.BedShear*(1-1e-9) ||
-				a.BendRadius > 0) {
+			if !math.IsNaN(c.Lining.BedShear) && !(c.Lining.BedShear >= b.Lining.BedShear*(1-0.002)) { // the bend's factor falls by as much at a ratio of 2
+				t.Errorf("%T: greatest shear %v at %v, %v at %v", l, b.Lining.BedShear, q, c.Lining.BedShear, more)
+			}
+			if !(value(c, appraise.GreatestShear) >= value(b, appraise.GreatestShear)) {
 				t.Errorf("%T: shear %v at %v, %v at %v", l, value(b, appraise.GreatestShear), q, value(c, appraise.GreatestShear), more)
 			}
 			if !(value(c, appraise.GreatestFill) >= value(b, appraise.GreatestFill)) {
