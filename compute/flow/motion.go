@@ -95,6 +95,9 @@ func (m *Motion) ForceRate(g section.Geometry) float64 {
 
 // FrictionSlope returns (Q/K)^2 at a geometry; +Inf where the law gives no conveyance.
 func (m *Motion) FrictionSlope(g section.Geometry) float64 {
+	if m.byPower {
+		return m.power.FrictionSlope(g, m.discharge)
+	}
 	ratio := m.discharge / m.conveyance(g)
 	return ratio * ratio
 }

@@ -69,6 +69,21 @@ func (p Power) At(g section.Geometry) Conveyance {
 	return manning(g, p.C)
 }
 
+// FrictionSlope returns (discharge/K)^2 with K as At gives it but for its last places, at less cost where R^(-1/3) serves for the root; +Inf where there
+// is no conveyance.
+func (p Power) FrictionSlope(g section.Geometry, discharge float64) float64 {
+	if !(g.Area > 0 && g.Perimeter > 0) {
+		return math.Inf(1)
+	}
+	velocity := discharge / (p.C * g.Area)
+	inverse := g.Perimeter / g.Area
+	if p.form == Chezy {
+		return velocity * velocity * inverse
+	}
+	root := solve.InverseCubeRoot(g.Area / g.Perimeter)
+	return velocity * velocity * (inverse * root)
+}
+
 // AtSlope implements Law.
 func (p Power) AtSlope(g section.Geometry, _ float64) Conveyance { return p.At(g) }
 

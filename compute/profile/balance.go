@@ -58,27 +58,37 @@ func (l *leg) workIn(p *piece, change, tolerance float64) float64 {
 // work returns the change of the specific energy between two chainages of one panel by quadrature: of S0 - Sf, less what an inflow takes. Where the
 // panel gives the chainage over the depth, the quadrature is over the depth too: there the depth may change without end over no distance.
 func (l *leg) work(p *panel, x0, x1 float64) float64 {
-	from, to := x0, x1
 	if p.form == overDepth {
-		from, to = p.variable(x0), p.variable(x1)
+		return l.workOverDepth(p, p.variable(x0), p.variable(x1))
 	}
-	half, middle := (to-from)/2, from+(to-from)/2
+	half, middle := (x1-x0)/2, x0+(x1-x0)/2
 	sum := 0.0
 	for i, node := range checking.node {
 		at := middle + half*node
-		if p.form != overDepth {
-			sum += checking.weight[i] * l.energySlope(at, p.depth(at))
-			continue
-		}
+		sum += checking.weight[i] * l.energySlope(at, p.depth(at))
+	}
+	return sum * half
+}
+
+func (l *leg) workOverDepth(p *panel, from, to float64) float64 {
+	half, middle := (to-from)/2, from+(to-from)/2
+	reach, uniform := l.stretch.(*prismatic)
+	sum := 0.0
+	for i, node := range checking.node {
+		at := middle + half*node
 		run, slope := p.s.at(at)
-		y, _, _ := p.chart.depth(p.u0 + (p.u1-p.u0)*(at+1)/2)
-		sum += checking.weight[i] * slope * l.energySlope(p.x0+run, y)
+		y := p.depthAt(at)
+		if uniform {
+			sum += checking.weight[i] * slope * reach.steepness(reach.channel.Geometry(y))
+		} else {
+			sum += checking.weight[i] * slope * l.energySlope(p.x0+run, y)
+		}
 	}
 	return sum * half
 }
 
 // checking is the rule of the balances, of more points than the solver's.
-var checking = newGauss(20)
+var checking = newGauss(24)
 
 // energySlope returns dE/dx: S0 - Sf, less (2*beta - alpha)*Q*q/(g A^2) for a lateral inflow that brings no momentum.
 func (l *leg) energySlope(x, y float64) float64 {

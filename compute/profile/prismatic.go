@@ -6,6 +6,7 @@ import (
 
 	"leat/compute/flow"
 	"leat/compute/section"
+	"leat/compute/solve"
 )
 
 // prismatic is a reach of one section, slope and discharge. There the depth's equation does not hold the chainage,
@@ -321,13 +322,28 @@ func (s *sweeper) chartAt(stop float64) (c chart, until float64) {
 	return c, until
 }
 
-// resolved is the tail of a function below which its panel counts as resolved.
-const resolved = 1e-12
+// resolved is the tail of a function below which its panel counts as resolved, and noise what it may be by the last places of the function's values.
+const (
+	resolved = 1e-12
+	noise    = 1e-14
+)
+
+// firstWidth is the width in the logarithm of a distance that is tried first.
+const firstWidth = 2
+
+// tooFar is how many times longer than what is left of the stretch a panel may be, unless it is narrower than leastFitted.
+const (
+	tooFar      = 100
+	leastFitted = 1e-6
+)
 
 // stretched returns by what factor a panel could be wider for its tail to be just resolved: of an analytic function the tail goes with the power of the width that
-// is the number of terms.
+// is the number of terms. Of a tail that is noise nothing is known but that it could be much wider.
 func stretched(tail float64) float64 {
-	return math.Sqrt(math.Sqrt(math.Sqrt(math.Sqrt(resolved / max(tail, 1e-18)))))
+	if tail < noise {
+		return 2.5
+	}
+	return 0.9 * solve.Power(resolved/tail, 1./terms)
 }
 
 // hop goes over a rise of the depth so small that its last places are all there is of it, with one value of dx/ddepth. It reports whether the stop was reached.
@@ -358,7 +374,7 @@ func (s *sweeper) step(b flow.Branch, stop float64, asymptote bool) bool {
 			end = c.of(until)
 		}
 	}
-	width := 1.0
+	width := float64(firstWidth)
 	if c.crown {
 		width = math.Abs(end - u0)
 	}
@@ -372,7 +388,7 @@ func (s *sweeper) step(b flow.Branch, stop float64, asymptote bool) bool {
 	if !toPole && math.Abs(stop-s.y) < 1e-8*s.y {
 		return s.hop(stop)
 	}
-	tails := newFloor()
+	tails, fitted := newFloor(), false
 	for {
 		u1 := u0 + toward*width
 		y1 := 0.0
@@ -388,13 +404,21 @@ func (s *sweeper) step(b flow.Branch, stop float64, asymptote bool) bool {
 		whole := pn.s.whole()
 		settled := tail < resolved || tail*math.Abs(whole) < 1e-13*p.length || tails.reached(tail, noisyOverDepth)
 		if width > 1e-9 && (!settled || !good) && math.Abs(u1-u0) > 1e-9*math.Abs(u0) {
-			width = math.Min(width, math.Abs(u1-u0)) * min(max(0.9*stretched(tail), 0.25), 0.5)
+			width = math.Min(width, math.Abs(u1-u0)) * min(max(stretched(tail), 0.25), 0.5)
+			s.trace.shrink()
+			continue
+		}
+		left := s.far - s.x
+		if math.Abs(whole) > tooFar*math.Abs(left) && math.Abs(u1-u0) > leastFitted && !fitted {
+			// The last places of the whole would tell in what is left of the stretch.
+			pn.x1 = s.x + whole
+			width, fitted = max(1.1*math.Abs(u1-u0)*(pn.variable(s.far)+1)/2, leastFitted), true
 			s.trace.shrink()
 			continue
 		}
 		s.wider = 2
 		if tail < resolved {
-			s.wider = min(0.9*stretched(tail), 3)
+			s.wider = stretched(tail)
 		}
 		pn.x1 = s.x + whole
 		if s.direction*(pn.x1-s.far) >= 0 {

@@ -53,3 +53,41 @@ func BenchmarkExp(b *testing.B) {
 		x = 0.3 + 0.1*Exp(-x)
 	}
 }
+
+// The cube of x^(-1/3) times x is 1, in 300 bits.
+func TestInverseCubeRoot(t *testing.T) {
+	r := rand.New(rand.NewPCG(8, 8))
+	worst := 0.0
+	for i := range 20000 {
+		x := math.Ldexp(1+r.Float64(), r.IntN(80)-40)
+		if i%100 == 0 {
+			x = math.Ldexp(1+r.Float64(), r.IntN(2000)-1000)
+		}
+		got := InverseCubeRoot(x)
+		one := new(big.Float).SetPrec(300).SetFloat64(got)
+		one.Mul(one, new(big.Float).Mul(one, one))
+		one.Mul(one, new(big.Float).SetPrec(300).SetFloat64(x))
+		off, _ := new(big.Float).Sub(one, new(big.Float).SetInt64(1)).Float64()
+		units := math.Abs(off) / 3 * got / (math.Nextafter(got, math.Inf(1)) - got)
+		if !(units <= 1.6) {
+			t.Fatalf("InverseCubeRoot(%v) = %v is %v units off", x, got, units)
+		}
+		worst = max(worst, units)
+	}
+	t.Logf("worst: %.3f units in the last place", worst)
+	for _, c := range []struct{ x, want float64 }{{0, math.Inf(1)}, {1, 1}, {8, 0.5}, {1e-300, 1e100}, {math.Inf(1), 0}} {
+		if got := InverseCubeRoot(c.x); !(got == c.want || math.Abs(got/c.want-1) <= 5e-16) {
+			t.Errorf("InverseCubeRoot(%v) = %v, want %v", c.x, got, c.want)
+		}
+	}
+	if got := InverseCubeRoot(math.NaN()); got == got {
+		t.Errorf("InverseCubeRoot(NaN) = %v", got)
+	}
+}
+
+func BenchmarkInverseCubeRoot(b *testing.B) {
+	x := 0.37
+	for b.Loop() {
+		x = 0.3 + 0.1*InverseCubeRoot(x)
+	}
+}

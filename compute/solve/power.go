@@ -8,6 +8,24 @@ func TwoThirds(x float64) float64 {
 	return root * root
 }
 
+// InverseCubeRoot returns x^(-1/3) for 1e-290 < x < 1e290, and by way of math.Cbrt for others, to about one and a half units in the last place. It waits for
+// no quotient: a guess from the bits of x, good to 4 %, is mended by two steps along the binomial series of (1 - h)^(-1/3) with h = 1 - x*guess^3.
+func InverseCubeRoot(x float64) float64 {
+	if !(x > 1e-290 && x < 1e290) {
+		return 1 / math.Cbrt(x)
+	}
+	y := math.Float64frombits(thirdGuess - math.Float64bits(x)/3)
+	h := 1 - (x*y)*(y*y)
+	q := h * h
+	y += y * (h*(1.0/3+h*(2.0/9)) + q*(h*(14.0/81)+q*(35.0/243+h*(91.0/729))))
+	h = 1 - (x*y)*(y*y)
+	return y + y*(h*(1.0/3+h*(2.0/9)))
+}
+
+// thirdGuess, less a third of the bits of x, are the bits of a guess at x^(-1/3): four thirds of the exponent's offset, less what makes the guess
+// as often too large as too small.
+const thirdGuess = 0x553ef0ff289dd796
+
 // The natural logarithm of two in two parts: the first has 40 bits, so that its product with a binary exponent is exact.
 const (
 	lnTwoHigh = 0x1.62e42fefa2p-1
