@@ -73,6 +73,9 @@ func Run(ctx context.Context, arguments []string, stdout, stderr io.Writer) Outc
 		fmt.Fprintln(stderr, faults.Error())
 		return Misused
 	}
+	if errors.Is(err, context.Canceled) {
+		err = errors.New("stopped before the end; start it again and it goes on")
+	}
 	fmt.Fprintf(stderr, "leat register %s: %v\n", c.name, err)
 	return Failed
 }
@@ -207,7 +210,7 @@ func (c *command) do(ctx context.Context) (Outcome, error) {
 		report, err = job.Run(ctx, target)
 	}
 	if err != nil {
-		return Failed, err
+		return Failed, placed(file, "target", err)
 	}
 	c.summarize(file, report)
 	if report.Counts.Bad > 0 {

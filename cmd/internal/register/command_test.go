@@ -1,6 +1,8 @@
 package register_test
 
 import (
+	"bytes"
+	"context"
 	"encoding/csv"
 	"encoding/json"
 	"fmt"
@@ -262,6 +264,22 @@ func TestCheckAndDryRunWriteNothing(t *testing.T) {
 		if outcome, out, stderr := command(t, verb, mapping); outcome != register.Done {
 			t.Errorf("%s: %v\n%s%s", verb, outcome, out, stderr)
 		}
+	}
+}
+
+// A run that a signal stops says so, and leaves no file.
+func TestStoppedRun(t *testing.T) {
+	text, _, _ := drainsCSV(1000)
+	path := folder(t, map[string]string{"m.yaml": drainsMapping, "drains.csv": text})
+	ctx, stop := context.WithCancel(t.Context())
+	stop()
+	var stdout, stderr bytes.Buffer
+	outcome := register.Run(ctx, []string{"run", "--quiet", filepath.Join(path, "m.yaml")}, &stdout, &stderr)
+	if outcome != register.Failed || !strings.Contains(stderr.String(), "start it again") {
+		t.Errorf("%v %s", outcome, &stderr)
+	}
+	if left, _ := os.ReadDir(path); len(left) != 2 {
+		t.Errorf("%v", left)
 	}
 }
 

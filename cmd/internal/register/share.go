@@ -37,12 +37,16 @@ func (c *command) share(ctx context.Context, file *mapping.File, source store.So
 	if workers == 0 {
 		workers = runtime.GOMAXPROCS(0)
 	}
-	began := time.Now()
-	total, failed, err := sharing.Work(ctx, job.Processes(target, state, workers), func(counts store.Counts) {
-		if c.options.Progress != nil {
-			c.options.Progress(&run.Progress{Counts: counts, Total: -1})
+	progress := func(store.Counts) {}
+	if c.options.Progress != nil {
+		all, err := source.Count(ctx, job.Query())
+		if err != nil {
+			return Failed, err
 		}
-	})
+		progress = func(counts store.Counts) { c.options.Progress(&run.Progress{Counts: counts, Total: all}) }
+	}
+	began := time.Now()
+	total, failed, err := sharing.Work(ctx, job.Processes(target, state, workers), progress)
 	if err != nil {
 		return Failed, err
 	}

@@ -254,6 +254,9 @@ func (c *compiling) compile(f *feed, about *wire.MemberDescription, column int) 
 			s.missingNumbers = append(s.missingNumbers, v.Float())
 		default:
 			s.missingTexts = append(s.missingTexts, v.String())
+			if number, isNumber := parseNumber(v.Bytes(), '.'); isNumber && v.Kind == row.Text { // "-999", in quotes
+				s.missingNumbers = append(s.missingNumbers, number)
+			}
 		}
 	}
 	if l := f.levels; l != nil {

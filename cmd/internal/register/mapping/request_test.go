@@ -84,6 +84,7 @@ func TestRequests(t *testing.T) {
 			`{"bed_slope":` + slope + `,"discharge":0.05,"roughness":{"manning":0.013},"section":{"height":1.2,"kind":"box","width":0.9},"units":"si"}`},
 		{"missing numbers", with("diameter", -999, "flow", 0), nil, nil, `{"bed_slope":` + slope + `,"roughness":{"manning":0.013},"section":{"kind":"circular"},"units":"si"}`},
 		{"missing texts", with("diameter", "-999.0", "flow", " "), nil, nil, `{"bed_slope":` + slope + `,"roughness":{"manning":0.013},"section":{"kind":"circular"},"units":"si"}`},
+		{"missing numbers in quotes", with("diameter", -999, "flow", 0), nil, []string{"missing: [0, -999]", `missing: ["0", "-999"]`}, `{"bed_slope":` + slope + `,"roughness":{"manning":0.013},"section":{"kind":"circular"},"units":"si"}`},
 		{"missing of its own", with("diameter", -999, "flow", -1), nil, []string{"unit: l/s}", "unit: l/s, missing: [-1], default: 7}"},
 			`{"bed_slope":` + slope + `,"discharge":0.007,"roughness":{"manning":0.013},"section":{"kind":"circular"},"units":"si"}`},
 		{"a survey", with("shape", "S"), [][2]any{{0, 1.5}, {"2.5", 0}, {5, 1.25}}, nil,
