@@ -73,7 +73,7 @@ func describeDepths(a *wire.DepthsAnswer, c *flow.Channel, q float64, depth wire
 	if !brief {
 		a.Normal, a.Critical = states(c, d.Normal, q), states(c, d.Critical, q)
 	}
-	w.depths(&d, at)
+	w.depths(&d, at.discharge)
 	if depth.Given {
 		given, problem := given(c, &d, depth.Value, q, w)
 		if problem != nil {
@@ -85,18 +85,15 @@ func describeDepths(a *wire.DepthsAnswer, c *flow.Channel, q float64, depth wire
 }
 
 // depths adds what is to be said of the characteristic depths.
-func (w *warnings) depths(d *flow.Depths, at depthsPlaces) {
-	if len(d.Normal) > 0 && d.Normal[0] > d.Bank {
-		w.add("overtopped", at.bank, "The normal depth lies above the bank: the section overtops at this discharge.")
-	}
+func (w *warnings) depths(d *flow.Depths, discharge string) {
 	if d.Surcharged {
-		w.add("surcharged", at.discharge, "The discharge is more than the closed section carries with a free surface; under pressure its depth is governed from downstream.")
+		w.add("surcharged", discharge, "The discharge is more than the closed section carries with a free surface; under pressure its depth is governed from downstream.")
 	}
 	if len(d.Normal) > 1 {
-		w.add("several_normal_depths", at.discharge, "The discharge flows uniformly at more than one depth; normal_depth is the lowest.")
+		w.add("several_normal_depths", discharge, "The discharge flows uniformly at more than one depth; normal_depth is the lowest.")
 	}
 	if len(d.Critical) > 1 {
-		w.add("several_critical_depths", at.discharge, "The specific energy has more than one minimum; critical_depth is the lowest of their depths.")
+		w.add("several_critical_depths", discharge, "The specific energy has more than one minimum; critical_depth is the lowest of their depths.")
 	}
 }
 
