@@ -245,6 +245,7 @@ type seenProblem struct {
 	Errors   []struct {
 		Pointer   *string `json:"pointer"`
 		Parameter *string `json:"parameter"`
+		Column    *string `json:"column"`
 		Code      string  `json:"code"`
 		Detail    string  `json:"detail"`
 	} `json:"errors"`
