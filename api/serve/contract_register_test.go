@@ -6,10 +6,13 @@ import (
 	"maps"
 	"os"
 	"path/filepath"
+	"regexp"
 	"strconv"
+	"strings"
 	"testing"
 
 	"leat/api/serve"
+	"leat/openapi"
 )
 
 // TestContractAppraisals sends the appraisals of Ostermere through bulk, in every form that the query parameters allow; every line is judged on its way.
@@ -27,6 +30,19 @@ func TestContractAppraisals(t *testing.T) {
 		results, lines := bytes.Count(answer, []byte(`,"result":`)), bytes.Count(appraisals, []byte("\n"))
 		if results < lines*95/100 || bytes.Contains(answer, []byte(`"status":5`)) {
 			t.Errorf("%s: %d results of %d lines", query, results, lines)
+		}
+		reasons := regexp.MustCompile(`"reason":"([a-z_]+)"`).FindAllSubmatch(answer, -1)
+		if len(reasons) < 100 {
+			t.Errorf("%s: %d findings with a reason", query, len(reasons))
+		}
+		for _, reason := range reasons {
+			code := string(reason[1])
+			if member, missing := strings.CutPrefix(code, "missing_"); missing && strings.Contains(string(openapi.YAML), "\n        "+member+":\n") {
+				continue
+			}
+			if !strings.Contains(string(openapi.YAML), "`"+code+"`") {
+				t.Errorf("the contract does not name the reason %s", code)
+			}
 		}
 	}
 }
