@@ -1,6 +1,8 @@
 package mapping
 
 import (
+	"crypto/sha256"
+	"encoding/hex"
 	"errors"
 	"slices"
 	"strings"
@@ -8,6 +10,7 @@ import (
 
 	"leat/api/operation"
 	"leat/cmd/internal/register/row"
+	"leat/compute"
 )
 
 const appraised = `operation: appraisal
@@ -100,6 +103,40 @@ func TestCriteriaByClass(t *testing.T) {
 		if len(problems) != 1 || problems[0].Code != CodeUnknownClass || problems[0].Column != "class" || !strings.Contains(problems[0].Text, want) {
 			t.Errorf("%v: %v", class, problems)
 		}
+	}
+}
+
+// Flows may be called anything; the request is canonical all the same, and a fault leads back to the column.
+func TestNamesOfFlows(t *testing.T) {
+	text := strings.Replace(appraised, "  a_check: 0.2\n", "  \"\\U0001F600\": 0.3\n  \"\\uFFEE\": 0.4\n  \"a/b~c\": least\n  \"say \\\"so\\\" \\t\": 0.5\n  é: 0.6\n  10: 0.7\n", 1)
+	cells := map[string]any{"asset": "A", "diameter": 300, "slope": 0.01, "flow": 50, "class": "trunk", "least": 0.2}
+	body, problems := appraisedRequest(t, text, cells)
+	if len(problems) > 0 {
+		t.Fatal(problems)
+	}
+	if problem := operation.Appraisal.Check([]byte(body), operation.Options{}); problem != nil {
+		t.Fatalf("%s: %v", body, problem)
+	}
+	want, _ := operation.Appraisal.Fingerprint([]byte(body), operation.Options{})
+	sum := sha256.Sum256([]byte("appraisal\n" + compute.EngineVersion + "\n" + body))
+	if got := hex.EncodeToString(sum[:]); got != want {
+		t.Errorf("%s is not canonical", body)
+	}
+	f, err := Parse("m.yaml", []byte(text))
+	if err != nil {
+		t.Fatal(err)
+	}
+	m, err := f.Compile(appraisedColumns, nil)
+	if err != nil || m.ColumnsAt("/flows/a~1b~0c") != "least" {
+		t.Errorf("%v %q", err, m.ColumnsAt("/flows/a~1b~0c"))
+	}
+	cells["least"] = "x"
+	if _, problems := appraisedRequest(t, text, cells); len(problems) != 1 || problems[0].Pointer != "/flows/a~1b~0c" {
+		t.Errorf("%v", problems)
+	}
+	long := strings.Replace(appraised, "  a_check: 0.2\n", "  "+strings.Repeat("é", 257)+": 0.3\n", 1)
+	if _, err := Parse("m.yaml", []byte(long)); err == nil || !strings.Contains(err.Error(), "at most 256 characters") {
+		t.Errorf("%v", err)
 	}
 }
 

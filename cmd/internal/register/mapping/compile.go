@@ -6,6 +6,9 @@ import (
 	"slices"
 	"strconv"
 	"strings"
+	"unicode/utf16"
+
+	"github.com/go-json-experiment/json/jsontext"
 
 	"leat/api/wire"
 	"leat/cmd/internal/register/row"
@@ -201,7 +204,8 @@ func (c *compiling) place(path []string) *node {
 		i := slices.IndexFunc(n.nodes, func(o node) bool { return o.name == name })
 		if i < 0 {
 			i = len(n.nodes)
-			n.nodes = append(n.nodes, node{name: name, key: append(strconv.AppendQuote(nil, name), ':'), kind: -1})
+			key, _ := jsontext.AppendQuote(nil, name) // bad UTF-8 becomes U+FFFD
+			n.nodes = append(n.nodes, node{name: name, key: append(key, ':'), kind: -1})
 		}
 		n = &n.nodes[i]
 	}
@@ -304,9 +308,14 @@ func (c *compiling) bits(about *wire.MemberDescription, chosen []string) uint32 
 	return bits
 }
 
-// finish puts nodes into the order of RFC 8785 (of names in ASCII, that of their bytes) and finds each object's kind.
+// compareNames orders names as RFC 8785 does: by their UTF-16 code units.
+func compareNames(a, b string) int {
+	return slices.Compare(utf16.Encode([]rune(a)), utf16.Encode([]rune(b)))
+}
+
+// finish puts nodes into the order of RFC 8785 and finds each object's kind.
 func (c *compiling) finish(n *node) {
-	slices.SortFunc(n.nodes, func(a, b node) int { return strings.Compare(a.name, b.name) })
+	slices.SortFunc(n.nodes, func(a, b node) int { return compareNames(a.name, b.name) })
 	for i := range n.nodes {
 		c.finish(&n.nodes[i])
 		if n.nodes[i].name == "kind" && n.nodes[i].about.Form == wire.FormName {
@@ -368,10 +377,22 @@ func (m *Mapping) Feeds(name string) bool {
 	return slices.ContainsFunc(m.root.nodes, func(n node) bool { return n.name == name })
 }
 
+// pointerText takes the escapes out of a part of a JSON Pointer (RFC 6901).
+var pointerText = strings.NewReplacer("~1", "/", "~0", "~")
+
+// pointer returns the JSON Pointer of a member.
+func (n *node) pointer() (pointer string) {
+	for _, name := range n.about.Path {
+		pointer = wire.MemberPointer(pointer, name)
+	}
+	return pointer
+}
+
 // ColumnsAt names the source's columns that feed what a JSON Pointer points to, joined with a comma; empty where none does.
 func (m *Mapping) ColumnsAt(pointer string) string {
 	n := &m.root
 	for _, part := range strings.Split(strings.TrimPrefix(pointer, "/"), "/") {
+		part = pointerText.Replace(part)
 		i := slices.IndexFunc(n.nodes, func(o node) bool { return o.name == part })
 		if i < 0 {
 			break

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"slices"
 	"strings"
+	"unicode/utf8"
 
 	"github.com/go-json-experiment/json/jsontext"
 	"github.com/goccy/go-yaml/ast"
@@ -62,6 +63,13 @@ func (p *parsing) member(e entry, prefix string, class int) {
 		return
 	case "units":
 		p.faultAt(e.at, "units stands at the top of the mapping file, and each column may have its own unit.")
+		return
+	case "depths":
+		p.faultAt(e.at, "An asset has one row of results: feed depth, not depths.")
+		return
+	}
+	if own := about.Path[len(about.Path)-1]; utf8.RuneCountInString(own) > wire.MaxNameCharacters {
+		p.faultAt(e.at, "A name may have at most %d characters.", wire.MaxNameCharacters)
 		return
 	}
 	var feeds []feed
@@ -412,7 +420,7 @@ func (p *parsing) json(n ast.Node, name string, dst []byte) []byte {
 		return append(dst, ']')
 	case *ast.MappingNode, *ast.MappingValueNode:
 		entries := p.entries(n, name)
-		slices.SortFunc(entries, func(a, b entry) int { return strings.Compare(a.name, b.name) })
+		slices.SortFunc(entries, func(a, b entry) int { return compareNames(a.name, b.name) })
 		dst = append(dst, '{')
 		for i, e := range entries {
 			if i > 0 {

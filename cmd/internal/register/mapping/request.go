@@ -74,7 +74,7 @@ func (w *Writer) Append(dst []byte, r Row) ([]byte, []Problem) {
 }
 
 func (w *writing) problem(n *node, s *source, code, format string, arguments ...any) {
-	w.problems = append(w.problems, Problem{Column: s.name, Pointer: "/" + strings.Join(n.about.Path, "/"), Code: code, Text: fmt.Sprintf(format, arguments...)})
+	w.problems = append(w.problems, Problem{Column: s.name, Pointer: n.pointer(), Code: code, Text: fmt.Sprintf(format, arguments...)})
 }
 
 // classify finds the class that the row is of.

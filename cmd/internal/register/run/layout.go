@@ -121,10 +121,12 @@ func (p *plan) lay(columns []row.Column, flat []wire.FlatColumn) error {
 	fmt.Fprintf(hash, "%s\n%s\n", p.file.Operation.Name, system)
 	seen := map[string]bool{}
 	for _, c := range p.layout.Columns {
-		if seen[c.Name] {
+		// Some databases do not tell capitals from small letters.
+		if plain := strings.ToLower(c.Name); !seen[plain] {
+			seen[plain] = true
+		} else {
 			return p.file.Place("target", &store.Misfit{Field: "copy", Detail: fmt.Sprintf("The results would have two columns %q: one copied from the register and one of ours; give ours a prefix.", c.Name)})
 		}
-		seen[c.Name] = true
 		fmt.Fprintf(hash, "%q %d %d %s\n", c.Name, c.Role, c.Kind, c.Unit)
 	}
 	p.layout.Hash = hex.EncodeToString(hash.Sum(nil))

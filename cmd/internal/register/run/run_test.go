@@ -12,6 +12,7 @@ import (
 	"testing"
 
 	"leat/api/operation"
+	"leat/api/wire"
 	"leat/cmd/internal/register/mapping"
 	"leat/cmd/internal/register/row"
 	"leat/cmd/internal/register/store"
@@ -454,6 +455,32 @@ func TestProcesses(t *testing.T) {
 	}
 }
 
+// A panic of the solver costs its row.
+func TestPanicCostsARow(t *testing.T) {
+	f, err := mapping.Parse("m.yaml", []byte(file))
+	if err != nil {
+		t.Fatal(err)
+	}
+	broken := *f.Operation
+	calls := 0
+	broken.Solve = func(body []byte, options operation.Options) (operation.Solved, *wire.Problem) {
+		if calls++; calls == 5 {
+			panic("a fault of the program")
+		}
+		return operation.Depths.Solve(body, options)
+	}
+	f.Operation = &broken
+	target := newMemoryTarget()
+	job, err := Prepare(f, sourceOf(drains(30)), Options{Workers: 1})
+	if err != nil {
+		t.Fatal(err)
+	}
+	report, err := job.Run(context.Background(), target)
+	if err != nil || report.Counts.Computed != 29 || len(target.problems[12]) != 1 || target.problems[12][0].Code != "internal_error" {
+		t.Errorf("%+v %v %v", report, err, target.problems)
+	}
+}
+
 // Faults of the target's part stop before anything is written, with their line.
 func TestFaultsOfResults(t *testing.T) {
 	for _, c := range []struct{ target, want string }{
@@ -461,13 +488,14 @@ func TestFaultsOfResults(t *testing.T) {
 		{"{format: postgres, table: r, columns: [fingerprint]}", "in any case"},
 		{"{format: postgres, table: r, columns: [fill, fill]}", "twice"},
 		{"{format: postgres, table: r, copy: [run]}", "give ours a prefix"},
+		{"{format: postgres, table: r, copy: [Run]}", "give ours a prefix"},
 	} {
 		f, err := mapping.Parse("m.yaml", []byte(strings.Replace(file, "{format: postgres, table: results, copy: [name]}", c.target, 1)))
 		if err != nil {
 			t.Fatal(err)
 		}
 		source := sourceOf(nil)
-		source.columns = append(slices.Clone(columns), row.Column{Name: "run", Kind: row.Text})
+		source.columns = append(slices.Clone(columns), row.Column{Name: "run", Kind: row.Text}, row.Column{Name: "Run", Kind: row.Text})
 		_, err = Prepare(f, source, Options{})
 		var faults mapping.Faults
 		if !errors.As(err, &faults) || faults[0].Line != 3 || !strings.Contains(faults[0].Detail, c.want) {

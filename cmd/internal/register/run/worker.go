@@ -100,6 +100,8 @@ func (w *worker) work(ctx context.Context, t *task, id *identity) error {
 		t.cells = make([]row.Value, 0, rows*width)
 	}
 	faults := t.faults
+	checkpoint := func() error { return context.Cause(ctx) }
+	w.options.Begin = func() func() error { return checkpoint }
 	for i := range rows {
 		if i%64 == 0 && ctx.Err() != nil {
 			return context.Cause(ctx)
@@ -149,12 +151,7 @@ func (w *worker) row(t *task, i int, fault *store.RowFault, id *identity) {
 			return
 		}
 	}
-	solved, problem := w.file.Operation.Solve(body, w.options)
-	if problem == nil {
-		if absent := solved.Answer.(wire.Flat).FlatAbsent(); absent != "" {
-			problem = wire.Internal(absent)
-		}
-	}
+	solved, problem := w.solve(body)
 	if problem != nil {
 		w.refused(t, i, problem)
 		return
@@ -162,6 +159,22 @@ func (w *worker) row(t *task, i int, fault *store.RowFault, id *identity) {
 	t.known.replaced(values[0])
 	w.result(t, values, &solved, &fingerprint, copied, id)
 	t.batch.Counts.Computed++
+}
+
+// solve solves a request. A panic costs the row, not the run.
+func (w *worker) solve(body []byte) (solved operation.Solved, problem *wire.Problem) {
+	defer func() {
+		if v := recover(); v != nil {
+			problem = wire.Internal(fmt.Sprintf("The solver failed on this row; please report it: %v.", v))
+		}
+	}()
+	if solved, problem = w.file.Operation.Solve(body, w.options); problem != nil {
+		return solved, problem
+	}
+	if absent := solved.Answer.(wire.Flat).FlatAbsent(); absent != "" {
+		return solved, wire.Internal(absent)
+	}
+	return solved, nil
 }
 
 // fingerprint is that of the contract: see wire.Fingerprint.
