@@ -31,7 +31,7 @@ func (b *Boundary) downstreamHold(s side, total, bed float64, notes *notes) (hol
 	asks := func(energy float64) (hold, error) {
 		depth, ok, err := s.subcritical(energy, 0, 0)
 		if err != nil {
-			return h, err
+			return h, &NoSolution{Code: aboveLastRow.Code, Detail: aboveLastRow.Detail, Member: "downstream"}
 		}
 		if !ok {
 			depth = 0 // less than the least energy
@@ -127,8 +127,15 @@ func (b *Boundary) upstreamHold(s side, total, bed float64, notes *notes) (hold,
 	case Gate:
 		h.depth = b.Opening * b.Contraction
 	}
-	if !(h.depth < critical) {
-		notes.end("boundary_does_not_govern", "upstream", "The upstream boundary is not below critical depth, and subcritical flow is governed from downstream; it counts as left out.")
+	detail := ""
+	switch {
+	case !(h.depth < critical):
+		detail = "The upstream boundary is not below critical depth, and subcritical flow is governed from downstream; it counts as left out."
+	case s.motion.EnergyRate(s.channel.Geometry(h.depth)) >= 0: // of several critical depths that of least energy counts, and this depth lies above another
+		detail = "The upstream boundary is subcritical, though below the critical depth of least energy, and subcritical flow is governed from downstream; it counts as left out."
+	}
+	if detail != "" {
+		notes.end("boundary_does_not_govern", "upstream", detail)
 		return hold{}, nil
 	}
 	return h, nil

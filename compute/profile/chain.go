@@ -92,7 +92,7 @@ func (c *chain) sweepUp() error {
 	last := c.legs[len(c.legs)-1]
 	end, err := c.run.Downstream.downstreamHold(last.side(last.length), last.total(last.length), last.level(last.length), &c.notes)
 	if err != nil {
-		return err
+		return c.at(last, downstream, err)
 	}
 	last.above = above{depth: end.depth}
 	c.controls = append(c.controls, Control{Chainage: last.start + last.length, Kind: end.kind, Depth: end.depth})
@@ -108,12 +108,12 @@ func (c *chain) sweepUp() error {
 				below = t.depth(0)
 			}
 			if l.above, err = l.joint.above(below); err != nil {
-				return err
+				return c.at(l, downstream, err)
 			}
 		}
 		t, err := l.sweep(l.length, l.above.depth, upstream, true)
 		if err != nil {
-			return err
+			return c.at(l, l.lower(), err)
 		}
 		if len(t.panels) > 0 {
 			l.subs = append(l.subs, t)
@@ -125,7 +125,7 @@ func (c *chain) sweepUp() error {
 			}
 			t, err := l.sweep(p.x, p.depth, upstream, true)
 			if err != nil {
-				return err
+				return c.at(l, l.lower(), err)
 			}
 			if len(t.panels) > 0 {
 				l.subs = append(l.subs, t)
@@ -150,7 +150,7 @@ func (c *chain) walk() error {
 	first := c.legs[0]
 	begin, err := c.run.Upstream.upstreamHold(first.side(0), first.total(0), first.level(0), &c.notes)
 	if err != nil {
-		return err
+		return c.at(first, upstream, err)
 	}
 	shooting, depth := begin.governs, begin.depth
 	fromBoundary := begin.governs
@@ -166,7 +166,7 @@ func (c *chain) walk() error {
 					// Nothing downstream governs here: the flow enters from a pool, or from what is above, at critical depth.
 					s := l.side(x)
 					if depth, err = s.critical(); err != nil {
-						return err
+						return c.at(l, upstream, err)
 					}
 					c.control(l, x, "critical", depth)
 					shooting = true
@@ -178,6 +178,9 @@ func (c *chain) walk() error {
 				if x < l.length {
 					depth = t.panels[0].y0
 					c.control(l, x, "critical", depth)
+					if p, ok := l.passage(x); ok {
+						depth = p.below
+					}
 					shooting = true
 				}
 				if l.length == 0 {
@@ -187,7 +190,7 @@ func (c *chain) walk() error {
 			}
 			t, err := l.sweep(x, depth, downstream, false)
 			if err != nil {
-				return err
+				return c.at(l, l.lower(), err)
 			}
 			to, jumps, err := c.meet(l, t, x)
 			if err != nil {
@@ -221,7 +224,7 @@ func (c *chain) walk() error {
 				}
 				meets := l.subBelow(t.end)
 				if meets == nil || meets.end-t.end > 1e-4*l.length {
-					return &stuck{l}
+					return &stuck{l, c.outweighed(l, t)}
 				}
 				to, shooting = meets.end, false
 			default:
@@ -241,6 +244,12 @@ func (c *chain) walk() error {
 		}
 	}
 	return nil
+}
+
+// outweighed reports whether subcritical flow has the larger force where a supercritical trace ends.
+func (c *chain) outweighed(l *leg, t *trace) bool {
+	s, side := l.sub(t.end), l.side(t.end)
+	return s != nil && side.force(s.depth(t.end)) >= side.force(t.last)
 }
 
 // arrived reports whether the flow at the end of the leg before is supercritical.
@@ -276,7 +285,7 @@ func (c *chain) cross(i int, shooting bool, depth float64) (bool, float64, error
 	}
 	below, err := l.joint.with.critical()
 	if err != nil {
-		return false, 0, err
+		return false, 0, c.at(next, upstream, err)
 	}
 	c.control(next, 0, "critical", below)
 	return true, below, nil
@@ -319,7 +328,7 @@ func (c *chain) solve() (*Answer, error) {
 		}
 		// A control inside was passed over: look closer, and begin again.
 		if more > 1024 {
-			return nil, noSteadyFlow
+			return nil, c.at(stuck.leg, upstream, stuck.reason())
 		}
 		if stuck.leg.inside, err = stuck.leg.controls(more); err != nil {
 			return nil, err
@@ -344,12 +353,30 @@ func (c *chain) restart() {
 	c.notes, c.segments, c.jumps, c.controls, c.turns = notes{}, c.segments[:0], c.jumps[:0], c.controls[:0], c.turns[:0]
 }
 
-// stuck tells that supercritical flow came to critical depth in a leg where no subcritical flow meets it.
-type stuck struct{ leg *leg }
+// stuck tells that supercritical flow came to critical depth in a leg where no subcritical flow meets it, or where one meets it but forces are equal only
+// where a jump would gain energy.
+type stuck struct {
+	leg  *leg
+	meet bool // the latter
+}
 
 func (s *stuck) Error() string { return noSteadyFlow.Detail }
 
-var noSteadyFlow = &NoSolution{Code: "no_steady_flow", Detail: "Supercritical flow reaches critical depth inside a reach where no subcritical flow meets it; give other boundaries, or look for an error in the section or the roughness."}
+// reason tells why nothing helps.
+func (s *stuck) reason() error {
+	if s.meet {
+		return noJump
+	}
+	// Somewhere on the way the energy may be least at a break of the section, which is no critical depth.
+	const places = 64
+	for i := range places + 1 {
+		side := s.leg.side(s.leg.length * float64(i) / places)
+		if _, err := side.critical(); err != nil {
+			return err
+		}
+	}
+	return noSteadyFlow
+}
 
 // NoSolution is the physical reason why a run has no answer.
 type NoSolution struct {

@@ -39,6 +39,9 @@ var integrate = func() (m [order][order]float64) {
 // settled is the tail of a series below which a panel of a varying stretch counts as resolved.
 const settled = 1e-12
 
+// settledAtPassage is that of the first panel from a passage through critical depth.
+const settledAtPassage = 1e-10
+
 func (v *varying) sweep(x, depth, direction float64, subcritical bool) (*trace, error) {
 	c := &collocation{v: v, direction: direction, subcritical: subcritical, x: x, y: depth, slope: math.NaN(), trace: v.memory.trace(direction == upstream)}
 	if direction == downstream {
@@ -50,7 +53,7 @@ func (v *varying) sweep(x, depth, direction float64, subcritical bool) (*trace, 
 	if v.a.Section.Closed() && math.Abs(depth-v.height) <= 1e-12*v.height {
 		c.y = v.height
 	} else if c.startsAtCritical() {
-		if x > 0 && x < v.length {
+		if x > 0 && x < v.length && !slices.Contains(v.corners, x) {
 			slope, ok := v.throughCritical(x, depth)
 			if !ok {
 				return c.done(), nil
@@ -295,6 +298,10 @@ func (c *collocation) atEnd() bool {
 	if d <= atCritical*c.v.cosine && (shrinks > 0 || math.Abs(n) <= atCritical) {
 		return true
 	}
+	// Where the numerator vanishes too, as flow turns from supercritical to subcritical without a jump, it comes nearer only in the last places.
+	if d <= 10*atCritical*c.v.cosine && math.Abs(n) <= 1e-3*atCritical {
+		return true
+	}
 	// Next to a crown the last places of the depth are coarse against F.
 	return shrinks > 0 && d < 0.1*shrinks
 }
@@ -395,7 +402,8 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 	s := newSeries(&f)
 	rise, _ := s.integral(1)
 	tail := (math.Abs(s[order-1]) + math.Abs(s[order-2])) / (math.Abs(rise) + 0.1*c.y)
-	if !(tail < settled || c.overX.reached(tail, noisyOverChainage)) {
+	// Next to a passage through critical depth shorter panels are only noisier, since numerator and denominator vanish there together.
+	if !(tail < settled || !math.IsNaN(c.slope) && tail < settledAtPassage || c.overX.reached(tail, noisyOverChainage)) {
 		return p, false
 	}
 	y1 := c.y + rise

@@ -24,7 +24,7 @@ func (s *side) force(depth float64) float64  { return s.motion.Force(s.channel.G
 func (s *side) critical() (depth float64, err error) {
 	depth, _, known := s.motion.LeastEnergy()
 	if !known {
-		return 0, &NoSolution{Code: "no_critical_depth", Detail: "A section on the way has no critical depth at this discharge, so that it cannot be told which flow it lets through; give another section there, or another discharge."}
+		return 0, noCriticalDepth
 	}
 	return depth, nil
 }

@@ -10,6 +10,7 @@ import (
 // subcritical to supercritical by itself, looking at the ends of so many parts.
 func (v *varying) controls(parts int) ([]passage, error) {
 	var found []passage
+	v.corners = nil
 	numerator := func(x float64) float64 {
 		s := v.side(x)
 		depth, _, known := s.motion.LeastEnergy()
@@ -25,18 +26,53 @@ func (v *varying) controls(parts int) ([]passage, error) {
 		n := numerator(x)
 		if before < 0 && n > 0 {
 			at, _, ok := solve.RootSlopeless(numerator, from, x)
-			// Where critical depth itself jumps the numerator jumps past zero: no passage.
-			if ok && at > 0 && at < v.length && math.Abs(numerator(at)) <= 1e-6*(n-before) {
+			if !ok || !(at > 0 && at < v.length) {
+				before, from = n, x
+				continue
+			}
+			if math.Abs(numerator(at)) > 1e-6*(n-before) {
+				if p, is := v.corner(numerator, from, x); is {
+					found = append(found, p)
+					v.corners = append(v.corners, p.x)
+				}
+			} else {
 				s := v.side(at)
 				depth, _, _ := s.motion.LeastEnergy()
 				if _, through := v.throughCritical(at, depth); through {
-					found = append(found, passage{at, depth})
+					found = append(found, passage{at, depth, depth})
 				}
 			}
 		}
 		before, from = n, x
 	}
 	return found, nil
+}
+
+// corner returns the place between two others, the numerator negative at the first and positive at the second, where critical depth jumps because another
+// minimum of the energy becomes the least, and the numerator jumps past zero with it. Subcritical flow comes to critical depth there as to any control,
+// and supercritical flow leaves it from the other critical depth, at equal energy.
+func (v *varying) corner(numerator func(float64) float64, lo, hi float64) (p passage, ok bool) {
+	for range 100 {
+		middle := lo + (hi-lo)/2
+		if middle == lo || middle == hi {
+			break
+		}
+		switch n := numerator(middle); {
+		case n < 0:
+			lo = middle
+		case n > 0:
+			hi = middle
+		default:
+			return p, false
+		}
+	}
+	a, b := v.side(lo), v.side(hi)
+	above, e0, known := a.motion.LeastEnergy()
+	below, e1, too := b.motion.LeastEnergy()
+	if !known || !too || math.Abs(e1-e0) > 1e-9*e0 {
+		return p, false // one of them begins or ends at a break
+	}
+	return passage{lo, above, below}, true
 }
 
 // throughCritical returns the slope ddepth/dx with which a flow passes from subcritical to supercritical through a place where numerator and denominator

@@ -15,8 +15,9 @@ type stretch interface {
 	controls(parts int) ([]passage, error)
 }
 
-// A passage is a place and its critical depth.
-type passage struct{ x, depth float64 }
+// A passage is a place and its critical depth: that of the flow above it and that of the flow below it, two where another minimum of the energy becomes the
+// least there.
+type passage struct{ x, depth, below float64 }
 
 // A leg is a stretch with its place in the chain and the subcritical flow in it.
 type leg struct {
@@ -35,6 +36,16 @@ type leg struct {
 
 // level returns the bed level at a chainage of the leg.
 func (l *leg) level(x float64) float64 { return l.bed - l.slope*x }
+
+// passage returns the passage inside the leg at a chainage.
+func (l *leg) passage(x float64) (p passage, ok bool) {
+	for _, p := range l.inside {
+		if p.x == x {
+			return p, true
+		}
+	}
+	return p, false
+}
 
 // sub returns the subcritical sweep that covers a chainage, nil for none.
 func (l *leg) sub(x float64) *trace {

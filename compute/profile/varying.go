@@ -23,6 +23,7 @@ type varying struct {
 	cosine  float64
 	breaks  []float64
 	height  float64
+	corners []float64 // chainages inside at which critical depth jumps and the flow passes through it
 	check   func() error
 	memory  *memory
 }
