@@ -12,6 +12,7 @@ import (
 	"path/filepath"
 	"slices"
 	"strconv"
+	"strings"
 	"syscall"
 	"testing"
 	"time"
@@ -159,6 +160,30 @@ func (s *Server) Process(t testing.TB) int {
 		t.Fatal(err)
 	}
 	return number
+}
+
+// Processors returns the processors' time that the server's processes have taken, as far as they have ended.
+func (s *Server) Processors(t testing.TB) time.Duration {
+	t.Helper()
+	content, err := os.ReadFile(fmt.Sprintf("/proc/%d/stat", s.Process(t)))
+	if err != nil {
+		t.Fatal(err)
+	}
+	// Behind the name in parentheses: fields 3 and on; 16 and 17 are the times of children that were waited for, in hundredths of a second.
+	_, rest, _ := strings.Cut(string(content), ") ")
+	fields := strings.Fields(rest)
+	if len(fields) < 15 {
+		t.Fatalf("what the system says of the server is not understood: %s", content)
+	}
+	var sum time.Duration
+	for _, field := range fields[13:15] {
+		ticks, err := strconv.ParseInt(field, 10, 64)
+		if err != nil {
+			t.Fatal(err)
+		}
+		sum += time.Duration(ticks) * 10 * time.Millisecond
+	}
+	return sum
 }
 
 // Run starts the server again after Stop or Crash, and waits until it answers.
