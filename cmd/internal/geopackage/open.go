@@ -73,7 +73,7 @@ func connect(ctx context.Context, path string, flags sqlite.OpenFlags) (*File, e
 	f := &File{Conn: conn, Path: path}
 	conn.SetInterrupt(ctx.Done())
 	conn.SetBusyTimeout(Patience)
-	for _, set := range []string{"PRAGMA foreign_keys = ON", "PRAGMA cache_size = -32768"} {
+	for _, set := range []string{"PRAGMA foreign_keys = ON", "PRAGMA cache_size = -8192"} {
 		if err := f.Run(set); err != nil {
 			return nil, errors.Join(err, conn.Close())
 		}

@@ -131,7 +131,7 @@ func (t *target) openToWrite(ctx context.Context) error {
 	}
 	// What was committed survives a killed process in any case; after a loss of power the last batches may be missing, mark and all, and are done again.
 	// A statement's own journal (each result has one, for its triggers) in memory is a small piece; beside a file it is 64 KiB taken from the system and given back.
-	for _, set := range []string{"PRAGMA synchronous = NORMAL", "PRAGMA wal_autocheckpoint = 8000", "PRAGMA temp_store = MEMORY"} {
+	for _, set := range []string{"PRAGMA synchronous = NORMAL", "PRAGMA wal_autocheckpoint = 8000", "PRAGMA temp_store = MEMORY", "PRAGMA cache_size = -32768"} {
 		if err := t.writing.Run(set); err != nil {
 			return err
 		}
