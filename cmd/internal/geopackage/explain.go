@@ -7,8 +7,8 @@ import (
 	"zombiezen.com/go/sqlite"
 )
 
-// Busy is the error of a statement that waited in vain for another program's lock on the file.
-var Busy = errors.New("the file is locked")
+// ErrBusy is the error of a statement that waited in vain for another program's lock on the file.
+var ErrBusy = errors.New("the file is locked")
 
 // Explain puts an error of SQLite into words that say what to do about it. Other errors, and nil, come back as they are.
 func Explain(path string, err error) error {
@@ -46,8 +46,8 @@ type explained struct {
 func (e *explained) Error() string { return e.text }
 func (e *explained) Unwrap() error { return e.cause }
 
-// Is makes errors.Is(err, Busy) true for a lock.
+// Is makes errors.Is(err, ErrBusy) true for a lock.
 func (e *explained) Is(target error) bool {
 	code := sqlite.ErrCode(e.cause).ToPrimary()
-	return target == Busy && (code == sqlite.ResultBusy || code == sqlite.ResultLocked)
+	return target == ErrBusy && (code == sqlite.ResultBusy || code == sqlite.ResultLocked)
 }

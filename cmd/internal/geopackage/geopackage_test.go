@@ -213,7 +213,7 @@ func TestALockIsExplained(t *testing.T) {
 	defer f.Close()
 	f.SetBusyTimeout(10 * time.Millisecond)
 	err = f.Within(func() error { return nil })
-	if !errors.Is(err, geopackage.Busy) || !strings.Contains(err.Error(), "desktop GIS") {
+	if !errors.Is(err, geopackage.ErrBusy) || !strings.Contains(err.Error(), "desktop GIS") {
 		t.Errorf("a lock is told as %v", err)
 	}
 }

@@ -13,7 +13,7 @@ import (
 	"zombiezen.com/go/sqlite/sqlitex"
 )
 
-// Patience is how long a statement waits for a lock that another program holds before it fails with Busy.
+// Patience is how long a statement waits for a lock that another program holds before it fails with ErrBusy.
 const Patience = 20 * time.Second
 
 // Application ids of the header: "GPKG" since 1.2 (requirement 2), "GP10" and "GP11" before.
