@@ -20,7 +20,7 @@ const (
   leat version    say what this binary is
   leat help       this text
 
-Exit codes: 0 done, 1 failed, 2 misused.
+Exit codes: 0 done, 1 failed, 2 misused; of register also 3: done, and some rows have problems.
 `
 )
 

@@ -71,13 +71,14 @@ func progressLine(p *run.Progress, took time.Duration) string {
 		fmt.Fprintf(&b, ", %v left", time.Duration(float64(left)/rate*float64(time.Second)).Round(time.Second))
 	}
 	fmt.Fprintf(&b, ", %d unchanged, %d bad", p.Counts.Unchanged, p.Counts.Bad)
-	if codes := run.ProblemsByCode(p.Codes); len(codes) > 0 {
+	codes := p.Kinds.Codes()
+	if most := codes.Most(); len(most) > 0 {
 		b.WriteString(" (")
-		for i, code := range codes[:min(len(codes), 3)] {
+		for i, kind := range most[:min(len(most), 3)] {
 			if i > 0 {
 				b.WriteString(", ")
 			}
-			fmt.Fprintf(&b, "%s %d", code, p.Codes[code])
+			fmt.Fprintf(&b, "%s %d", kind.Code, codes[kind])
 		}
 		b.WriteByte(')')
 	}
@@ -140,8 +141,8 @@ func (c *command) summarize(file *mapping.File, r *run.Report) {
 			fmt.Fprintf(c.stdout, "%d problems in %s\n", n.Problems, problemsName(file))
 		}
 	}
-	for _, code := range run.ProblemsByCode(r.Codes) {
-		fmt.Fprintf(c.stdout, "  %-24s %d\n", code, r.Codes[code])
+	for _, kind := range r.Kinds.Most() {
+		fmt.Fprintf(c.stdout, "  %8d  %-20s %s\n", r.Kinds[kind], kind.Code, kind.Columns)
 	}
 	if len(r.Worst) > 0 {
 		fmt.Fprintln(c.stdout, "worst of the assets computed:")

@@ -3,7 +3,6 @@ package run
 import (
 	"context"
 	"testing"
-	"time"
 
 	"leat/cmd/internal/register/mapping"
 	"leat/cmd/internal/register/row"
@@ -21,7 +20,7 @@ func benchmarkWorker(b *testing.B, mode mode, stored bool) {
 		b.Fatal(err)
 	}
 	const rows = 5000
-	w, t, id := newWorker(job.plan, mode), &task{skip: true}, newIdentity("r", time.Now())
+	w, t, id := newWorker(job.plan, mode), &task{skip: true}, newIdentity("r")
 	t.page.Reset(len(job.plan.mapping.Columns), 0)
 	all := drains(rows)
 	for i := range all {

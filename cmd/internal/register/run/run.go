@@ -33,9 +33,9 @@ type Options struct {
 // A Progress is where a run stands.
 type Progress struct {
 	Counts   store.Counts
-	Total    int64            // rows to read; -1 where unknown
-	Codes    map[string]int64 // problems by code
-	Problems []store.Problem  // of the last batch
+	Total    int64           // rows to read; -1 where unknown
+	Kinds    Kinds           // of the problems so far
+	Problems []store.Problem // of the last batch
 }
 
 // A Report is the account of a run or of a check.
@@ -43,8 +43,8 @@ type Report struct {
 	Run     string
 	Resumed bool
 	Counts  store.Counts // of this process, a resumed run's earlier part not included
-	Codes   map[string]int64
-	Worst   []Worst // of the assets computed by this process
+	Kinds   Kinds        // of its problems
+	Worst   []Worst      // of the assets computed by this process
 	Took    time.Duration
 }
 
@@ -135,7 +135,7 @@ func (j *Job) all(ctx context.Context, target store.Target, mode mode) (*Report,
 			j.options.Begun(state)
 		}
 	}
-	report := &Report{Run: state.Run, Resumed: state.Resumed, Codes: map[string]int64{}}
+	report := &Report{Run: state.Run, Resumed: state.Resumed, Kinds: Kinds{}}
 	total := int64(-1)
 	query := j.Query()
 	query.After = state.Mark
@@ -148,7 +148,7 @@ func (j *Job) all(ctx context.Context, target store.Target, mode mode) (*Report,
 	var top worst
 	p := &pipeline{
 		plan: j.plan, source: j.source, target: target, mode: mode, query: *query, rows: j.options.Rows,
-		skip: !state.Fresh, mark: true, id: newIdentity(state.Run, began),
+		skip: !state.Fresh, mark: true, id: newIdentity(state.Run),
 	}
 	for range j.options.Workers {
 		p.workers = append(p.workers, newWorker(j.plan, mode))
@@ -158,12 +158,10 @@ func (j *Job) all(ctx context.Context, target store.Target, mode mode) (*Report,
 	}
 	p.written = func(t *task) {
 		report.Counts.Add(t.batch.Counts)
-		for code, n := range t.codes {
-			report.Codes[code] += n
-		}
+		report.Kinds.add(t.kinds)
 		top.merge(&t.worst)
 		if j.options.Progress != nil {
-			j.options.Progress(&Progress{Counts: report.Counts, Total: total, Codes: report.Codes, Problems: t.batch.Problems})
+			j.options.Progress(&Progress{Counts: report.Counts, Total: total, Kinds: report.Kinds, Problems: t.batch.Problems})
 		}
 	}
 	if err := p.run(ctx); err != nil {
@@ -190,7 +188,7 @@ func (j *Job) all(ctx context.Context, target store.Target, mode mode) (*Report,
 // Processes are for a target that shares its run among processes: each does the stretches that it is given. state is that which the run was begun or joined with.
 func (j *Job) Processes(target store.Target, state store.State, n int) []store.Process {
 	out := make([]store.Process, n)
-	id := newIdentity(state.Run, time.Now())
+	id := newIdentity(state.Run)
 	for i := range out {
 		w, t := newWorker(j.plan, computing), &task{}
 		out[i] = func(ctx context.Context, after, until row.Value, batch *store.Batch) error {

@@ -6,7 +6,6 @@ import (
 	"encoding/binary"
 	"encoding/hex"
 	"fmt"
-	"slices"
 	"strings"
 	"time"
 
@@ -27,10 +26,10 @@ const (
 )
 
 // An identity is what every result of a run bears.
-type identity struct{ run, version, at row.Value }
+type identity struct{ run, version row.Value }
 
-func newIdentity(run string, at time.Time) *identity {
-	return &identity{row.OfString(run), row.OfString(compute.EngineVersion), row.OfTime(at)}
+func newIdentity(run string) *identity {
+	return &identity{row.OfString(run), row.OfString(compute.EngineVersion)}
 }
 
 // A worker takes pages of rows through the mapping and the solver. It belongs to one goroutine at a time.
@@ -62,7 +61,8 @@ type task struct {
 	cells  []row.Value
 	keys   []row.Value
 	memory row.Memory
-	codes  map[string]int64 // problems by code, for progress
+	at     row.Value // when it is computed
+	kinds  Kinds
 
 	err  error
 	done chan struct{}
@@ -88,7 +88,7 @@ func (t *task) stretch(keys row.Kind, ordered bool, after, until row.Value) {
 	}
 	t.known.reset()
 	t.worst.reset()
-	clear(t.codes)
+	clear(t.kinds)
 }
 
 // work fills the task's batch from its page.
@@ -100,6 +100,7 @@ func (w *worker) work(ctx context.Context, t *task, id *identity) error {
 		t.cells = make([]row.Value, 0, rows*width)
 	}
 	faults := t.faults
+	t.at = row.OfTime(time.Now())
 	checkpoint := func() error { return context.Cause(ctx) }
 	w.options.Begin = func() func() error { return checkpoint }
 	for i := range rows {
@@ -239,7 +240,7 @@ func (w *worker) result(t *task, values []row.Value, solved *operation.Solved, f
 	if len(w.mapping.Copied) > 0 {
 		t.cells = append(t.cells, row.OfInt(copied))
 	}
-	t.cells = append(t.cells, id.version, id.at)
+	t.cells = append(t.cells, id.version, t.at)
 	t.batch.Results = append(t.batch.Results, t.cells[start:len(t.cells):len(t.cells)])
 	t.worst.consider(w.plan, values[0], &answer)
 }
@@ -261,23 +262,5 @@ func (w *worker) refused(t *task, i int, problem *wire.Problem) {
 func (w *worker) bad(t *task, i int, p store.Problem) {
 	p.Asset, p.Line = t.page.Row(i)[0], t.page.Line(i)
 	t.batch.Problems = append(t.batch.Problems, p)
-	if t.codes == nil {
-		t.codes = map[string]int64{}
-	}
-	t.codes[p.Code]++
-}
-
-// ProblemsByCode lists codes with the most problems first.
-func ProblemsByCode(codes map[string]int64) []string {
-	var out []string
-	for code := range codes {
-		out = append(out, code)
-	}
-	slices.SortFunc(out, func(a, b string) int {
-		if codes[a] != codes[b] {
-			return int(codes[b] - codes[a])
-		}
-		return strings.Compare(a, b)
-	})
-	return out
+	t.kinds.count(&p)
 }
