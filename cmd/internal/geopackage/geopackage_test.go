@@ -10,6 +10,7 @@ import (
 	"path/filepath"
 	"slices"
 	"strings"
+	"sync"
 	"testing"
 	"time"
 
@@ -21,10 +22,26 @@ import (
 
 var noon = time.Date(2026, 6, 1, 12, 0, 0, 0, time.UTC)
 
-// layer makes a file with a layer of three lines, one of them empty and one null, and a table.
+// layer makes a file of its own with the layer of makeLayer.
 func layer(t *testing.T) (path string) {
 	t.Helper()
+	made.Do(func() { content, _ = os.ReadFile(makeLayer(t)) })
 	path = filepath.Join(t.TempDir(), "small.gpkg")
+	if err := os.WriteFile(path, content, 0o600); err != nil || len(content) == 0 {
+		t.Fatal(err, len(content))
+	}
+	return path
+}
+
+var (
+	made    sync.Once
+	content []byte
+)
+
+// makeLayer makes a file with a layer of three lines, the last without a geometry, their index, description and style.
+func makeLayer(t *testing.T) (path string) {
+	t.Helper()
+	path = filepath.Join(t.TempDir(), "made.gpkg")
 	f, err := geopackage.Create(t.Context(), path)
 	if err != nil {
 		t.Fatal(err)
