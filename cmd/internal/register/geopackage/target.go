@@ -203,7 +203,8 @@ func (t *target) Finish(ctx context.Context, summary *store.Summary) error {
 	if err != nil {
 		return err
 	}
-	return t.closeReading()
+	// Here already, since a command that is killed while it prints its summary never comes to Close.
+	return t.Close()
 }
 
 func (t *target) closeReading() error {
@@ -223,10 +224,12 @@ func (t *target) Close() error {
 	}
 	f := t.writing
 	t.writing = nil
-	if t.journal != "" && t.journal != "wal" {
-		f.SetInterrupt(nil)
-		f.SetBusyTimeout(time.Second)
-		_ = f.Run("PRAGMA journal_mode = " + t.journal) // one of SQLite's own words; refused while others have the file open
+	for _, mode := range []string{"delete", "truncate", "persist"} { // SQLite's own words; what a table says is never part of a statement
+		if t.journal == mode {
+			f.SetInterrupt(nil)
+			f.SetBusyTimeout(time.Second)
+			_ = f.Run("PRAGMA journal_mode = " + mode) // refused while others have the file open
+		}
 	}
 	return errors.Join(err, f.Close())
 }
