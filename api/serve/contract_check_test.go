@@ -11,6 +11,7 @@ import (
 	"mime"
 	"net/http"
 	"net/url"
+	"path"
 	"regexp"
 	"slices"
 	"strconv"
@@ -188,10 +189,15 @@ func (c *Contract) Answer(method, target string, status int, header http.Header,
 	var value any
 	switch kind {
 	case "application/json", "application/geo+json":
-		value, err = decode(body)
+		if value, err = decode(body); err == nil && kind == "application/json" {
+			value = unprefixed(value, address.Query().Get("prefix"))
+		}
 	case "application/yaml":
 		err = yaml.Unmarshal(body, &value)
 	case "application/x-ndjson":
+		if address.Query().Get("flat") == "true" {
+			return c.rows(place, path.Base(route), address.Query().Get("prefix"), body)
+		}
 		return c.stream(place, body)
 	default:
 		value = string(body)
@@ -238,6 +244,61 @@ func faults(problem map[string]any) error {
 		if places := []bool{pointer, parameter, column}; len(slices.DeleteFunc(places, func(has bool) bool { return !has })) != 1 {
 			return fmt.Errorf("errors/%d has pointer %t, parameter %t, column %t: want one of them", i, pointer, parameter, column)
 		}
+	}
+	return nil
+}
+
+// unprefixed returns rows with the names that the contract has: those that bear a prefix, without it.
+func unprefixed(value any, prefix string) any {
+	if prefix == "" {
+		return value
+	}
+	switch value := value.(type) {
+	case []any:
+		for i := range value {
+			value[i] = unprefixed(value[i], prefix)
+		}
+	case map[string]any:
+		out := map[string]any{}
+		for name, member := range value {
+			if rest, found := strings.CutPrefix(name, prefix); found {
+				out[rest] = member
+			}
+		}
+		return out
+	}
+	return value
+}
+
+// rows judges a bulk answer of flat rows: every line by the schema of the operation's, the end line's counts and hash.
+func (c *Contract) rows(place []string, operation, prefix string, body []byte) error {
+	end := slices.Concat(place, []string{"contentSchema", "oneOf", "1"})
+	lines := bytes.SplitAfter(bytes.TrimSuffix(body, []byte("\n")), []byte("\n"))
+	last := lines[len(lines)-1]
+	problems := 0
+	for _, text := range lines[:len(lines)-1] {
+		value, err := decode(text)
+		if err != nil {
+			return fmt.Errorf("%s: %w", text, err)
+		}
+		value = unprefixed(value, prefix)
+		if err := c.Schema(strings.ToUpper(operation[:1])+operation[1:]+"Row", value); err != nil {
+			return fmt.Errorf("%s: %w", text, err)
+		}
+		if value.(map[string]any)["problem"] != nil {
+			problems++
+		}
+	}
+	value, err := decode(last)
+	if err != nil {
+		return fmt.Errorf("%s: %w", last, err)
+	}
+	if err := c.judge(value, end...); err != nil {
+		return fmt.Errorf("%s: %w", last, err)
+	}
+	sum := sha256.Sum256(body[:len(body)-len(last)-1])
+	if object := value.(map[string]any); object["lines"] != float64(len(lines)-1) || object["problems"] != float64(problems) || object["sha256"] != hex.EncodeToString(sum[:]) {
+		return fmt.Errorf("end line %s after %d rows, %d problems", last, len(lines)-1, problems)
 	}
 	return nil
 }
