@@ -157,6 +157,39 @@ func TestRowsComeBackWhole(t *testing.T) {
 	}
 }
 
+// What PostgreSQL writes for what is not there, or is no number, in rows as JSON and as CSV, is absent or refused with advice (its documentation, sections 8.1.3,
+// 8.6 and COPY: NaN as "NaN" in JSON, booleans as t and f and nulls as empty or \N in text).
+func TestRowsOfPostgreSQL(t *testing.T) {
+	const good = `"section_kind":"egg","section_height":1,"roughness_manning":0.013,"bed_slope":0.01`
+	rows := []string{
+		`{"id":1,"units":null,"section_inverted":true,` + good + `,"discharge":0.2,"depth":null}`,
+		`{"id":2,` + good + `,"discharge":"NaN"}`,
+		`{"id":3,"section_inverted":"t",` + good + `,"discharge":0.2}`,
+		`{"id":4,` + good + `,"discharge":"Infinity"}`,
+	}
+	table := "id,section_kind,section_height,section_inverted,roughness_manning,bed_slope,discharge,depth\n" +
+		"1,egg,1,true,0.013,0.01,0.2,\n2,egg,1,,0.013,0.01,NaN,\n3,egg,1,t,0.013,0.01,0.2,\n4,egg,1,,0.013,0.01,\\N,\n"
+	for _, c := range []struct {
+		choice Choice
+		body   string
+		says   []string
+	}{
+		{Choice{In: JSONArray, Out: JSONArray, Flat: true}, "[" + strings.Join(rows, ",") + "]", []string{"discharge: This must be a number, not a string. Leave an unknown number out", "section_inverted: This must be true or false, not a string. Write true", "discharge: This must be a number, not a string. Leave an unknown number out"}},
+		{Choice{In: CSV, Out: JSONArray, Flat: true}, table, []string{`discharge: This must be a number, not \"NaN\". Leave the cell empty`, `section_inverted: This must be true or false, not \"t\". PostgreSQL writes t and f unless the column is cast to text`, `discharge: This must be a number, not \"\\\\N\". Leave the cell empty`}},
+	} {
+		text, s := pump(t, newBulk(t, &operation.Depths, operation.Options{}, c.choice, 1<<16), strings.NewReader(c.body))
+		got := told(t, JSONArray, text)
+		if s.Lines != 4 || s.Problems != 3 || got[0]["problem"] != "null" || got[0]["normal_depth"] == "null" {
+			t.Fatalf("%+v\n%s", s, text)
+		}
+		for i, says := range c.says {
+			if !strings.Contains(got[i+1]["problem"], says) {
+				t.Errorf("row %d: %s, want %s", i+2, got[i+1]["problem"], says)
+			}
+		}
+	}
+}
+
 // What without a prefix is refused keeps its value, and a problem that says which it is and what to do.
 func TestForeignPropertiesAreRefused(t *testing.T) {
 	body := `{"type":"FeatureCollection","features":[

@@ -174,6 +174,17 @@ func stringForNumberAdvice(raw jsontext.Value) string {
 	return ""
 }
 
+// stringForTruthAdvice says what to do about a string that stands where true or false is wanted.
+func stringForTruthAdvice(raw jsontext.Value) string {
+	switch strings.ToLower(strings.TrimSpace(string(raw[1 : len(raw)-1]))) {
+	case "t", "true", "1", "yes":
+		return " Write true, without quotes."
+	case "f", "false", "0", "no":
+		return " Write false, without quotes."
+	}
+	return ""
+}
+
 // stringForListAdvice says what to do about a string that stands where a list is wanted.
 func stringForListAdvice(raw jsontext.Value) string {
 	if strings.HasPrefix(strings.TrimSpace(string(raw[1:len(raw)-1])), "[") {

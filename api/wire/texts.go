@@ -28,6 +28,8 @@ func (w *walk) wrongType(wanted string) {
 			detail += stringForListAdvice(raw)
 		case strings.HasSuffix(wanted, "number"):
 			detail += stringForNumberAdvice(raw)
+		case wanted == "true or false":
+			detail += stringForTruthAdvice(raw)
 		}
 		if kind == 'n' {
 			detail = "This must be " + wanted + ": null stands for an absent member, but a list has no absent items."
