@@ -54,7 +54,7 @@ func TestExitCodes(t *testing.T) {
 		{"register --help", nil, []string{"register", "--help"}, 0, []string{"leat register check MAPPING", "-dry-run", "Exit codes"}, nil},
 		{"help register", nil, []string{"help", "register"}, 0, []string{"leat register work MAPPING"}, nil},
 		{"register nothing", nil, []string{"register"}, 2, nil, []string{"say check, run, work or demo"}},
-		{"register of no file", nil, []string{"register", "run", "/nowhere/at/all.yaml"}, 1, nil, []string{"/nowhere/at/all.yaml"}},
+		{"register of no file", nil, []string{"register", "run", "/nowhere/at/all.yaml"}, 2, nil, []string{"/nowhere/at/all.yaml"}},
 		{"register with a password", nil, []string{"register", "run", "--password", "x", "m.yaml"}, 2, nil, []string{"-password; --help lists the flags"}},
 		{"all mistakes", []string{"LEAT_POINTS=x", "LEAT_TYPO=1"}, []string{"serve", "--listen", "x"}, 2, nil, []string{"--listen", "LEAT_POINTS", "LEAT_TYPO"}},
 		{"no spool", nil, []string{"serve", "--spool-dir", "/nowhere/at/all"}, 1, nil, []string{"--spool-dir", "/nowhere/at/all"}},

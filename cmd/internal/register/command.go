@@ -77,7 +77,7 @@ func Run(ctx context.Context, arguments []string, stdout, stderr io.Writer) Outc
 		err = errors.New("stopped before the end; start it again and it goes on")
 	}
 	fmt.Fprintf(stderr, "leat register %s: %v\n", c.name, err)
-	return Failed
+	return outcome
 }
 
 // parse reads the arguments: a verb, then flags and the file in any order.
@@ -153,7 +153,7 @@ func (c *command) judge() error {
 func (c *command) do(ctx context.Context) (Outcome, error) {
 	file, err := mapping.Load(c.mapping)
 	if err != nil {
-		return Failed, err
+		return Misused, err
 	}
 	source, err := openSource(ctx, file)
 	if err != nil {

@@ -241,7 +241,7 @@ func TestArguments(t *testing.T) {
 	if outcome, out, _ := command(t, "--help"); outcome != register.Done || !strings.Contains(out, "leat register check MAPPING") || !strings.Contains(out, "Exit codes") {
 		t.Errorf("%v %s", outcome, out)
 	}
-	if outcome, _, stderr := command(t, "run", "/nowhere/at/all.yaml"); outcome != register.Failed || !strings.Contains(stderr, "/nowhere/at/all.yaml") {
+	if outcome, _, stderr := command(t, "run", "/nowhere/at/all.yaml"); outcome != register.Misused || !strings.Contains(stderr, "/nowhere/at/all.yaml") {
 		t.Errorf("%v %s", outcome, stderr)
 	}
 }

@@ -64,7 +64,6 @@ type task struct {
 	at     row.Value // when it is computed
 	kinds  Kinds
 
-	err  error
 	done chan struct{}
 }
 
