@@ -2,7 +2,7 @@
 --
 --   psql -v ON_ERROR_STOP=1 -f plpython.sql
 --
--- The server itself calls the service, at the address in leat.url (PGOPTIONS=-cleat.url=http://…). A batch is one call; a thousand assets take a few milliseconds.
+-- The server itself calls the service, at the address in leat.url (PGOPTIONS=-cleat.url=http://…). A batch of a thousand assets is one call, far below any time limit.
 \ir requests.sql
 create extension if not exists plpython3u;
 
