@@ -148,6 +148,9 @@ func (t *target) key(text string) (row.Value, error) {
 
 func (t *target) Finish(ctx context.Context, summary *store.Summary) error {
 	sets := countColumns(func(i int, quoted string) string { return quoted + " = $" + strconv.Itoa(i+4) })
+	if err := t.indexGeometries(ctx); err != nil {
+		return err
+	}
 	return again(ctx, func() error {
 		_, err := t.pool.Exec(ctx, "update "+t.runs.quoted()+" set finished_at = $1, "+sets+" where run = $2 and owner = $3",
 			append([]any{summary.Finished, t.run, t.owner}, countValues(&summary.Counts)...)...)

@@ -115,6 +115,13 @@ from base b join pg_type t on t.oid = b.type where t.typtype <> 'd' order by b.a
 	if err != nil {
 		return nil, fmt.Errorf("reading the columns of %s: %w", t, err)
 	}
+	for i := range columns {
+		if columns[i].Spatial != nil {
+			if err := describeSystem(ctx, pool, &columns[i].Spatial.System); err != nil {
+				return nil, err
+			}
+		}
+	}
 	return columns, nil
 }
 
@@ -151,7 +158,7 @@ func describe(name, declared string, oid uint32, typeName string, modifier int32
 		c.order, c.parameter = quoted, "$%d::text::uuid" // sixteen bytes are ordered as their digits are
 	default:
 		if typeName == "geometry" || typeName == "geography" {
-			c.Kind, c.decode, c.Geometry = row.Bytes, decodeBytes, "ewkb"
+			c.Kind, c.decode, c.Geometry, c.Spatial = row.Bytes, decodeBytes, "ewkb", spatialOf(declared)
 			break
 		}
 		c.Kind, c.decode, c.expression = row.Text, decodeText, quoted+"::text"

@@ -49,7 +49,8 @@ func (t *target) typeOf(column *store.ResultColumn) string {
 	}
 	plain := quote(t.postGIS, "geometry")
 	spatial := column.Spatial
-	if spatial == nil || spatial.Z > 1 || spatial.M > 1 || !slices.Contains(geometryTypes, spatial.Type) || spatial.System.Code < 0 || spatial.System.Code > 999999 {
+	if spatial == nil || spatial.Z > 1 || spatial.M > 1 || !slices.Contains(geometryTypes, spatial.Type) || spatial.System.Code < 0 || spatial.System.Code > 999999 ||
+		column.Geometry == "geopackage" && spatial.System.ID != spatial.System.Code { // the geometries bear the number of their own file
 		return plain
 	}
 	name := spatial.Type

@@ -291,6 +291,9 @@ func TestSourceGeometry(t *testing.T) {
 	source := openSource(t, store.SourceSpec{Table: "assets", Key: "id"})
 	if c := source.Columns()[1]; c.Kind != row.Bytes || c.Geometry != "ewkb" {
 		t.Errorf("%+v", c)
+	} else if c.Spatial == nil || c.Spatial.Type != "LINESTRING" || c.Spatial.Z != 1 || c.Spatial.M != 1 || c.Spatial.System.Organization != "EPSG" || c.Spatial.System.Code != 25832 ||
+		c.Spatial.System.Name != "ETRS89 / UTM zone 32N" || !strings.HasPrefix(c.Spatial.System.Definition, "PROJCS[") {
+		t.Errorf("%+v", c.Spatial)
 	}
 	rows := read(t, source, store.Query{Columns: []string{"id", "line"}}, 10)
 	hex := strings.ToLower(query(t, address, "select line::text from assets where id = 1")[0])

@@ -254,6 +254,9 @@ func (t *target) watch(ctx context.Context, progress func(store.Counts)) (total 
 		if waiting == 0 {
 			ended := failed > 0 // the run stays open: begun again, it tries those batches again
 			if !ended {
+				if err := t.indexGeometries(ctx); err != nil {
+					return total, failed, err
+				}
 				err = again(ctx, func() error {
 					return t.inTransaction(ctx, func(tx pgx.Tx) (err error) { ended, err = t.end(ctx, tx); return err })
 				})
