@@ -209,7 +209,7 @@ func told(t testing.TB, kind Kind, text string) (rows []map[string]string) {
 // Every way in which requests may come goes with every way in which answers may go, and each answer is that of the unary
 // operation, number by number as its literal.
 func TestEveryPairGivesTheUnaryAnswer(t *testing.T) {
-	const n = 400
+	const n = 1000 / share
 	rows := registerRows(t, n)
 	all := bodies(t, rows, "")
 	unary := make([]map[string]string, n) // by flat name; nil for a problem

@@ -212,7 +212,7 @@ func TestHeldAnswersEndInAProblem(t *testing.T) {
 // Ten thousand rows of which one in a hundred is bad: each answer, in each form, over a real socket, is that of the unary operation, and each bad
 // row has its problem with its column.
 func TestTenThousandRowsAreTheUnaryAnswers(t *testing.T) {
-	const n = 10_000
+	const n = 10_000 / share
 	text, err := os.ReadFile("../../testdata/ostermere.ndjson")
 	if err != nil {
 		t.Fatal(err)
