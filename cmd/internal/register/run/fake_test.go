@@ -1,6 +1,7 @@
 package run
 
 import (
+	"cmp"
 	"context"
 	"encoding/hex"
 	"errors"
@@ -13,15 +14,16 @@ import (
 	"leat/cmd/internal/register/store"
 )
 
-// A memorySource is an ordered register in memory: rows by a whole number.
+// A memorySource is a register in memory: rows by a whole number. As a file it has them in another order than that of their keys.
 type memorySource struct {
 	columns []row.Column
 	rows    map[int64][]row.Value
+	file    bool
 }
 
 func (s *memorySource) Columns() []row.Column      { return s.columns }
 func (s *memorySource) ChildColumns() []row.Column { return nil }
-func (s *memorySource) Ordered() bool              { return true }
+func (s *memorySource) Ordered() bool              { return !s.file }
 func (s *memorySource) Close() error               { return nil }
 func (s *memorySource) CheckKey(context.Context, []store.Condition) error {
 	return nil
@@ -29,6 +31,16 @@ func (s *memorySource) CheckKey(context.Context, []store.Condition) error {
 
 func (s *memorySource) keys(q *store.Query) []int64 {
 	keys := slices.Sorted(maps.Keys(s.rows))
+	if s.file {
+		slices.SortFunc(keys, func(a, b int64) int { return cmp.Compare(a*7919%3001, b*7919%3001) })
+		if at := slices.Index(keys, q.Until.Int()); at >= 0 && !q.Until.IsNull() {
+			keys = keys[:at+1]
+		}
+		if at := slices.Index(keys, q.After.Int()); at >= 0 && !q.After.IsNull() {
+			keys = keys[at+1:]
+		}
+		return keys
+	}
 	return slices.DeleteFunc(keys, func(k int64) bool {
 		return !q.After.IsNull() && k <= q.After.Int() || !q.Until.IsNull() && k > q.Until.Int()
 	})
@@ -102,11 +114,19 @@ func (t *memoryTarget) Begin(_ context.Context, layout *store.Layout, start stor
 	return store.State{Run: t.run, Fresh: t.fresh}, nil
 }
 
+// covers reports whether a key lies in a stretch.
+func covers(s *store.Stretch, key int64) bool {
+	if !s.Ordered {
+		return slices.ContainsFunc(s.Keys, func(k row.Value) bool { return k.Int() == key })
+	}
+	return (s.After.IsNull() || key > s.After.Int()) && (s.Until.IsNull() || key <= s.Until.Int())
+}
+
 func (t *memoryTarget) Stored(_ context.Context, s *store.Stretch, found func(row.Value, store.Stored)) error {
 	t.mutex.Lock()
 	defer t.mutex.Unlock()
 	for key, cells := range t.results {
-		if !s.After.IsNull() && key <= s.After.Int() || !s.Until.IsNull() && key > s.Until.Int() {
+		if !covers(s, key) {
 			continue
 		}
 		var stored store.Stored
@@ -134,7 +154,7 @@ func (t *memoryTarget) Commit(_ context.Context, b *store.Batch) error {
 		delete(t.results, key.Int())
 	}
 	for key := range t.problems {
-		if (b.Stretch.After.IsNull() || key > b.Stretch.After.Int()) && (b.Stretch.Until.IsNull() || key <= b.Stretch.Until.Int()) {
+		if covers(&b.Stretch, key) {
 			delete(t.problems, key)
 		}
 	}
