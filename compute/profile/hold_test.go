@@ -107,3 +107,32 @@ func TestLevelBenchIsALimit(t *testing.T) {
 		}
 	}
 }
+
+// A joint or a boundary may ask for an energy that no depth has: then the depth stands at the break.
+func TestEnergyInAGap(t *testing.T) {
+	c := terraced(t, 0, 0.002, 0.03)
+	s := sideOf(&c, 2)
+	below, above := s.energy(1), s.energy(justAbove(1))
+	if !(above > below*(1+1e-6)) {
+		t.Fatalf("no gap: %v below and %v above the bench", below, above)
+	}
+	for _, row := range []struct{ share, from, to float64 }{{-0.01, 0.9, 1 - 1e-9}, {0.01, 1, 1}, {0.5, 1, 1}, {0.99, 1, 1}, {1.01, 1 + 1e-9, 1.1}} {
+		depth, ok, err := s.subcritical(below+row.share*(above-below), 0, 0)
+		if err != nil || !ok || !(depth >= row.from && depth <= row.to) {
+			t.Errorf("share %g of the gap: depth %v, %v, %v; want %g to %g", row.share, depth, ok, err, row.from, row.to)
+		}
+	}
+	// Supercritical flow has such a gap where alpha falls as the bench is covered: the first zone is the rougher one.
+	c = terraced(t, 0, 0.002, 0.06)
+	s = sideOf(&c, 12)
+	below, above = s.energy(1), s.energy(justAbove(1))
+	if !(above < below*(1-1e-6)) {
+		t.Fatalf("no gap: %v below and %v above the bench", below, above)
+	}
+	for _, row := range []struct{ share, from, to float64 }{{-0.01, 0.9, 1 - 1e-9}, {0.01, 1, 1}, {0.99, 1, 1}, {1.01, 1 + 1e-9, 1.1}} {
+		depth, ok := s.supercritical(below+row.share*(above-below), 0, 0, 0)
+		if !ok || !(depth >= row.from && depth <= row.to) {
+			t.Errorf("supercritical, share %g of the gap: depth %v, %v; want %g to %g", row.share, depth, ok, row.from, row.to)
+		}
+	}
+}

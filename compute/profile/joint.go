@@ -44,13 +44,19 @@ func (s *side) subcritical(want, share, other float64) (depth float64, ok bool, 
 	} else if height := s.channel.Section.Height(); !math.IsInf(height, 1) && excess(s.channel.Geometry(height)) < 0 {
 		return 0, false, aboveLastRow
 	}
+	last := flow.Branch{}
 	s.motion.EnergyBranches(func(b flow.Branch) bool {
 		if !b.Rising {
+			last = b
 			return true
+		}
+		if last.Rising && s.inGap(b.Lo, excess, 1) {
+			depth, ok = b.Lo, true
 		}
 		if y, found := s.highest(b, excess); found {
 			depth, ok = y, true // branches come from the bed upward: the last is the deepest
 		}
+		last = b
 		return true
 	})
 	return depth, ok, nil
@@ -70,7 +76,13 @@ func (s *side) supercritical(want, share, other, entry float64) (depth float64, 
 		v := s.motion.VelocityHead(g)
 		return g.Depth*s.channel.Cosine() + v + share*math.Abs(v-other) + entry*v - want
 	}
+	last := flow.Branch{Rising: true}
 	s.motion.EnergyBranches(func(b flow.Branch) bool {
+		if !b.Rising && !last.Rising && s.inGap(b.Lo, excess, -1) {
+			depth, ok = b.Lo, true
+			return false
+		}
+		last = b
 		if b.Rising {
 			return true
 		}
@@ -78,6 +90,12 @@ func (s *side) supercritical(want, share, other, entry float64) (depth float64, 
 		return !ok
 	})
 	return depth, ok
+}
+
+// inGap reports whether a function of the energy passes zero at a break, from below it to above, up (sign 1) or down (sign -1): the energy asked for is one
+// of those that no depth has, and the depth stands at the break.
+func (s *side) inGap(b float64, f func(section.Geometry) float64, sign float64) bool {
+	return sign*f(s.channel.Section.At(b)) < 0 && sign*f(s.channel.Section.At(justAbove(b))) > 0
 }
 
 // subcriticalAtForce returns the deepest depth on a rising branch of the specific force at which the force is a value.
