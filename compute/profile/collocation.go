@@ -21,6 +21,7 @@ type collocation struct {
 	overX       floor   // the tails of the panels over the chainage refused at this place
 	overY       floor   // and of those over the depth
 	slope       float64 // ddepth/dx to begin with, where the equation cannot tell it: at a control
+	atPassage   float64 // the tail that is enough there
 }
 
 // integrate[j][k] is the integral from -1 to the j-th node of the polynomial that is 1 at the k-th node and 0 at the others.
@@ -39,8 +40,8 @@ var integrate = func() (m [order][order]float64) {
 // settled is the tail of a series below which a panel of a varying stretch counts as resolved.
 const settled = 1e-12
 
-// settledAtPassage is that of the first panel from a passage through critical depth.
-const settledAtPassage = 1e-10
+// settledAtPassage are those of the first panel from a passage through critical depth, each one only if there is no other way.
+var settledAtPassage = [3]float64{1e-10, 1e-9, 1e-8}
 
 func (v *varying) sweep(x, depth, direction float64, subcritical bool) (*trace, error) {
 	c := &collocation{v: v, direction: direction, subcritical: subcritical, x: x, y: depth, slope: math.NaN(), trace: v.memory.trace(direction == upstream)}
@@ -147,7 +148,11 @@ func (c *collocation) run() error {
 			width = min(width, 2*c.width)
 		}
 		if !c.advance(width) {
-			if n, d := c.ahead(); len(c.trace.panels) > 0 && math.Abs(d) <= 1e-5*v.cosine {
+			n, d := c.ahead()
+			if math.IsInf(n, 0) {
+				return noConveyance
+			}
+			if len(c.trace.panels) > 0 && math.Abs(d) <= 1e-5*v.cosine {
 				// So near to critical depth, in a section that turns within a hair of depth, no panel can be had.
 				if s := v.side(c.x); c.toNextBranch(c.y, c.rise(n) > 0, s.energy(c.y)) {
 					continue
@@ -251,6 +256,19 @@ func (c *collocation) toNextBranch(from float64, up bool, energy float64) bool {
 
 // advance adds the longest panel of at most a width that can be had, over the chainage or, near critical depth, over the depth.
 func (c *collocation) advance(width float64) bool {
+	if math.IsNaN(c.slope) {
+		return c.onward(width)
+	}
+	for _, c.atPassage = range settledAtPassage {
+		if c.onward(width) {
+			return true
+		}
+	}
+	return false
+}
+
+// onward adds the longest panel of at most a width that meets its tolerance.
+func (c *collocation) onward(width float64) bool {
 	v := c.v
 	n, d := c.ahead()
 	c.overX, c.overY = newFloor(), newFloor()
@@ -300,7 +318,10 @@ func (c *collocation) atEnd() bool {
 	}
 	// Where the numerator vanishes too, as flow turns from supercritical to subcritical without a jump, it comes nearer only in the last places.
 	if d <= 10*atCritical*c.v.cosine && math.Abs(n) <= 1e-3*atCritical {
-		return true
+		last := &c.trace.panels[len(c.trace.panels)-1]
+		if _, before := c.v.rates(last.x0, last.y0); before*c.sign() >= d {
+			return true
+		}
 	}
 	// Next to a crown the last places of the depth are coarse against F.
 	return shrinks > 0 && d < 0.1*shrinks
@@ -403,7 +424,7 @@ func (c *collocation) overChainage(width float64) (p panel, ok bool) {
 	rise, _ := s.integral(1)
 	tail := (math.Abs(s[order-1]) + math.Abs(s[order-2])) / (math.Abs(rise) + 0.1*c.y)
 	// Next to a passage through critical depth shorter panels are only noisier, since numerator and denominator vanish there together.
-	if !(tail < settled || !math.IsNaN(c.slope) && tail < settledAtPassage || c.overX.reached(tail, noisyOverChainage)) {
+	if !(tail < settled || !math.IsNaN(c.slope) && tail < c.atPassage || c.overX.reached(tail, noisyOverChainage)) {
 		return p, false
 	}
 	y1 := c.y + rise

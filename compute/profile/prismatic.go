@@ -246,6 +246,13 @@ func (s *sweeper) pressure() {
 // along integrates the curve on a branch until the stretch or the branch ends. It reports whether the sweep may go on.
 func (s *sweeper) along(b flow.Branch) (on bool, err error) {
 	p := s.p
+	ahead := s.y
+	if s.rise > 0 {
+		ahead = justAbove(ahead)
+	}
+	if math.IsInf(p.motion.FrictionSlope(p.channel.Section.At(ahead)), 1) {
+		return false, noConveyance // just above a bench, perhaps
+	}
 	stop := b.Hi
 	if s.rise < 0 {
 		stop = b.Lo

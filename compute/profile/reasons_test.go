@@ -82,6 +82,7 @@ func TestReasonsNameTheirMember(t *testing.T) {
 			&Run{Discharge: 1, Reaches: []Reach{{Channel: channel(table, 0.001), Length: 50}}, Downstream: Boundary{Kind: BroadCrested, CrestHeight: 0.9, CrestWidth: 1}}},
 		{"coefficients that disagree, in a reach", "no_jump", "reaches/1/roughness", random(2824)},
 		{"and between stations", "no_jump", "stations/1/roughness", random(5755)},
+		{"a bench too rough for water as shallow as that above it", "no_conveyance", "reaches/1/roughness", random(41116)},
 		{"an energy that is least at a break", "no_critical_depth", "stations/0/section", random(15625)},
 	} {
 		_, err := Solve(row.run)
