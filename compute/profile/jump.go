@@ -77,7 +77,7 @@ func (c *chain) jump(l *leg, t *trace, x float64) {
 	before, after := s.force(up), s.force(down)
 	if math.Abs(after-before) > 1e-6*before {
 		// One of the two depths changes here to another branch of its energy, and the forces pass each other without being equal.
-		c.notes.at("turns_at_break", l.start+x, "Supercritical flow turns subcritical where a depth changes at a break of the section, without the forces being equal.")
+		c.notes.at("turns_at_break", l.start+x, "Supercritical flow turns subcritical where one of the two begins, ends or changes its depth, without the forces being equal.")
 		return
 	}
 	c.turns = append(c.turns, turn{force: before, residual: math.Abs(before - after)})
