@@ -278,6 +278,8 @@ func shearFactors(c *claim) {
 // The source solves for the stability number; at that number the safety is the one it set out from.
 func stoneStability(c *claim) {
 	side, repose := c.given("side_angle")*math.Pi/180, c.given("angle_of_repose")*math.Pi/180
-	safety := func(number float64) float64 { return appraise.StoneStability(number, 1/math.Tan(side), math.Tan(repose), 0) }
+	safety := func(number float64) float64 {
+		return appraise.StoneStability(number, 1/math.Tan(side), math.Tan(repose), 0)
+	}
 	c.want("stability_number", c.crossing(0.01, 1, func(number float64) float64 { return safety(number) - c.given("safety_factor") }))
 }
