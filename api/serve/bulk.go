@@ -130,6 +130,9 @@ func (s *Server) pump(c *gin.Context, control *http.ResponseController, open fun
 			return
 		}
 		e.cut = "internal fault"
+	case errors.Is(err, stream.ErrDeclined):
+		s.refuseLate(c, control, tooLongForProtocol())
+		return
 	case errors.As(err, &refusal) && !c.Writer.Written():
 		s.refuseLate(c, control, refusal.Problem)
 		return

@@ -176,6 +176,24 @@ func TestUnfinishedAnswersAreBrokenOff(t *testing.T) {
 	}
 }
 
+// Over HTTP/1.0, where a break looks like the end, only what is short is answered in a form without an end of its own.
+func TestLongAnswersNeedALaterProtocol(t *testing.T) {
+	r := startReal(t, func(c *Config, _ *Surroundings) { c.MemoryBytes = 64 << 10 })
+	for n, status := range map[int]int{3: 200, 3000: 406} {
+		body := pipes(n)
+		conn := r.dial()
+		fmt.Fprintf(conn, "POST /v1/bulk/depths HTTP/1.0\r\nHost: leat\r\nContent-Type: text/csv\r\nContent-Length: %d\r\n\r\n%s", len(body), body)
+		response, err := http.ReadResponse(bufio.NewReader(conn), nil)
+		if err != nil {
+			t.Fatal(err)
+		}
+		text, err := io.ReadAll(response.Body)
+		if err != nil || response.StatusCode != status || status == 406 && !bytes.Contains(text, []byte("HTTP/1.1")) {
+			t.Errorf("%d rows: %d %v %.300s", n, response.StatusCode, err, text)
+		}
+	}
+}
+
 // A drain or a silent client ends a stream of whose answer nothing is sent by a problem that says so.
 func TestHeldAnswersEndInAProblem(t *testing.T) {
 	for _, reason := range []string{"draining", "request_timeout"} {

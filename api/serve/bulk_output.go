@@ -32,6 +32,9 @@ const (
 // hold is told how long the answer is, where all of it is known before any is sent; it declines one that is not complete.
 func (o *bulkOutput) hold(whole *stream.Summary, size int64) bool {
 	h := o.c.Writer.Header()
+	if whole == nil && !o.c.Request.ProtoAtLeast(1, 1) {
+		return false // a break could not be told from the end
+	}
 	if whole == nil {
 		h["Trailer"] = []string{strings.Join([]string{headerLines, headerProblems, headerHash}, ", ")}
 		o.told = true

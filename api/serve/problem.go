@@ -87,6 +87,11 @@ func unfinished(reason stream.Reason, limit time.Duration) *wire.Problem {
 	return wire.Saturated("The answers found no room to wait in; send the request again after the seconds in Retry-After, in smaller parts or as application/x-ndjson.")
 }
 
+// tooLongForProtocol is the problem of an answer over HTTP/1.0 that is longer than what can be held: that protocol ends long answers as it breaks them off.
+func tooLongForProtocol() *wire.Problem {
+	return wire.NotAcceptable("Over HTTP/1.0 an answer of this length and form could not be told from one that was broken off. Use HTTP/1.1 (of a proxy, towards this service), or accept application/x-ndjson, whose last line says whether it is whole.")
+}
+
 func brokenBody() *wire.Problem {
 	return wire.MalformedJSON(wire.Fault{Code: "incomplete_body", Detail: "The request body could not be read to its end: its length or its chunks are wrong, or the sender stopped."})
 }

@@ -5,6 +5,9 @@ import "errors"
 // ErrStalled is the error of a run that was broken off because the client took nothing for too long.
 var ErrStalled = errors.New("the client takes no answers")
 
+// ErrDeclined is the error of a run whose Held declined an output before all of it was known.
+var ErrDeclined = errors.New("the output is declined")
+
 // A ReadError is the error of a run whose Reader found no next record.
 type ReadError struct {
 	Err error

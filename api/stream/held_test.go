@@ -3,6 +3,7 @@ package stream
 import (
 	"bytes"
 	"context"
+	"errors"
 	"io"
 	"strings"
 	"testing"
@@ -56,6 +57,19 @@ func TestDeclinedOutputIsNotSent(t *testing.T) {
 	if err != nil || !s.Complete || s.Lines != 10 || out.Len() != 0 {
 		t.Errorf("%+v %v, %d bytes sent", s, err, out.Len())
 	}
+}
+
+// Neither is one that is declined because it is long.
+func TestDeclinedLongOutputIsNotSent(t *testing.T) {
+	var out bytes.Buffer
+	p := newPump(strings.NewReader(numbered(60_000)), &out)
+	p.Store = NewStore("", 256<<10, 0, 0)
+	p.Held = func(whole *Summary, _ int64) bool { return whole != nil }
+	within(t, 20*time.Second, func() {
+		if _, err := p.Run(context.Background()); !errors.Is(err, ErrDeclined) || out.Len() != 0 {
+			t.Errorf("%v, %d bytes sent", err, out.Len())
+		}
+	})
 }
 
 // A client that neither sends nor ends is noticed though answers are held.

@@ -28,7 +28,8 @@ type Pump struct {
 
 	// Held, where given, has nothing sent before all of the output is known, or more of it waits than Store keeps in memory, so that what is
 	// said before a short output can tell of the whole. It is called once, from the goroutine that sends, before the first write: in the
-	// first case with the summary and the output's size in bytes, in the second with nil. Where it returns false nothing is sent at all.
+	// first case with the summary and the output's size in bytes, in the second with nil. Where it returns false nothing is sent at all; in
+	// the second case that breaks the run off with ErrDeclined.
 	Held func(whole *Summary, size int64) bool
 
 	// Workers solve at the same time; 0 means GOMAXPROCS.
@@ -71,7 +72,7 @@ type Pump struct {
 
 // Run pumps until the end line is sent. It returns when all its goroutines have ended. With a nil error the output is whole: its end says what
 // the summary says (or Held declined it). With an error it was broken off, whatever the summary counts, and must not look like a clean end; the error is a
-// *ReadError, a *WriteError, a *BrokenError, ErrStalled, or the cause of ctx.
+// *ReadError, a *WriteError, a *BrokenError, ErrStalled, ErrDeclined, or the cause of ctx.
 func (p *Pump) Run(ctx context.Context) (Summary, error) {
 	return newRun(p).run(ctx)
 }

@@ -50,7 +50,11 @@ func (r *run) wait() bool {
 	for r.ctx.Err() == nil {
 		switch size, ended, over := r.spool.state(); {
 		case over:
-			return r.Held(nil, 0)
+			if r.Held(nil, 0) {
+				return true
+			}
+			r.abort(ErrDeclined)
+			return false
 		case ended:
 			summary := r.summary // the writer is done with it
 			if r.Held(&summary, size) {
