@@ -130,7 +130,7 @@ func (t *target) definitions(shared bool) []definition {
 				{name: "after", kind: "text", comment: "Its assets have keys after this one"},
 				{name: "until", kind: "text", comment: "and up to this one"},
 				{name: "job", kind: "bigint", comment: "Number of its job"},
-				{name: "state", kind: "text", rest: "not null", comment: "waiting, done, failed (given up for good) or left (a newer run was begun)"},
+				{name: "state", kind: "text", rest: "not null", comment: "waiting, done, or failed (given up for good)"},
 				{name: "error", kind: "text", comment: "Why it failed"},
 				{name: "worker", kind: "text", comment: "Who did it"},
 				{name: "done_at", kind: "timestamp with time zone"},

@@ -21,8 +21,8 @@ import (
 // jobsSchema holds the tables of the jobs, apart from those of people.
 const jobsSchema = "leat_jobs"
 
-// attempts is how often a batch is tried before it is given up.
-const attempts = 5
+// attempts is how often a batch is tried before it is given up; tests are less patient.
+var attempts = 5
 
 // batchJob is the job of one batch; what it covers stands in the table of batches.
 type batchJob struct {
@@ -110,7 +110,7 @@ func (t *target) migrate(ctx context.Context) error {
 	return nil
 }
 
-// leave does away with what earlier runs have left: batches that are done, and those of runs that nobody will go on with, with their jobs.
+// leave does away with what earlier runs have left: batches, but for those that were given up, and the jobs of runs that nobody will go on with.
 func (t *target) leave(ctx context.Context, tx pgx.Tx) error {
 	rows, err := tx.Query(ctx, "select run from "+t.runs.quoted()+" where run <> $1 and shared and finished_at is null", t.run)
 	if err != nil {
@@ -129,8 +129,7 @@ func (t *target) leave(ctx context.Context, tx pgx.Tx) error {
 		parameter any
 	}{
 		{"delete from " + quote(jobsSchema, "river_job") + " where queue = any($1::text[]) and state <> 'running'", queues},
-		{"update " + t.batches.quoted() + " set state = 'left' where run = any($1::text[]) and state = 'waiting'", runs},
-		{"delete from " + t.batches.quoted() + " where run <> $1 and state = 'done'", t.run},
+		{"delete from " + t.batches.quoted() + " where run <> $1 and state <> 'failed'", t.run},
 	} {
 		if _, err := tx.Exec(ctx, statement.text, statement.parameter); err != nil {
 			return err

@@ -232,19 +232,21 @@ func (c *crew) signs(ctx context.Context) {
 func (t *target) watch(ctx context.Context, progress func(store.Counts)) (total store.Counts, failed int64, err error) {
 	var known int64 = -1
 	for {
-		var waiting, left int64
+		var waiting int64
+		var newer bool
 		err := again(ctx, func() error {
 			if err := t.giveUp(ctx); err != nil {
 				return err
 			}
-			return t.pool.QueryRow(ctx, "select count(*) filter (where state = 'waiting'), count(*) filter (where state = 'left'), count(*) filter (where state = 'failed'), "+
+			return t.pool.QueryRow(ctx, "select count(*) filter (where state = 'waiting'), count(*) filter (where state = 'failed'), "+
+				"exists (select from "+t.runs.quoted()+" where number > (select number from "+t.runs.quoted()+" where run = $1)), "+
 				countColumns(func(_ int, quoted string) string { return "coalesce(sum(" + quoted + "), 0)::bigint" })+" from "+t.batches.quoted()+" where run = $1", t.run).
-				Scan(append([]any{&waiting, &left, &failed}, countPlaces(&total)...)...)
+				Scan(append([]any{&waiting, &failed, &newer}, countPlaces(&total)...)...)
 		})
 		if err != nil {
 			return total, failed, fmt.Errorf("reading the table %s: %w", t.batches, err)
 		}
-		if left > 0 {
+		if newer {
 			return total, failed, fmt.Errorf("a newer run than %q was begun", t.run)
 		}
 		if total.Read != known && progress != nil {
