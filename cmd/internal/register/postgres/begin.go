@@ -50,11 +50,11 @@ func (t *target) inTransaction(ctx context.Context, do func(tx pgx.Tx) error) er
 
 // An earlierRun is a row of the table of runs.
 type earlierRun struct {
-	run, layout, engineVersion    string
-	finished, fresh, shared, same bool
-	mark                          *string
-	batches                       int64
-	counts                        store.Counts
+	run, layout, engineVersion string
+	finished, fresh, shared    bool
+	mark                       *string
+	batches                    int64
+	counts                     store.Counts
 }
 
 func (t *target) earlier(ctx context.Context, tx pgx.Tx, condition string, parameters ...any) (*earlierRun, error) {
@@ -152,10 +152,13 @@ func (t *target) Finish(ctx context.Context, summary *store.Summary) error {
 		return err
 	}
 	return again(ctx, func() error {
-		_, err := t.pool.Exec(ctx, "update "+t.runs.quoted()+" set finished_at = $1, "+sets+" where run = $2 and owner = $3",
+		tag, err := t.pool.Exec(ctx, "update "+t.runs.quoted()+" set finished_at = $1, "+sets+" where run = $2 and owner = $3",
 			append([]any{summary.Finished, t.run, t.owner}, countValues(&summary.Counts)...)...)
 		if err != nil {
 			return fmt.Errorf("writing the table %s: %w", t.runs, err)
+		}
+		if tag.RowsAffected() != 1 {
+			return errTaken
 		}
 		return nil
 	})

@@ -300,6 +300,9 @@ func TestTargetCommitsWholeBatches(t *testing.T) {
 	if err := target.Commit(ctx, &store.Batch{Stretch: store.Stretch{Ordered: true}, Mark: whole(2), Results: [][]row.Value{result(whole(2), 1, "a")}}); err == nil {
 		t.Error("a run that was taken over is written to")
 	}
+	if err := target.Finish(ctx, &store.Summary{Run: "a", Finished: moment}); err == nil {
+		t.Error("a run that was taken over is finished")
+	}
 	if state := query(t, address, "select mark, batches, (select count(*) from results) from results_runs"); state[0] != "1|1|1" {
 		t.Error(state)
 	}
