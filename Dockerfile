@@ -1,7 +1,7 @@
 # The service as one static binary in an otherwise empty image. Build and run:
 #
 #   docker build -t leat .
-#   docker run --rm --read-only -p 8080:8080 leat
+#   docker run --rm --read-only -p 127.0.0.1:8080:8080 -e LEAT_ALLOW_OPEN=true leat
 #
 # The build fetches Go modules; the running container needs no network but its own port. What needs no container either:
 # CGO_ENABLED=0 go build -trimpath ./cmd/leat
@@ -24,6 +24,8 @@ COPY --from=build --chown=65532:65532 /out/spool /spool
 # By number: an orchestrator can then see that it is not root.
 USER 65532:65532
 VOLUME ["/spool"]
+# Listening on every address needs keys (LEAT_KEYS_FILE), TLS (LEAT_TLS_CERTIFICATE, LEAT_TLS_KEY), or LEAT_ALLOW_OPEN=true where the network in front
+# keeps strangers out; the image does not decide that.
 ENV LEAT_LISTEN=:8080 LEAT_SPOOL_DIR=/spool
 EXPOSE 8080
 HEALTHCHECK --interval=10s --timeout=3s CMD ["/leat", "health"]

@@ -117,10 +117,12 @@ const skippedBytes = 64 << 20
 // skip reads and drops what is left of a body that is refused, up to a bound, so that a client that sends first and reads
 // afterwards finds its answer instead of a broken connection. One that waits for leave to send is not given it. It reports whether the
 // body was read to its end.
-func skip(r *http.Request) bool {
+func skip(r *http.Request) bool { return skipWithin(r, skippedBytes) }
+
+func skipWithin(r *http.Request, most int64) bool {
 	if r.Header.Get("Expect") != "" {
 		return false
 	}
-	_, err := io.CopyN(io.Discard, r.Body, skippedBytes)
+	_, err := io.CopyN(io.Discard, r.Body, most)
 	return err == io.EOF
 }

@@ -31,6 +31,15 @@ type Config struct {
 
 	DrainDelay time.Duration // from being unready until the listener closes
 	DrainLimit time.Duration // from a stop signal until what still runs is cut
+
+	AdminListen       string // TCP address for metrics, process profiles and probes; empty for none
+	Connections       int    // most connections at once on Listen
+	KeysFile          string // whose keys are asked for; empty for nobody's
+	TLSCertificate    string // file of the certificate chain in PEM; empty for no TLS
+	TLSKey            string // file of its private key in PEM
+	ClientAuthorities string // file of the authorities in PEM of which callers must show a certificate; empty for none
+	AllowOrigin       string // web origins whose pages may read answers, commas between
+	AllowOpen         bool   // listen beyond loopback without keys and TLS
 }
 
 // Default returns the settings of a server that was told nothing.
@@ -56,5 +65,6 @@ func Default() Config {
 		SpoolTotal:   16 << 30,
 		DrainDelay:   0,
 		DrainLimit:   25 * time.Second,
+		Connections:  4096,
 	}
 }

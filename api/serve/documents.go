@@ -20,9 +20,10 @@ import (
 type document struct {
 	media string
 	body  []byte
-	tag   string // entity tag
+	tag   string // entity tag, without its quotation marks and what it bears for a coding
 	class string // Cache-Control
 	rules string // Content-Security-Policy, where it is not that of all answers
+	coded map[coding][]byte
 }
 
 // How long documents may be kept: those that change with the binary a little while, those that change with the settings not without asking.
@@ -33,7 +34,11 @@ const (
 
 func newDocument(media, class string, body []byte) document {
 	sum := sha256.Sum256(body)
-	return document{media: media, body: body, tag: `"` + hex.EncodeToString(sum[:12]) + `"`, class: class}
+	d := document{media: media, body: body, tag: hex.EncodeToString(sum[:12]), class: class}
+	if len(body) >= leastCoded {
+		d.coded = map[coding][]byte{gzipCoding: gzipCoding.encode(nil, body), zstdCoding: zstdCoding.encode(nil, body)}
+	}
+	return d
 }
 
 // documents builds the GET documents.
@@ -118,7 +123,7 @@ func (s *Server) show(representations ...document) gin.HandlerFunc {
 	return func(c *gin.Context) {
 		h := c.Writer.Header()
 		if len(offers) > 1 {
-			h["Vary"] = []string{"Accept"}
+			addVary(h, "Accept")
 		}
 		chosen, found := negotiate(c.Request.Header, offers...)
 		if !found {
@@ -134,22 +139,31 @@ func (s *Server) show(representations ...document) gin.HandlerFunc {
 	}
 }
 
-func (d document) write(c *gin.Context) {
+func (d *document) write(c *gin.Context) {
 	h := c.Writer.Header()
-	h["Etag"] = []string{d.tag}
+	body, tag := d.body, `"`+d.tag+`"`
+	if d.coded != nil {
+		addVary(h, "Accept-Encoding")
+		if chosen := chooseCoding(c.Request.Header); chosen != identity {
+			body, tag = d.coded[chosen], `"`+d.tag+"-"+string(chosen)+`"` // other bytes, so another tag
+			h["Content-Encoding"] = []string{string(chosen)}
+		}
+	}
+	h["Etag"] = []string{tag}
 	h["Cache-Control"] = []string{d.class}
 	if d.rules != "" {
 		h["Content-Security-Policy"] = []string{d.rules}
 	}
-	if unchanged(c.Request.Header["If-None-Match"], d.tag) {
+	if unchanged(c.Request.Header["If-None-Match"], tag) {
+		delete(h, "Content-Encoding")
 		c.Writer.WriteHeader(http.StatusNotModified)
 		c.Writer.WriteHeaderNow()
 		return
 	}
 	h["Content-Type"] = []string{d.media}
-	h["Content-Length"] = []string{strconv.Itoa(len(d.body))}
+	h["Content-Length"] = []string{strconv.Itoa(len(body))}
 	c.Writer.WriteHeader(http.StatusOK)
-	c.Writer.Write(d.body)
+	c.Writer.Write(body)
 }
 
 // unchanged reports whether an If-None-Match header names the tag, by weak comparison (RFC 9110, 13.1.2).

@@ -58,7 +58,7 @@ func TestPageByAccept(t *testing.T) {
 		"text/html,application/xhtml+xml,application/xml;q=0.9,*/*;q=0.8": "text/html; charset=utf-8",
 	} {
 		got := r.send("GET", "/", "", "Accept", accept)
-		if got.header.Get("Content-Type") != media || got.header.Get("Vary") != "Accept" {
+		if got.header.Get("Content-Type") != media || got.header.Get("Vary") != "Accept, Accept-Encoding" {
 			t.Errorf("Accept %q: %v", accept, got.header)
 		}
 	}
@@ -81,7 +81,7 @@ func TestProblemTypesLeadToTheirPages(t *testing.T) {
 		}
 	}
 	for _, path := range []string{"/docs/problems", "/docs/problems/saturated"} {
-		if got := r.send("POST", path, ""); got.status != 405 || got.header.Get("Allow") != "GET, HEAD" {
+		if got := r.send("POST", path, ""); got.status != 405 || got.header.Get("Allow") != "GET, HEAD, OPTIONS" {
 			t.Errorf("POST %s: %d %v", path, got.status, got.header)
 		}
 		if got := r.send("GET", path, "", "Accept", "application/json"); got.status != 406 {

@@ -11,6 +11,8 @@ import (
 type exchange struct {
 	requestID string
 	traceID   string
+	caller    string // the name of the caller's key or certificate, else the address
+	route     string // the label of metrics and log: a template, or unmatched, or optionsRoute
 	bytesIn   countingBody
 	lines     int64  // bulk lines answered
 	problems  int64  // bulk lines answered by a problem, or 1 for a refused request

@@ -21,6 +21,7 @@ type limitsDocument struct {
 	TimeLimitSeconds float64 `json:"time_limit_seconds"`
 	IdleLimitSeconds float64 `json:"idle_limit_seconds"`
 	SpoolBytes       int64   `json:"spool_bytes"`
+	Connections      int     `json:"connections"`
 }
 
 // limitsDocument leaves out the limits of operations that are not served.
@@ -35,6 +36,7 @@ func (s *Server) limitsDocument() limitsDocument {
 		TimeLimitSeconds: s.config.TimeLimit.Seconds(),
 		IdleLimitSeconds: s.config.IdleLimit.Seconds(),
 		SpoolBytes:       s.config.SpoolBytes,
+		Connections:      s.config.Connections,
 	}
 	if slices.ContainsFunc(s.operations, func(op *operation.Operation) bool { return op.Long }) {
 		d.ProfileBodyBytes = s.config.ProfileBytes

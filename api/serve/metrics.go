@@ -15,7 +15,13 @@ import (
 // unmatched is the route label of a request that no route answers.
 const unmatched = "unmatched"
 
-// methods are the values of the method label; anything else counts as "other".
+// optionsRoute is the route label of all OPTIONS that are answered, so that they make one series and not one for each path.
+const optionsRoute = "options"
+
+// otherMethod is the method label of all methods that are not in the list, and of all requests that no route answers.
+const otherMethod = "other"
+
+// methods are the values of the method label.
 var methods = []string{
 	http.MethodGet, http.MethodHead, http.MethodPost, http.MethodPut, http.MethodPatch,
 	http.MethodDelete, http.MethodOptions, http.MethodConnect, http.MethodTrace,
@@ -36,9 +42,10 @@ type metrics struct {
 	solves   *prometheus.CounterVec
 	refusals *prometheus.CounterVec
 	lines    *prometheus.CounterVec
+	refused  prometheus.Counter
 }
 
-func newMetrics(build Build, spoolBytes, heldBytes func() int64) *metrics {
+func newMetrics(build Build, spoolBytes, heldBytes, connections func() int64) *metrics {
 	m := &metrics{
 		registry: prometheus.NewRegistry(),
 		requests: prometheus.NewCounterVec(prometheus.CounterOpts{
@@ -65,6 +72,14 @@ func newMetrics(build Build, spoolBytes, heldBytes func() int64) *metrics {
 			Help: "Bulk lines answered, by operation and outcome.",
 		}, []string{"operation", "outcome"}),
 	}
+	m.refused = prometheus.NewCounter(prometheus.CounterOpts{
+		Name: "leat_connections_refused_total",
+		Help: "Connections refused since as many as are taken were open.",
+	})
+	open := prometheus.NewGaugeFunc(prometheus.GaugeOpts{
+		Name: "leat_connections",
+		Help: "Open connections on the public listener.",
+	}, func() float64 { return float64(connections()) })
 	spool := prometheus.NewGaugeFunc(prometheus.GaugeOpts{
 		Name: "leat_spool_bytes",
 		Help: "Bulk answers that wait in spool files for their readers.",
@@ -82,7 +97,7 @@ func newMetrics(build Build, spoolBytes, heldBytes func() int64) *metrics {
 	})
 	info.Set(1)
 	m.registry.MustRegister(
-		m.requests, m.duration, m.solves, m.refusals, m.lines, spool, held, info,
+		m.requests, m.duration, m.solves, m.refusals, m.lines, m.refused, open, spool, held, info,
 		collectors.NewGoCollector(), collectors.NewProcessCollector(collectors.ProcessCollectorOpts{}),
 	)
 	return m
@@ -96,8 +111,15 @@ func (m *metrics) prepare(routes []route, operations []string) {
 		}
 		m.duration.WithLabelValues(r.path)
 		m.requests.WithLabelValues(r.path, r.method, "200")
+		if r.method == http.MethodGet {
+			m.requests.WithLabelValues(r.path, http.MethodHead, "200")
+		}
 	}
 	m.duration.WithLabelValues(unmatched)
+	m.requests.WithLabelValues(unmatched, otherMethod, "404")
+	m.requests.WithLabelValues(unmatched, otherMethod, "405")
+	m.duration.WithLabelValues(optionsRoute)
+	m.requests.WithLabelValues(optionsRoute, http.MethodOptions, "204")
 	for _, kind := range kinds {
 		m.refusals.WithLabelValues(kind)
 	}
@@ -111,6 +133,9 @@ func (m *metrics) prepare(routes []route, operations []string) {
 }
 
 func (m *metrics) observe(route, method string, status int, elapsed time.Duration) {
+	if route == unmatched {
+		method = otherMethod // strangers' methods times their statuses would be many series that tell nobody anything
+	}
 	m.requests.WithLabelValues(route, methodLabel(method), strconv.Itoa(status)).Inc()
 	m.duration.WithLabelValues(route).Observe(elapsed.Seconds())
 }
@@ -121,5 +146,5 @@ func methodLabel(method string) string {
 			return known
 		}
 	}
-	return "other"
+	return otherMethod
 }

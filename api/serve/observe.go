@@ -25,7 +25,8 @@ var (
 func (s *Server) observe(silent map[string]bool) gin.HandlerFunc {
 	return func(c *gin.Context) {
 		began := time.Now()
-		e := &exchange{requestID: requestID(c.Request.Header), traceID: traceID(c.Request.Header)}
+		e := &exchange{requestID: requestID(c.Request.Header), traceID: traceID(c.Request.Header), route: c.FullPath()}
+		e.caller, _, _ = net.SplitHostPort(c.Request.RemoteAddr)
 		c.Set(exchangeKey{}, e)
 		if c.Request.Body != nil && c.Request.Body != http.NoBody {
 			e.bytesIn.ReadCloser = c.Request.Body
@@ -43,25 +44,26 @@ func (s *Server) observe(silent map[string]bool) gin.HandlerFunc {
 			h["Connection"] = []string{"close"}
 		}
 
-		route := c.FullPath()
-		if silent[route] {
+		s.origins.answer(c.Request, h)
+
+		if silent[e.route] {
 			c.Next()
 			return
 		}
-		if route == "" {
-			route = unmatched
+		if e.route == "" {
+			e.route = unmatched
 		}
 		defer func() {
 			elapsed := time.Since(began)
-			s.metrics.observe(route, c.Request.Method, c.Writer.Status(), elapsed)
-			s.logAccess(c, e, route, elapsed)
+			s.metrics.observe(e.route, c.Request.Method, c.Writer.Status(), elapsed)
+			s.logAccess(c, e, elapsed)
 		}()
 		c.Next()
 	}
 }
 
 // logAccess writes the one line of a request.
-func (s *Server) logAccess(c *gin.Context, e *exchange, route string, elapsed time.Duration) {
+func (s *Server) logAccess(c *gin.Context, e *exchange, elapsed time.Duration) {
 	level, status := slog.LevelInfo, c.Writer.Status()
 	switch {
 	case status >= 500:
@@ -76,12 +78,11 @@ func (s *Server) logAccess(c *gin.Context, e *exchange, route string, elapsed ti
 	case e.early != "":
 		message = "stream ended early: " + e.early
 	}
-	caller, _, _ := net.SplitHostPort(c.Request.RemoteAddr)
 	s.log.LogAttrs(context.Background(), level, message,
 		slog.String("request_id", e.requestID),
 		slog.String("trace_id", e.traceID),
-		slog.String("caller", caller),
-		slog.String("route", route),
+		slog.String("caller", e.caller),
+		slog.String("route", e.route),
 		slog.Int("status", status),
 		slog.Float64("duration_seconds", elapsed.Seconds()),
 		slog.Int64("bytes_in", e.bytesIn.n),

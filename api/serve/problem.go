@@ -17,9 +17,9 @@ import (
 
 // The problems of the edge itself. What a request body may do wrong is package wire's to say.
 
-func noRoute(path string, routes []route) *wire.Problem {
+func noRoute(path string, table routes) *wire.Problem {
 	if path != "/" {
-		for _, r := range routes {
+		for _, r := range table {
 			if r.path == strings.TrimRight(path, "/") {
 				return wire.NotFound(fmt.Sprintf("There is nothing at this path; without its trailing slash it is %s.", r.path))
 			}
@@ -110,6 +110,14 @@ func aboutToStop() *wire.Problem {
 
 func lateAnswer(limit time.Duration) *wire.Problem {
 	return wire.TimeLimit(fmt.Sprintf("The calculation took longer than time_limit_seconds, %v; ask for less at once.", limit.Seconds()))
+}
+
+func noKey() *wire.Problem {
+	return wire.Unauthorized("The request bears no key; send the header Authorization: Bearer and the key that the operator of this service gave you.")
+}
+
+func wrongKey() *wire.Problem {
+	return wire.Unauthorized("The key in the header Authorization is not known here; ask the operator of this service for one.")
 }
 
 // goneClient ends a solve; nobody is there to read it.

@@ -59,6 +59,8 @@ func TestRefusedSettings(t *testing.T) {
 		{"--unknown", "1"}, {"surplus"}, {"--points"}, {"--points", "1e3"}, {"--points", ""}, {"--points", "99999999999999999999"},
 		{"--body-bytes", "1000"}, {"--body-bytes", "65MiB"}, {"--body-bytes", "9223372036854775807TiB"}, {"--body-bytes", "1MB"}, {"--body-bytes", "1.5MiB"},
 		{"--listen", "127.0.0.1"}, {"--listen", "127.0.0.1:http"}, {"--listen", ":70000"}, {"--listen", ""},
+		{"--allow-open=1"}, {"--allow-open", "true"}, {"--connections", "0"}, {"--admin-listen", "9090"}, {"--allow-origin", "maps.example"}, {"--allow-origin", "https://maps.example/"},
+		{"--allow-origin", "*,https://maps.example"}, {"--allow-origin", "null"}, {"--allow-origin", "https://Maps.example"}, {"--allow-origin", "https://maps.example:443"}, {"--allow-origin", "ftp://maps.example"},
 		{"--time-limit", "10"}, {"--time-limit", "0s"}, {"--time-limit", "NaN"},
 		{"--held-bytes", "1MiB", "--body-bytes", "2MiB"}, {"--drain-delay", "30s"}, {"--spool-total-bytes", "1MiB"},
 	} {
@@ -74,7 +76,14 @@ func TestHelpShowsEverySetting(t *testing.T) {
 	}
 	text, config := Help(), Default()
 	for _, s := range settings {
-		for _, part := range []string{"--" + s.name + " VALUE", s.variable(), "Default " + s.show(&config) + ".", s.meaning, s.accepted} {
+		value, preset := " VALUE\n", s.show(&config)
+		if s.isSwitch {
+			value = "\n"
+		}
+		if preset == "" {
+			preset = "nothing"
+		}
+		for _, part := range []string{"--" + s.name + value, s.variable(), "Default " + preset + ".", s.meaning, s.accepted} {
 			if !strings.Contains(text, part) {
 				t.Errorf("help does not show %q", part)
 			}
@@ -82,10 +91,41 @@ func TestHelpShowsEverySetting(t *testing.T) {
 	}
 }
 
-func TestHealthLooksAtTheListenAddressOnly(t *testing.T) {
-	got, err := LoadListen(nil, []string{"LEAT_LISTEN=:9000", "LEAT_UNKNOWN=1", "LEAT_POINTS=bad"})
-	if err != nil || got != ":9000" {
-		t.Errorf("%q, %v", got, err)
+func TestProbeLooksAtTheAddressesOnly(t *testing.T) {
+	for _, row := range []struct {
+		arguments, environment []string
+		want                   ProbeTarget
+	}{
+		{nil, []string{"LEAT_LISTEN=:9000", "LEAT_UNKNOWN=1", "LEAT_POINTS=bad"}, ProbeTarget{":9000", false}},
+		{nil, []string{"LEAT_LISTEN=:9000", "LEAT_TLS_CERTIFICATE=cert.pem"}, ProbeTarget{":9000", true}},
+		{[]string{"--admin-listen", ":9001"}, []string{"LEAT_TLS_CERTIFICATE=cert.pem"}, ProbeTarget{":9001", false}},
+	} {
+		if got, err := LoadProbe(row.arguments, row.environment); err != nil || got != row.want {
+			t.Errorf("%q %q: %+v, %v", row.arguments, row.environment, got, err)
+		}
+	}
+}
+
+// Whom the network could let in uninvited must be asked for by name.
+func TestListeningBeyondTheMachineMustBeMeant(t *testing.T) {
+	for _, row := range []struct {
+		arguments string
+		accepted  bool
+	}{
+		{"", true}, {"--listen localhost:0", true}, {"--listen [::1]:0", true}, {"--listen 127.9.9.9:80", true}, {"--listen [::ffff:127.0.0.1]:80", true},
+		{"--listen :8080", false}, {"--listen 0.0.0.0:8080", false}, {"--listen [::]:8080", false}, {"--listen 10.0.0.7:8080", false}, {"--listen leat.example:80", false},
+		{"--listen :8080 --allow-open", true}, {"--listen :8080 --allow-open=false", false}, {"--listen :8080 --keys-file keys", true},
+		{"--listen :8080 --tls-certificate c --tls-key k", true}, {"--tls-certificate c", false}, {"--tls-key k", false}, {"--client-authorities a", false},
+		{"--admin-listen 127.0.0.1:9090", true}, {"--admin-listen :9090", false}, {"--admin-listen :9090 --keys-file keys", false}, {"--admin-listen :9090 --allow-open", true},
+		{"--admin-listen 127.0.0.1:8080", false}, {"--listen 127.0.0.1:0 --admin-listen 127.0.0.1:0", true},
+	} {
+		_, err := Load(strings.Fields(row.arguments), nil)
+		if (err == nil) != row.accepted {
+			t.Errorf("%q: %v", row.arguments, err)
+		}
+	}
+	if _, err := Load(nil, []string{"LEAT_LISTEN=:8080", "LEAT_ALLOW_OPEN=true", "LEAT_KEYS_FILE="}); err != nil {
+		t.Error(err)
 	}
 }
 

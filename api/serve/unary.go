@@ -1,8 +1,6 @@
 package serve
 
 import (
-	"net/http"
-	"strconv"
 	"sync"
 	"time"
 
@@ -83,11 +81,8 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 			s.writeProblem(c, problem)
 			return
 		}
-		h := c.Writer.Header()
-		h["Content-Type"] = media
-		h["Content-Length"] = []string{strconv.Itoa(len(answer))}
-		c.Writer.WriteHeader(http.StatusOK)
-		c.Writer.Write(answer)
+		c.Writer.Header()["Content-Type"] = media
+		s.send(c, answer)
 	}
 }
 
@@ -129,7 +124,12 @@ func (s *Server) admit(c *gin.Context, defaults operation.Options, media string,
 // refuse answers with a problem before the body was read. It drops what the client is sending all the same, up to a bound, so
 // that one that sends first and reads afterwards finds the problem and no broken connection.
 func (s *Server) refuse(c *gin.Context, problem *wire.Problem) {
-	if !skip(c.Request) {
+	s.refuseWithin(c, problem, skippedBytes)
+}
+
+// refuseWithin is refuse with a bound of its own for what is dropped.
+func (s *Server) refuseWithin(c *gin.Context, problem *wire.Problem, most int64) {
+	if !skipWithin(c.Request, most) {
 		closeConnection(c)
 	}
 	s.writeProblem(c, problem)

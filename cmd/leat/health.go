@@ -1,6 +1,7 @@
 package main
 
 import (
+	"crypto/tls"
 	"errors"
 	"flag"
 	"fmt"
@@ -16,24 +17,26 @@ const healthTimeout = 2 * time.Second
 
 // runHealth is for container probes: the image has no other program to ask with.
 func runHealth(arguments, environment []string, stdout, stderr io.Writer) int {
-	listen, err := serve.LoadListen(arguments, environment)
+	target, err := serve.LoadProbe(arguments, environment)
 	if errors.Is(err, flag.ErrHelp) {
-		fmt.Fprint(stdout, "leat health asks GET /readyz of the service at --listen HOST:PORT (or LEAT_LISTEN, or "+serve.Default().Listen+") and exits with 0 if it is ready, else with 1.\n")
+		fmt.Fprint(stdout, "leat health asks GET /readyz of the service on this machine and exits with 0 if it is ready, else with 1. It asks at --admin-listen HOST:PORT (or LEAT_ADMIN_LISTEN), "+
+			"or if there is none at --listen HOST:PORT (or LEAT_LISTEN, or "+serve.Default().Listen+"), over TLS if --tls-certificate (or LEAT_TLS_CERTIFICATE) is set. "+
+			"A service with --client-authorities can be asked at its admin listener only.\n")
 		return exitOK
 	}
 	if err != nil {
 		fmt.Fprintf(stderr, "leat health: %v\n", err)
 		return exitMisused
 	}
-	if err := askReadiness(listen); err != nil {
+	if err := askReadiness(target); err != nil {
 		fmt.Fprintf(stderr, "leat health: %v\n", err)
 		return exitFailed
 	}
 	return exitOK
 }
 
-func askReadiness(listen string) error {
-	host, port, err := net.SplitHostPort(listen)
+func askReadiness(target serve.ProbeTarget) error {
+	host, port, err := net.SplitHostPort(target.Address)
 	if err != nil {
 		return err
 	}
@@ -41,8 +44,15 @@ func askReadiness(listen string) error {
 	if ip := net.ParseIP(host); host == "" || ip != nil && ip.IsUnspecified() {
 		host = "localhost"
 	}
-	client := http.Client{Timeout: healthTimeout, Transport: &http.Transport{Proxy: nil, DisableKeepAlives: true}}
-	response, err := client.Get("http://" + net.JoinHostPort(host, port) + "/readyz")
+	transport := &http.Transport{Proxy: nil, DisableKeepAlives: true}
+	scheme := "http"
+	if target.TLS {
+		scheme = "https"
+		// The certificate is for callers' name of this machine, not for this one. Nothing is sent and one status is learnt, so that to know who answers matters little.
+		transport.TLSClientConfig = &tls.Config{InsecureSkipVerify: true}
+	}
+	client := http.Client{Timeout: healthTimeout, Transport: transport}
+	response, err := client.Get(scheme + "://" + net.JoinHostPort(host, port) + "/readyz")
 	if err != nil {
 		return err
 	}

@@ -16,6 +16,7 @@ const (
 
   leat serve      start the HTTP service; leat serve --help lists its settings
   leat register   carry a register of assets through a mapping file; leat register --help tells more
+  leat key        make a caller's key and its line for --keys-file; leat key --help tells more
   leat health     ask a running service whether it is ready; exit code 0 if so, else 1
   leat version    say what this binary is
   leat help       this text
@@ -40,12 +41,14 @@ func run(arguments, environment []string, stdout, stderr io.Writer) int {
 		return runServe(rest, environment, stdout, stderr)
 	case "register":
 		return runRegister(rest, stdout, stderr)
+	case "key":
+		return runKey(rest, stdout, stderr)
 	case "health":
 		return runHealth(rest, environment, stdout, stderr)
 	case "version", "--version":
 		return runVersion(rest, stdout, stderr)
 	case "help", "--help", "-h":
-		if len(rest) == 1 && (rest[0] == "serve" || rest[0] == "health" || rest[0] == "register") {
+		if len(rest) == 1 && (rest[0] == "serve" || rest[0] == "health" || rest[0] == "key" || rest[0] == "register") {
 			return run([]string{rest[0], "--help"}, environment, stdout, stderr)
 		}
 		fmt.Fprint(stdout, usageMessage)

@@ -7,6 +7,7 @@ import (
 	"fmt"
 	"io"
 	"log/slog"
+	"os"
 	"os/signal"
 	"syscall"
 
@@ -30,7 +31,8 @@ func runServe(arguments, environment []string, stdout, stderr io.Writer) int {
 	ctx, stop := signal.NotifyContext(context.Background(), syscall.SIGINT, syscall.SIGTERM)
 	defer stop()
 	log := serve.NewLog(stderr)
-	if err := serveUntil(ctx, config, log); err != nil {
+	memory := limitMemory(environment)
+	if err := serveUntil(ctx, config, memory, log); err != nil {
 		log.Error("stopped", slog.String("error", err.Error()))
 		return exitFailed
 	}
@@ -39,7 +41,11 @@ func runServe(arguments, environment []string, stdout, stderr io.Writer) int {
 }
 
 // serveUntil wires the service together, serves until ctx is done, and stops it gracefully. A second signal changes nothing.
-func serveUntil(ctx context.Context, config serve.Config, log *slog.Logger) error {
+func serveUntil(ctx context.Context, config serve.Config, memory int64, log *slog.Logger) error {
+	// By custom this signal asks to read files anew; its default action would end the process.
+	hangUp := make(chan os.Signal, 1)
+	signal.Notify(hangUp, syscall.SIGHUP)
+	defer signal.Stop(hangUp)
 	operations := operation.All()
 	known, err := serve.KnownAnswer(operations)
 	if err != nil {
@@ -56,12 +62,23 @@ func serveUntil(ctx context.Context, config serve.Config, log *slog.Logger) erro
 	if err != nil {
 		return err
 	}
-	log.Info("listening", slog.String("address", address.String()), slog.String("version", build.Version), slog.String("revision", build.Revision))
-	select {
-	case err := <-server.Served():
-		return err
-	case <-ctx.Done():
-		log.Info("stopping")
-		return server.Stop()
+	said := []any{slog.String("address", address.String()), slog.String("version", build.Version), slog.String("revision", build.Revision)}
+	if admin := server.AdminAddress(); admin != nil {
+		said = append(said, slog.String("admin_address", admin.String()))
+	}
+	if memory > 0 {
+		said = append(said, slog.Int64("memory_limit_bytes", memory))
+	}
+	log.Info("listening", said...)
+	for {
+		select {
+		case err := <-server.Served():
+			return err
+		case <-hangUp:
+			server.Renew()
+		case <-ctx.Done():
+			log.Info("stopping")
+			return server.Stop()
+		}
 	}
 }
