@@ -151,8 +151,8 @@ func (s *source) CheckKey(ctx context.Context, filter []store.Condition) error {
 	if other != "" {
 		return &store.Misfit{Field: "key", Detail: other}
 	}
-	if strings.EqualFold(s.table.Key, s.key.Name) {
-		return nil // SQLite keeps it unique
+	if unique, err := isUnique(f, s.table, s.key.Name); err != nil || unique {
+		return err
 	}
 	fault := &store.KeyFault{}
 	err = f.Rows("SELECT "+key+" COLLATE BINARY"+from+" GROUP BY 1 HAVING count(*) > 1 ORDER BY 1 LIMIT 5", func(r *sqlite.Stmt) error {
@@ -166,6 +166,17 @@ func (s *source) CheckKey(ctx context.Context, filter []store.Condition) error {
 		return fault
 	}
 	return nil
+}
+
+// isUnique reports whether SQLite itself keeps a column's values apart: it is the row's number, or has a unique index of its own that compares bytes.
+func isUnique(f *geopackage.File, t *geopackage.Table, column string) (bool, error) {
+	if strings.EqualFold(t.Key, column) {
+		return true, nil
+	}
+	n, err := f.Integer(`SELECT count(*) FROM pragma_index_list(?1) l WHERE l."unique" = 1 AND l.partial = 0
+  AND (SELECT count(*) FROM pragma_index_xinfo(l.name) i WHERE i.key = 1) = 1
+  AND (SELECT count(*) FROM pragma_index_xinfo(l.name) i WHERE i.key = 1 AND lower(i.name) = lower(?2) AND i.coll = 'BINARY') = 1`, t.Name, column)
+	return n > 0, err
 }
 
 func (s *source) Count(ctx context.Context, query *store.Query) (int64, error) {
