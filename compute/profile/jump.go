@@ -17,7 +17,7 @@ func (c *chain) meet(l *leg, t *trace, from float64) (to float64, jumps bool, er
 	for k := len(l.subs) - 1; k >= 0; k-- {
 		s := l.subs[k]
 		lo, hi := max(from, s.end), min(t.end, s.panels[0].x0)
-		if !(lo < hi) && !(lo == hi && l.length == 0) {
+		if !(hi-lo > leastMeeting*l.length) && !(lo == hi && l.length == 0) {
 			continue
 		}
 		excess := func(x float64) float64 {
@@ -46,6 +46,10 @@ func (c *chain) meet(l *leg, t *trace, from float64) (to float64, jumps bool, er
 	}
 	return t.end, false, nil
 }
+
+// leastMeeting is the share of a leg over which two traces must stand side by side to meet. At the end of a leg where critical depth governs, the subcritical flow of a
+// steep bed ends within the last places of where it begins; whatever its force, it holds nothing up.
+const leastMeeting = 1e-12
 
 // subdivisions is how many places of each panel the forces are compared at.
 const subdivisions = 4
