@@ -17,6 +17,7 @@ require (
 	github.com/riverqueue/river/rivertype v0.51.2
 	github.com/santhosh-tekuri/jsonschema/v6 v6.0.3
 	go.uber.org/goleak v1.3.0
+	golang.org/x/time v0.16.0
 	pgregory.net/rapid v1.3.0
 	zombiezen.com/go/sqlite v1.4.2
 )

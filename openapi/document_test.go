@@ -219,7 +219,7 @@ func TestNumbersHaveFormatAndUnit(t *testing.T) {
 	want := map[string]string{
 		"1": "1", "m": "[ft_i]", "m2": "[sft_i]", "m3": "[cft_i]", "m3/s": "[cft_i]/s", "m/s": "[ft_i]/s", "m/s2": "[ft_i]/s2",
 		"m2/s": "[sft_i]/s", "N/m2": "[lbf_av]/[sft_i]", "W/m2": "[ft_i].[lbf_av]/(s.[sft_i])", "{m^(1/2)/s}": "{ft^(1/2)/s}",
-		"{s/m^(1/3)}": "{s/m^(1/3)}", "{m^(1/3)/s}": "{m^(1/3)/s}", "s": "s", "By": "By", "deg": "deg",
+		"{s/m^(1/3)}": "{s/m^(1/3)}", "{m^(1/3)/s}": "{m^(1/3)/s}", "s": "s", "Hz": "Hz", "By": "By", "deg": "deg",
 		"{told_beside_it}": "{told_beside_it}", // of a number whose unit another member tells
 		"{of_its_member}":  "{of_its_member}",  // of a flat value
 	}

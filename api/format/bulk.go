@@ -146,14 +146,16 @@ type solver struct {
 }
 
 // Solve answers one record.
-func (s *solver) Solve(_ int, record stream.Record, dst []byte) (extended []byte, problem bool) {
+func (s *solver) Solve(worker int, record stream.Record, dst []byte) (extended []byte, problem bool) {
 	r := s.b.requests.Get().(*request)
 	r.reset()
 	s.from.read(r, record.Bytes)
 	a := &r.answer
 	*a = answer{line: record.Line, id: r.id, problem: r.problem}
 	if a.problem == nil {
-		a.solved, a.problem = s.b.operation.Solve(r.body, s.b.options)
+		options := s.b.options
+		options.Worker = worker
+		a.solved, a.problem = s.b.operation.Solve(r.body, options)
 		a.id = a.solved.ID
 		switch {
 		case a.problem != nil && r.flat:

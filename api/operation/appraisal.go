@@ -34,10 +34,7 @@ func solveAppraisal(r *wire.AppraisalRequest, options *Options) (wire.Answer, *w
 			return nil, wire.InvalidRequest(fault)
 		}
 	}
-	var checkpoint func() error
-	if options.Begin != nil {
-		checkpoint = options.Begin()
-	}
+	checkpoint := options.begin()
 	// In an order that does not depend on that of the members, which means nothing in JSON.
 	flows := slices.Clone(r.Flows)
 	slices.SortFunc(flows, func(a, b wire.NamedNumber) int {
@@ -48,10 +45,8 @@ func solveAppraisal(r *wire.AppraisalRequest, options *Options) (wire.Answer, *w
 	var room flow.Room
 	findings := make([]appraise.Finding, 0, limits.Given.Len())
 	for i := range flows {
-		if checkpoint != nil {
-			if err := checkpoint(); err != nil {
-				return nil, stopped(err)
-			}
+		if err := checkpoint(); err != nil {
+			return nil, stopped(err)
 		}
 		f := &a.Flows[i]
 		f.Name, f.Discharge = flows[i].Name, flows[i].Value

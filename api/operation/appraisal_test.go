@@ -216,7 +216,7 @@ func TestAppraisalCheckpoint(t *testing.T) {
 		status int
 	}{{wire.TimeLimit("Too late."), 504}, {errors.New("gone"), 500}} {
 		calls, last = 0, 2
-		options := Options{Begin: func() func() error {
+		options := Options{Begin: func(int) func() error {
 			return func() error {
 				if calls++; calls == last {
 					return c.err

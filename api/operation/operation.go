@@ -12,9 +12,10 @@ type Options struct {
 
 	Fingerprint bool // ?fingerprint=true: the answer tells its request's fingerprint
 
-	// Begin, unless nil, is called where a solve begins that may take long. What it returns is called at least every 0.1 ms of the
+	// Begin, unless nil, is called with Worker where a solve begins that may take long. What it returns is called at least every 0.1 ms of the
 	// solve of a Long operation, between the parts of others, and an error of it ends the solve: where that is a *wire.Problem, it is the request's.
-	Begin func() (checkpoint func() error)
+	Begin  func(worker int) (checkpoint func() error)
+	Worker int // which of several that solve at once does
 }
 
 // An Operation is one calculation of the contract. It is immutable and safe for concurrent use.
@@ -72,6 +73,14 @@ func (s *Solved) AppendJSON(dst []byte, inside bool) []byte {
 
 // All returns the operations in the order of the contract.
 func All() []*Operation { return []*Operation{&Section, &Depths, &Rating, &Profile, &Appraisal} }
+
+// begin returns the checkpoint of a solve that begins.
+func (o *Options) begin() (checkpoint func() error) {
+	if o.Begin == nil {
+		return func() error { return nil }
+	}
+	return o.Begin(o.Worker)
+}
 
 // defaultLimits hold where a caller sets none.
 var defaultLimits = wire.DefaultLimits()

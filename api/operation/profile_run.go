@@ -32,7 +32,7 @@ func newProfileRun(r *wire.ProfileRequest, options Options) (*profileRun, *wire.
 		Report: profile.Report{Spacing: r.Report.Spacing.Or(0), At: r.Report.At, Most: limits.ReportPoints},
 	}
 	if options.Begin != nil {
-		p.run.Checkpoint = options.Begin()
+		p.run.Checkpoint = options.Begin(options.Worker)
 	}
 	for i := len(r.Report.At) - 1; i >= 0 && r.Report.At[i] > p.length; i-- {
 		r.Report.At[i] = p.length // what was rounded beyond the end

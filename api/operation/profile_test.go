@@ -169,13 +169,13 @@ func TestProfileRefusals(t *testing.T) {
 		}
 	}
 	begun := 0
-	_, problem := solveWith(t, oneReach(downstream), Options{Begin: func() func() error { begun++; return func() error { return late } }},
+	_, problem := solveWith(t, oneReach(downstream), Options{Begin: func(int) func() error { begun++; return func() error { return late } }},
 		func(r *profile.Run) (*profile.Answer, error) { return nil, r.Checkpoint() })
 	if problem != late || begun != 1 {
 		t.Errorf("%v after %d beginnings, want the checkpoint's problem", problem, begun)
 	}
 	calls := 0
-	_, problem = solveWith(t, oneReach(downstream), Options{Begin: func() func() error {
+	_, problem = solveWith(t, oneReach(downstream), Options{Begin: func(int) func() error {
 		return func() error {
 			if calls++; calls > 1 {
 				return late

@@ -12,24 +12,24 @@ import (
 var Rating = Operation{Name: "rating", Form: (*wire.RatingAnswer)(nil), Request: (*wire.RatingRequest)(nil), Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 	var request wire.RatingRequest
 	return run("rating", body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
-		return solveRating(&request)
+		return solveRating(&request, &options)
 	})
 }}
 
-func solveRating(r *wire.RatingRequest) (wire.Answer, *wire.Problem) {
+func solveRating(r *wire.RatingRequest, options *Options) (wire.Answer, *wire.Problem) {
 	in := inputs{&r.Common, r.Barrels, &r.Section, &r.Roughness, r.BedSlope}
 	c, problem := in.channel()
 	if problem != nil {
 		return nil, problem
 	}
 	if len(r.Discharges) > 0 {
-		return rateDischarges(&c, r, &in)
+		return rateDischarges(&c, r, &in, options.begin())
 	}
-	return rateDepths(&c, r, &in)
+	return rateDepths(&c, r, &in, options.begin())
 }
 
 // rateDepths gives the discharge that flows uniformly, or critically, at evenly spaced depths.
-func rateDepths(c *flow.Channel, r *wire.RatingRequest, in *inputs) (wire.Answer, *wire.Problem) {
+func rateDepths(c *flow.Channel, r *wire.RatingRequest, in *inputs, checkpoint func() error) (wire.Answer, *wire.Problem) {
 	if fault, above := aboveSection(c, r.ToDepth.Value, "/to_depth"); above {
 		return nil, wire.InvalidRequest(fault)
 	}
@@ -37,6 +37,11 @@ func rateDepths(c *flow.Channel, r *wire.RatingRequest, in *inputs) (wire.Answer
 	w.doubt("", in)
 	a := &wire.RatingAnswer{States: make([]wire.State, r.Count.Value)}
 	for i := range a.States {
+		if i%betweenCheckpoints == 0 {
+			if err := checkpoint(); err != nil {
+				return nil, stopped(err)
+			}
+		}
 		depth := evenly(r.FromDepth.Value, r.ToDepth.Value, i, r.Count.Value)
 		var q float64
 		var absent flow.Absence
@@ -75,13 +80,16 @@ func withoutFlow(s wire.State) wire.State {
 }
 
 // rateDischarges gives the lowest normal, or critical, depth of each discharge.
-func rateDischarges(c *flow.Channel, r *wire.RatingRequest, in *inputs) (wire.Answer, *wire.Problem) {
+func rateDischarges(c *flow.Channel, r *wire.RatingRequest, in *inputs, checkpoint func() error) (wire.Answer, *wire.Problem) {
 	var w warnings
 	w.doubt("", in)
 	var room [8]float64
 	m := members(c, true) | wire.WithDischarge
 	a := &wire.RatingAnswer{States: make([]wire.State, len(r.Discharges))}
 	for i, q := range r.Discharges {
+		if err := checkpoint(); err != nil {
+			return nil, stopped(err)
+		}
 		find, name := c.Normal, "normal"
 		if r.Kind == wire.RatingCritical {
 			find, name = c.Critical, "critical"

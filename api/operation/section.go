@@ -10,11 +10,14 @@ import (
 var Section = Operation{Name: "section", Form: (*wire.SectionAnswer)(nil), Request: (*wire.SectionRequest)(nil), Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 	var request wire.SectionRequest
 	return run("section", body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
-		return solveSection(&request)
+		return solveSection(&request, &options)
 	})
 }}
 
-func solveSection(r *wire.SectionRequest) (wire.Answer, *wire.Problem) {
+// betweenCheckpoints is how many depths or discharges are described from one checkpoint to the next.
+const betweenCheckpoints = 16
+
+func solveSection(r *wire.SectionRequest, options *Options) (wire.Answer, *wire.Problem) {
 	in := inputs{&r.Common, r.Barrels, &r.Section, &r.Roughness, r.BedSlope}
 	c, problem := in.channel()
 	if problem != nil {
@@ -43,7 +46,13 @@ func solveSection(r *wire.SectionRequest) (wire.Answer, *wire.Problem) {
 	w.doubt("", &in)
 	m := members(&c, r.Discharge.Given)
 	a := &wire.SectionAnswer{States: make([]wire.State, len(depths))}
+	checkpoint := options.begin()
 	for i, depth := range depths {
+		if i%betweenCheckpoints == 0 {
+			if err := checkpoint(); err != nil {
+				return nil, stopped(err)
+			}
+		}
 		s := c.State(depth, r.Discharge.Value)
 		a.States[i] = state(&s, m)
 		w.state(&c, &s, pointer(i))

@@ -12,6 +12,7 @@ import (
 
 	"github.com/gin-gonic/gin"
 
+	"leat/api/admit"
 	"leat/api/format"
 	"leat/api/operation"
 	"leat/api/stream"
@@ -34,9 +35,17 @@ func (s *Server) bulk(op *operation.Operation) gin.HandlerFunc {
 			s.refuse(c, aboutToStop())
 			return
 		}
+		if s.tooOften(c) {
+			return
+		}
 		said, choice, problem := s.admitBulk(c)
 		// The request's own context ends when the pump has reading stopped, too, which is no sign of a client gone.
-		said.Begin = checkpoints(context.WithoutCancel(c.Request.Context()), s.config.TimeLimit)
+		slots := make([]*admit.Hold, s.admission.pool.Slots())
+		for worker := range slots {
+			slots[worker] = s.admission.pool.Hold(admit.Bulk)
+		}
+		slot := func(worker int) *admit.Hold { return slots[worker] }
+		said.Begin = checkpoints(context.WithoutCancel(c.Request.Context()), s.config.TimeLimit, slot)
 		var form *format.Bulk
 		if problem == nil {
 			form, problem = format.New(op, said.Options, choice, int(s.config.LineBytes))
@@ -45,6 +54,12 @@ func (s *Server) bulk(op *operation.Operation) gin.HandlerFunc {
 			s.refuse(c, problem)
 			return
 		}
+		if !s.admission.streams.Take() {
+			s.metrics.turnedAway.WithLabelValues(awayStreams).Inc()
+			s.refuse(c, tooManyStreams(s.config.Streams))
+			return
+		}
+		defer s.admission.streams.Leave()
 		// Without full duplex, net/http drops what it has not read of a chunked body at the first byte of the answer, and says nothing.
 		// The deadlines of the server give way to the pump's watch over progress.
 		control := http.NewResponseController(c.Writer)
@@ -53,12 +68,12 @@ func (s *Server) bulk(op *operation.Operation) gin.HandlerFunc {
 			s.refuse(c, internalFault())
 			return
 		}
-		s.pump(c, control, form.Open, choice.Out, answered)
+		s.pump(c, control, form.Open, slot, choice.Out, answered)
 	}
 }
 
 // pump runs one stream, which open begins, and ends its answer of some kind: cleanly, or broken off so that the client notices.
-func (s *Server) pump(c *gin.Context, control *http.ResponseController, open func(io.Reader) format.Stream, kind format.Kind, answered func(lines, problems int)) {
+func (s *Server) pump(c *gin.Context, control *http.ResponseController, open func(io.Reader) format.Stream, slot func(worker int) *admit.Hold, kind format.Kind, answered func(lines, problems int)) {
 	e := exchangeOf(c)
 	var panics atomic.Int32
 	past := time.Unix(1, 0)
@@ -74,6 +89,8 @@ func (s *Server) pump(c *gin.Context, control *http.ResponseController, open fun
 		Reader:   run.Reader,
 		Writer:   run.Writer,
 		Solver:   run.Solver,
+		Workers:  s.admission.pool.Slots(),
+		Slot:     func(worker int) stream.Slot { return slot(worker) },
 		Output:   output,
 		Flush:    control.Flush,
 		Store:    s.store,

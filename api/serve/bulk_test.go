@@ -19,6 +19,7 @@ import (
 	"github.com/go-json-experiment/json"
 	"go.uber.org/goleak"
 
+	"leat/api/admit"
 	"leat/api/format"
 	"leat/api/operation"
 	"leat/api/stream"
@@ -494,7 +495,7 @@ func TestPanicAfterBytesBreaksTheAnswer(t *testing.T) {
 			if problem != nil {
 				panic(problem)
 			}
-			r.pump(c, control, breakingWriter(form.Open), format.NDJSON, nil)
+			r.pump(c, control, breakingWriter(form.Open), func(int) *admit.Hold { return r.admission.pool.Hold(admit.Bulk) }, format.NDJSON, nil)
 		},
 	} {
 		t.Run(name, func(t *testing.T) {

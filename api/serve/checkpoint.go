@@ -3,14 +3,17 @@ package serve
 import (
 	"context"
 	"time"
+
+	"leat/api/admit"
 )
 
-// checkpoints returns what gives each long solve its checkpoint: it ends the solve past the time limit, which runs from its
-// beginning, and when the client has gone.
-func checkpoints(ctx context.Context, limit time.Duration) func() func() error {
-	return func() func() error {
-		deadline := time.Now().Add(limit)
+// checkpoints returns what gives each solve its checkpoint: it gives way to other work where that has its turn, and ends the solve past the
+// time limit, which runs from its beginning while it holds its slot, and when the client has gone. hold is the slot that a worker holds.
+func checkpoints(ctx context.Context, limit time.Duration, hold func(worker int) *admit.Hold) func(worker int) func() error {
+	return func(worker int) func() error {
+		slot, deadline := hold(worker), time.Now().Add(limit)
 		return func() error {
+			deadline = deadline.Add(slot.Checkpoint())
 			switch {
 			case ctx.Err() != nil:
 				return goneClient()

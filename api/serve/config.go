@@ -2,6 +2,7 @@ package serve
 
 import (
 	"os"
+	"runtime"
 	"time"
 
 	"leat/api/wire"
@@ -21,7 +22,15 @@ type Config struct {
 	Stations     int           // of a profile
 	ReportPoints int           // places at which a profile reports
 	Flows        int           // named flows of an appraisal
+	Work         int           // greatest estimated work of one request
 	TimeLimit    time.Duration // longest time of one calculation
+
+	Solves    int           // how many solve at once; 0 is one for each processor
+	Queue     int           // unary requests of long operations, and of short ones, that may wait for their turn
+	QueueWait time.Duration // longest time that they may wait
+	Streams   int           // bulk streams open at once
+	Rate      float64       // requests a second from each caller; 0 is no bound
+	Burst     int           // how many of them may come at once
 
 	IdleLimit   time.Duration // a bulk stream without progress in either direction is cut after this
 	SpoolDir    string        // folder for answers that a bulk client does not take yet
@@ -57,7 +66,12 @@ func Default() Config {
 		Stations:     limits.Stations,
 		ReportPoints: limits.ReportPoints,
 		Flows:        limits.Flows,
+		Work:         limits.Work,
 		TimeLimit:    10 * time.Second,
+		Queue:        256,
+		QueueWait:    500 * time.Millisecond,
+		Streams:      64,
+		Burst:        100,
 		IdleLimit:    30 * time.Second,
 		SpoolDir:     os.TempDir(),
 		MemoryBytes:  4 << 20,
@@ -67,4 +81,12 @@ func Default() Config {
 		DrainLimit:   25 * time.Second,
 		Connections:  4096,
 	}
+}
+
+// solves is how many solve at once.
+func (c *Config) solves() int {
+	if c.Solves == 0 {
+		return runtime.GOMAXPROCS(0)
+	}
+	return c.Solves
 }

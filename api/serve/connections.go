@@ -11,6 +11,7 @@ import (
 	"crypto/rand"
 	"github.com/prometheus/client_golang/prometheus"
 
+	"leat/api/admit"
 	"leat/api/wire"
 )
 
@@ -63,7 +64,7 @@ func sayFull(c *net.TCPConn) {
 	body := problem.AppendJSON(nil)
 	c.SetDeadline(time.Now().Add(closing))
 	fmt.Fprintf(c, "HTTP/1.1 503 Service Unavailable\r\nContent-Type: application/problem+json\r\nContent-Length: %d\r\nCache-Control: no-store\r\nRetry-After: %d\r\nRequest-Id: %s\r\nConnection: close\r\n\r\n%s",
-		len(body), retryAfter, id, body)
+		len(body), admit.Pause(0), id, body)
 	c.CloseWrite()
 	io.CopyN(io.Discard, c, keptBuffer)
 }

@@ -18,7 +18,13 @@ type limitsDocument struct {
 	Stations         int     `json:"stations,omitzero"`
 	ReportPoints     int     `json:"report_points,omitzero"`
 	Flows            int     `json:"flows"`
+	Work             int     `json:"work"`
 	TimeLimitSeconds float64 `json:"time_limit_seconds"`
+	Queue            int     `json:"queue"`
+	QueueWaitSeconds float64 `json:"queue_wait_seconds"`
+	Streams          int     `json:"streams"`
+	Rate             float64 `json:"requests_per_second"`
+	Burst            int     `json:"burst"`
 	IdleLimitSeconds float64 `json:"idle_limit_seconds"`
 	SpoolBytes       int64   `json:"spool_bytes"`
 	Connections      int     `json:"connections"`
@@ -33,7 +39,13 @@ func (s *Server) limitsDocument() limitsDocument {
 		ArrayItems:       s.limits.ArrayItems,
 		Points:           s.limits.Points,
 		Flows:            s.limits.Flows,
+		Work:             s.limits.Work,
 		TimeLimitSeconds: s.config.TimeLimit.Seconds(),
+		Queue:            s.config.Queue,
+		QueueWaitSeconds: s.config.QueueWait.Seconds(),
+		Streams:          s.config.Streams,
+		Rate:             s.config.Rate,
+		Burst:            s.config.Burst,
 		IdleLimitSeconds: s.config.IdleLimit.Seconds(),
 		SpoolBytes:       s.config.SpoolBytes,
 		Connections:      s.config.Connections,

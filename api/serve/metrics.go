@@ -9,6 +9,7 @@ import (
 	"github.com/prometheus/client_golang/prometheus"
 	"github.com/prometheus/client_golang/prometheus/collectors"
 
+	"leat/api/admit"
 	"leat/compute"
 )
 
@@ -34,6 +35,13 @@ const (
 	outcomePanic   = "panic"
 )
 
+// Reasons for which requests are turned away at the door, beside those of the pool.
+const (
+	awayRate    = "rate"
+	awayStreams = "streams"
+	awayBodies  = "held_bytes"
+)
+
 // metrics are all that /metrics tells of ourselves. Every label comes from a fixed list.
 type metrics struct {
 	registry *prometheus.Registry
@@ -43,9 +51,12 @@ type metrics struct {
 	refusals *prometheus.CounterVec
 	lines    *prometheus.CounterVec
 	refused  prometheus.Counter
+
+	turnedAway *prometheus.CounterVec
+	queueWait  prometheus.Histogram
 }
 
-func newMetrics(build Build, spoolBytes, heldBytes, connections func() int64) *metrics {
+func newMetrics(build Build, spoolBytes, heldBytes, connections func() int64, a *admission) *metrics {
 	m := &metrics{
 		registry: prometheus.NewRegistry(),
 		requests: prometheus.NewCounterVec(prometheus.CounterOpts{
@@ -71,6 +82,15 @@ func newMetrics(build Build, spoolBytes, heldBytes, connections func() int64) *m
 			Name: "leat_bulk_lines_total",
 			Help: "Bulk lines answered, by operation and outcome.",
 		}, []string{"operation", "outcome"}),
+		turnedAway: prometheus.NewCounterVec(prometheus.CounterOpts{
+			Name: "leat_turned_away_total",
+			Help: "Requests refused without being solved because there is too much to do, by reason: line_full, long_wait (refused at once), waited_long, held_bytes, streams, rate.",
+		}, []string{"reason"}),
+		queueWait: prometheus.NewHistogram(prometheus.HistogramOpts{
+			Name:    "leat_queue_wait_seconds",
+			Help:    "How long unary requests that were solved had waited for a slot.",
+			Buckets: []float64{100e-6, 1e-3, 5e-3, 10e-3, 25e-3, 50e-3, 100e-3, 250e-3, 500e-3, 1, 5},
+		}),
 	}
 	m.refused = prometheus.NewCounter(prometheus.CounterOpts{
 		Name: "leat_connections_refused_total",
@@ -97,10 +117,33 @@ func newMetrics(build Build, spoolBytes, heldBytes, connections func() int64) *m
 	})
 	info.Set(1)
 	m.registry.MustRegister(
-		m.requests, m.duration, m.solves, m.refusals, m.lines, m.refused, open, spool, held, info,
+		m.requests, m.duration, m.solves, m.refusals, m.lines, m.refused, m.turnedAway, m.queueWait, open, spool, held, info,
 		collectors.NewGoCollector(), collectors.NewProcessCollector(collectors.ProcessCollectorOpts{}),
 	)
+	m.admission(a)
 	return m
+}
+
+// admission registers what tells of slots and lines.
+func (m *metrics) admission(a *admission) {
+	gauge := func(name, help string, labels prometheus.Labels, value func() float64) {
+		m.registry.MustRegister(prometheus.NewGaugeFunc(prometheus.GaugeOpts{Name: name, Help: help, ConstLabels: labels}, value))
+	}
+	for _, class := range admit.Classes() {
+		labels := prometheus.Labels{"class": class.String()}
+		gauge("leat_queue_length", "What waits for a slot: short and long unary requests, and workers of bulk streams.", labels,
+			func() float64 { return float64(a.pool.Waiting(class)) })
+		gauge("leat_slots_held", "Slots in use, by the class of work.", labels, func() float64 { return float64(a.pool.Held(class)) })
+	}
+	gauge("leat_slots", "How many solves there may be at once.", nil, func() float64 { return float64(a.pool.Slots()) })
+	gauge("leat_slot_silence_seconds", "Longest time since a solve that holds a slot gave a sign of life.", nil, func() float64 { return a.pool.Silence().Seconds() })
+	gauge("leat_bulk_streams", "Bulk streams that are open.", nil, func() float64 { return float64(a.streams.Taken()) })
+	for _, reason := range admit.Reasons() {
+		m.turnedAway.WithLabelValues(string(reason))
+	}
+	for _, reason := range []string{awayRate, awayStreams, awayBodies} {
+		m.turnedAway.WithLabelValues(reason)
+	}
 }
 
 // prepare creates the series that are certain to occur, so that rates start from zero.

@@ -18,10 +18,16 @@ var (
 // livez says that the process answers; load does not matter to it.
 func (s *Server) livez(c *gin.Context) { writeProbe(c, aliveBody) }
 
-// readyz says whether to send requests here: not while draining, and not if the known answer comes out wrong.
+// readyz says whether to send requests here: not while draining, not while a solve is stuck, and not if the known
+// answer comes out wrong. It waits for no slot.
 func (s *Server) readyz(c *gin.Context) {
 	if s.unready.Load() {
 		s.writeProblem(c, wire.NotReady("The service is about to stop; send requests elsewhere."))
+		return
+	}
+	if silence := s.admission.pool.Silence(); silence > s.admission.stuck {
+		s.log.Error("a solve does not come to its end", "silent_seconds", silence.Seconds(), "request_id", exchangeOf(c).requestID)
+		s.writeProblem(c, wire.NotReady("A solve holds its slot and gives no sign of life; the process must be started anew."))
 		return
 	}
 	if err := s.known(); err != nil {

@@ -10,6 +10,7 @@ import (
 
 	"github.com/gin-gonic/gin"
 
+	"leat/api/admit"
 	"leat/api/format"
 	"leat/api/stream"
 	"leat/api/wire"
@@ -100,8 +101,8 @@ func fullHouse() *wire.Problem {
 	return wire.Saturated("Too many request bodies are held in memory at this moment; send the request again after the seconds in Retry-After.")
 }
 
-func noTurn() *wire.Problem {
-	return wire.Saturated("Too many requests are being solved at this moment; send the request again after the seconds in Retry-After.")
+func tooManyStreams(most int) *wire.Problem {
+	return wire.Saturated(fmt.Sprintf("As many bulk streams are open as may be at once, %d, the limit streams; send the request again after the seconds in Retry-After.", most))
 }
 
 func aboutToStop() *wire.Problem {
@@ -145,9 +146,6 @@ func kindLabel(p *wire.Problem) string {
 	return "other"
 }
 
-// retryAfter is the pause, in seconds, that a refusal for want of room asks for.
-const retryAfter = 1
-
 // writeProblem answers with a problem, whatever Accept says.
 func (s *Server) writeProblem(c *gin.Context, p *wire.Problem) {
 	e := exchangeOf(c)
@@ -160,8 +158,8 @@ func (s *Server) writeProblem(c *gin.Context, p *wire.Problem) {
 	h["Cache-Control"] = noStore
 	delete(h, "Etag")
 	h["Content-Length"] = []string{strconv.Itoa(len(body))}
-	if p.Status == http.StatusServiceUnavailable {
-		h["Retry-After"] = []string{strconv.Itoa(retryAfter)}
+	if p.Status == http.StatusServiceUnavailable && h["Retry-After"] == nil {
+		retryAfter(c, admit.Pause(0))
 	}
 	s.metrics.refusals.WithLabelValues(kindLabel(p)).Inc()
 	c.Writer.WriteHeader(p.Status)

@@ -45,6 +45,7 @@ type Server struct {
 	build        Build
 	known        func() error
 	metrics      *metrics
+	admission    *admission
 	bodies       *larder
 	answers      answers
 	limits       wire.Limits
@@ -75,9 +76,11 @@ func New(config Config, operations []*operation.Operation, around Surroundings) 
 		log:        around.Log,
 		build:      around.Build,
 		known:      around.Ready,
+		admission:  newAdmission(&config),
 		bodies:     newLarder(config.HeldBytes),
 		limits: wire.Limits{
 			ArrayItems: config.ArrayItems, Points: config.Points, Reaches: config.Reaches, Stations: config.Stations, ReportPoints: config.ReportPoints, Flows: config.Flows,
+			Work: config.Work,
 		},
 		store:    stream.NewStore(config.SpoolDir, config.MemoryBytes, config.SpoolBytes, config.SpoolTotal),
 		draining: make(chan struct{}),
@@ -98,7 +101,7 @@ func New(config Config, operations []*operation.Operation, around Surroundings) 
 	if err != nil {
 		return nil, err
 	}
-	s.metrics = newMetrics(around.Build, s.store.Used, s.bodies.held.Load, s.inside.Load)
+	s.metrics = newMetrics(around.Build, s.store.Used, s.bodies.held.Load, s.inside.Load, s.admission)
 	s.routes = s.plan(documents)
 	names := make([]string, len(operations))
 	for i, op := range operations {

@@ -42,7 +42,25 @@ var settings = []setting{
 	countSetting("stations", "most surveyed stations of a profile", 2, 1_000_000, func(c *Config) *int { return &c.Stations }),
 	countSetting("report-points", "most places at which a profile reports", 1, 10_000_000, func(c *Config) *int { return &c.ReportPoints }),
 	countSetting("flows", "most named flows of an appraisal", 1, 10_000, func(c *Config) *int { return &c.Flows }),
+	countSetting("work", "greatest work of one request, estimated from its sizes; a unit is about a microsecond of a processor", 1000, 1_000_000_000, func(c *Config) *int { return &c.Work }),
 	durationSetting("time-limit", "longest time of one calculation; beyond it 504", 100*time.Millisecond, 10*time.Minute, func(c *Config) *time.Duration { return &c.TimeLimit }),
+	countSetting("solves", "requests and bulk lines solved at once; 0 is one for each processor", 0, 1024, func(c *Config) *int { return &c.Solves }),
+	countSetting("queue", "requests that may wait to be solved, long ones (profiles) and short ones each; beyond it 503", 1, 100_000, func(c *Config) *int { return &c.Queue }),
+	durationSetting("queue-wait", "longest time that a request waits to be solved; one that would wait longer gets 503 at once", time.Millisecond, time.Minute, func(c *Config) *time.Duration { return &c.QueueWait }),
+	countSetting("streams", "bulk streams open at once; beyond it 503", 1, 100_000, func(c *Config) *int { return &c.Streams }),
+	{
+		"rate", "requests a second from each caller, told by its key or else its address, a bulk stream counting as one; beyond it 429; 0 is no bound", "0, or a number from 0.01 to 1000000",
+		func(c *Config, text string) error {
+			rate, err := strconv.ParseFloat(text, 64)
+			if err != nil || !(rate == 0 || rate >= 0.01 && rate <= 1e6) {
+				return errNotAccepted
+			}
+			c.Rate = rate
+			return nil
+		},
+		func(c *Config) string { return strconv.FormatFloat(c.Rate, 'g', -1, 64) }, false,
+	},
+	countSetting("burst", "requests that a caller may send at once before rate counts", 1, 1_000_000, func(c *Config) *int { return &c.Burst }),
 	durationSetting("idle-limit", "a bulk stream without progress is ended after this", time.Second, time.Hour, func(c *Config) *time.Duration { return &c.IdleLimit }),
 	{
 		name: "spool-dir", meaning: "folder for bulk answers that wait for a slow reader", accepted: "a folder that exists and can be written",

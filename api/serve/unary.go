@@ -1,11 +1,13 @@
 package serve
 
 import (
+	"net/http"
 	"sync"
 	"time"
 
 	"github.com/gin-gonic/gin"
 
+	"leat/api/admit"
 	"leat/api/format"
 	"leat/api/operation"
 	"leat/api/wire"
@@ -43,14 +45,23 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 	for i := range forms {
 		offers = append(offers, forms[i].MediaType)
 	}
-	turns := newTurns() // of its own, so that long solves do not keep short ones waiting
+	class := classOf(op)
 	return func(c *gin.Context) {
+		if s.tooOften(c) {
+			return
+		}
 		options, accepted, problem := s.admit(c, operation.Options{Fingerprint: true}, mediaJSON, offers...)
 		if problem != nil {
 			s.refuse(c, problem)
 			return
 		}
-		options.Begin = checkpoints(c.Request.Context(), s.config.TimeLimit)
+		if refusal := s.admission.pool.Full(class); refusal != nil { // most of those that are refused need not be read first
+			s.refuse(c, s.noSlot(c, refusal))
+			return
+		}
+		slot := s.admission.hold(class)
+		defer s.admission.put(class, slot)
+		options.Begin = checkpoints(c.Request.Context(), s.config.TimeLimit, func(int) *admit.Hold { return slot })
 		if len(c.Request.TransferEncoding) > 0 {
 			// net/http hides a Content-Length beside chunks. A proxy that went by it would see other requests on
 			// this connection than we do, so there must be no further ones (RFC 9112, 6.3).
@@ -58,25 +69,20 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 		}
 		body, problem := s.bodies.read(c.Request, limit)
 		if problem != nil {
+			if problem.Status == http.StatusServiceUnavailable {
+				s.metrics.turnedAway.WithLabelValues(awayBodies).Inc()
+			}
 			closeConnection(c) // what is left of the body is not worth reading
 			s.writeProblem(c, problem)
 			return
 		}
 		defer body.release()
-		if !turns.take(c.Request.Context(), s.config.TimeLimit) {
-			s.writeProblem(c, noTurn())
-			return
-		}
 		buffer := s.answers.get()
 		defer s.answers.put(buffer)
-		began := time.Now()
-		answer, media, problem := turns.use(func() ([]byte, []string, *wire.Problem) {
+		answer, media, problem := s.solve(c, slot, func() ([]byte, []string, *wire.Problem) {
 			return answerAs(op, forms, accepted, (*buffer)[:0], body.bytes, options)
 		})
 		*buffer = answer
-		if problem == nil && time.Since(began) > s.config.TimeLimit {
-			problem = lateAnswer(s.config.TimeLimit)
-		}
 		if problem != nil {
 			s.writeProblem(c, problem)
 			return
@@ -84,6 +90,21 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 		c.Writer.Header()["Content-Type"] = media
 		s.send(c, answer)
 	}
+}
+
+// solve has a request solved when there is a slot, which it gives back, after a panic too.
+func (s *Server) solve(c *gin.Context, slot *admit.Hold, solve func() ([]byte, []string, *wire.Problem)) ([]byte, []string, *wire.Problem) {
+	began := time.Now()
+	if err := slot.Acquire(c.Request.Context()); err != nil {
+		return nil, nil, s.noSlot(c, err)
+	}
+	defer slot.Release()
+	s.metrics.queueWait.Observe(time.Since(began).Seconds())
+	answer, media, problem := solve()
+	if problem == nil && slot.Spent() > s.config.TimeLimit {
+		problem = lateAnswer(s.config.TimeLimit)
+	}
+	return answer, media, problem
 }
 
 var jsonType = []string{mediaJSON}

@@ -10,6 +10,7 @@ import (
 
 	"github.com/go-json-experiment/json"
 
+	"leat/api/admit"
 	"leat/api/wire"
 )
 
@@ -193,13 +194,17 @@ func TestLateAnswerIs504(t *testing.T) {
 
 func TestCheckpointEndsALongSolve(t *testing.T) {
 	ctx, cancel := context.WithCancel(t.Context())
-	begin := checkpoints(ctx, 50*time.Millisecond)
-	first := begin()
+	slot := admit.New(admit.Settings{Slots: 1}).Hold(admit.Long)
+	if err := slot.Acquire(ctx); err != nil {
+		t.Fatal(err)
+	}
+	begin := checkpoints(ctx, 50*time.Millisecond, func(int) *admit.Hold { return slot })
+	first := begin(0)
 	if err := first(); err != nil {
 		t.Errorf("at once: %v", err)
 	}
 	time.Sleep(60 * time.Millisecond)
-	second := begin()
+	second := begin(0)
 	if err := second(); err != nil {
 		t.Errorf("the time of one solve counts against the next: %v", err)
 	}

@@ -16,7 +16,7 @@ import (
 // longOperation solves until its checkpoint ends it, or for a time that the body says.
 func longOperation(ended chan<- error) *operation.Operation {
 	return &operation.Operation{Name: "profile", Long: true, Solve: func(body []byte, options operation.Options) (operation.Solved, *wire.Problem) {
-		checkpoint := options.Begin()
+		checkpoint := options.Begin(options.Worker)
 		for {
 			if err := checkpoint(); err != nil {
 				ended <- err

@@ -34,8 +34,8 @@ type Pump struct {
 
 	// Workers solve at the same time; 0 means GOMAXPROCS.
 	Workers int
-	// Slot is held while solving; nil means FreeSlot.
-	Slot Slot
+	// Slot returns what a worker holds while it solves; nil means a FreeSlot for each.
+	Slot func(worker int) Slot
 	// Store gives the bounds of the answers that the client has not taken, and the folder for them; nil means
 	// DefaultMemory bytes in memory, and no further reading while they are full.
 	Store *Store

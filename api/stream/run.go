@@ -60,7 +60,7 @@ func newRun(p *Pump) *run {
 		r.Workers = runtime.GOMAXPROCS(0)
 	}
 	if r.Slot == nil {
-		r.Slot = FreeSlot{}
+		r.Slot = func(int) Slot { return FreeSlot{} }
 	}
 	if r.Store == nil {
 		r.Store = NewStore("", 0, 0, 0)

@@ -45,7 +45,7 @@ func TestASlotIsHeldBrieflyAndByOneAtATime(t *testing.T) {
 	var out bytes.Buffer
 	p := newPump(strings.NewReader(numbered(200)), &out)
 	slot := newOne()
-	p.Slot = slot
+	p.Slot = func(int) Slot { return slot }
 	var solving atomic.Int32
 	p.Solver = echo{before: func(int, Record) {
 		if solving.Add(1) > 1 {
@@ -74,7 +74,7 @@ func TestNoSlotIsHeldWhileTheClientIsAwaited(t *testing.T) {
 	out, sink := io.Pipe()
 	p := newPump(in, sink)
 	slot := newOne()
-	p.Slot = slot
+	p.Slot = func(int) Slot { return slot }
 	go func() {
 		io.WriteString(feed, numbered(10_000))
 		time.Sleep(20 * time.Millisecond)
@@ -101,7 +101,7 @@ func (s noSlot) Release()                      { panic("never acquired") }
 func TestASlotThatFailsBreaksOff(t *testing.T) {
 	closed := errors.New("no more slots")
 	p := newPump(strings.NewReader(numbered(10)), io.Discard)
-	p.Slot = noSlot{closed}
+	p.Slot = func(int) Slot { return noSlot{closed} }
 	_, err := p.Run(t.Context())
 	var broken *BrokenError
 	if !errors.As(err, &broken) || broken.Part != "slot" || !errors.Is(err, closed) {

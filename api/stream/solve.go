@@ -7,8 +7,9 @@ import (
 
 // solveAll is one worker: it answers the batches that it gets hold of.
 func (r *run) solveAll(worker int) {
+	slot := r.Slot(worker)
 	for b := range r.work {
-		if r.ctx.Err() != nil || !r.solve(worker, b) {
+		if r.ctx.Err() != nil || !r.solve(worker, slot, b) {
 			return
 		}
 		b.solved <- struct{}{}
@@ -17,7 +18,7 @@ func (r *run) solveAll(worker int) {
 
 // solve answers the records of a batch, and reports whether the run goes on. Where answers are long it hands them over in
 // pieces, and waits in between until the writer has come to them: what waits for its turn is bounded.
-func (r *run) solve(worker int, b *batch) bool {
+func (r *run) solve(worker int, slot Slot, b *batch) bool {
 	var spent time.Duration
 	for b.ready < len(b.records) {
 		if b.ready > b.first && len(b.out) >= batchAnswers {
@@ -30,11 +31,11 @@ func (r *run) solve(worker int, b *batch) bool {
 				return false
 			}
 		}
-		if err := r.Slot.Acquire(r.ctx); err != nil {
+		if err := slot.Acquire(r.ctx); err != nil {
 			r.abort(&BrokenError{Part: "slot", Err: err})
 			return false
 		}
-		spent += r.hold(worker, b)
+		spent += r.hold(worker, slot, b)
 		if r.ctx.Err() != nil {
 			return false
 		}
@@ -44,8 +45,8 @@ func (r *run) solve(worker int, b *batch) bool {
 }
 
 // hold answers records for as long as the slot, which it gives back, may be held, or until there is a piece to hand over.
-func (r *run) hold(worker int, b *batch) (held time.Duration) {
-	defer r.Slot.Release()
+func (r *run) hold(worker int, slot Slot, b *batch) (held time.Duration) {
+	defer slot.Release()
 	for start := time.Now(); b.ready < len(b.records) && held < SlotHold && len(b.out) < batchAnswers; held = time.Since(start) {
 		from := 0
 		if b.ready > 0 {

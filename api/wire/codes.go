@@ -19,6 +19,7 @@ const (
 // Codes of sizes beyond a limit (413).
 const (
 	codeTooManyItems = "too_many_items"
+	codeTooMuchWork  = "too_much_work"
 )
 
 // Codes of rules that valid JSON breaks (422). Geometry and friction have further ones of their own.

@@ -65,7 +65,7 @@ func (d *decoding) decode(body []byte, units System, limits *Limits, into Reques
 	d.walk.object(p, v)
 	common.System = units
 	if !d.walk.failed {
-		return nil
+		return tooMuchWork(into, limits)
 	}
 	return d.explain(body, units, limits, into, p, v)
 }

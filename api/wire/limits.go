@@ -8,11 +8,12 @@ type Limits struct {
 	Stations     int // surveyed stations of a profile
 	ReportPoints int // places at which a profile reports
 	Flows        int // named flows of an appraisal
+	Work         int // estimated work of a request, see Request; 0 is no limit
 }
 
 // DefaultLimits returns the limits that hold unless an operator sets others.
 func DefaultLimits() Limits {
-	return Limits{ArrayItems: 10_000, Points: 10_000, Reaches: 10_000, Stations: 10_000, ReportPoints: 50_000, Flows: 100}
+	return Limits{ArrayItems: 10_000, Points: 10_000, Reaches: 10_000, Stations: 10_000, ReportPoints: 50_000, Flows: 100, Work: 10_000_000}
 }
 
 // named returns a limit by the name that callers know.

@@ -101,7 +101,7 @@ func (w *worker) work(ctx context.Context, t *task, id *identity) error {
 	faults := t.faults
 	t.at = row.OfTime(time.Now())
 	checkpoint := func() error { return context.Cause(ctx) }
-	w.options.Begin = func() func() error { return checkpoint }
+	w.options.Begin = func(int) func() error { return checkpoint }
 	for i := range rows {
 		if i%64 == 0 && ctx.Err() != nil {
 			return context.Cause(ctx)
