@@ -55,14 +55,17 @@ func (d *doorkeeper) Accept() (net.Conn, error) {
 	}
 }
 
-// sayFull answers a request that was not read yet. What the client sends meanwhile is dropped, since to close with it unread would
-// break the connection before the answer is there.
+// sayFull answers a request once it has begun, since clients take an answer that comes before their request for none. What is sent is dropped;
+// to close with it unread would break the connection before the answer is there.
 func sayFull(c *net.TCPConn) {
 	id := rand.Text()
 	problem := wire.Saturated("As many connections as the service takes are open at this moment; send the request again after the seconds in Retry-After.")
 	problem.Instance = "urn:request:" + id
 	body := problem.AppendJSON(nil)
 	c.SetDeadline(time.Now().Add(closing))
+	if n, _ := c.Read(make([]byte, 1<<10)); n == 0 {
+		return
+	}
 	fmt.Fprintf(c, "HTTP/1.1 503 Service Unavailable\r\nContent-Type: application/problem+json\r\nContent-Length: %d\r\nCache-Control: no-store\r\nRetry-After: %d\r\nRequest-Id: %s\r\nConnection: close\r\n\r\n%s",
 		len(body), admit.Pause(0), id, body)
 	c.CloseWrite()

@@ -2,6 +2,7 @@ package serve
 
 import (
 	"fmt"
+	"math/rand/v2"
 	"strings"
 	"testing"
 
@@ -95,16 +96,38 @@ func TestCallersCannotMakeSeries(t *testing.T) {
 		return n
 	}
 	before := count()
-	client := r.client()
-	for i := range 500 {
-		for _, target := range []struct{ method, path string }{{"GET", fmt.Sprintf("/path-%d", i)}, {fmt.Sprintf("METHOD%d", i), "/v1/depths"}} {
-			request := newRequest(t, target.method, r.url(target.path))
-			response, err := client.Do(request)
-			if err != nil {
-				t.Fatal(err)
-			}
-			response.Body.Close()
+	// Ten thousand, over one connection after the other, with methods that there are and paths that nearly are.
+	random := rand.New(rand.NewPCG(5, 21))
+	letters := func() string {
+		text := make([]byte, 1+random.IntN(12))
+		for i := range text {
+			text[i] = byte('A' + random.IntN(26))
 		}
+		return string(text)
+	}
+	for sent := 0; sent < 10_000; {
+		var batch strings.Builder
+		const together = 100
+		for i := range together {
+			method, path := letters(), "/"+strings.ToLower(letters())
+			switch random.IntN(4) {
+			case 0:
+				method = methods[random.IntN(len(methods))]
+			case 1:
+				path = r.routes[random.IntN(len(r.routes))].path
+			case 2:
+				path = "/v1/" + strings.ToLower(letters()) + "?" + letters()
+			}
+			closes := ""
+			if i == together-1 {
+				closes = "Connection: close\r\n"
+			}
+			fmt.Fprintf(&batch, "%s %s HTTP/1.1\r\nHost: leat\r\nContent-Length: 0\r\n%s\r\n", method, path, closes)
+		}
+		if got := strings.Count(r.converse(batch.String(), false), "HTTP/1.1 "); got != together {
+			t.Fatalf("%d answers to %d requests", got, together)
+		}
+		sent += together
 	}
 	if after := count(); after > before+2 {
 		t.Errorf("%d series more", after-before)

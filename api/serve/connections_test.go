@@ -1,0 +1,138 @@
+package serve
+
+import (
+	"bufio"
+	"io"
+	"net"
+	"net/http"
+	"strings"
+	"testing"
+	"time"
+
+	"github.com/prometheus/client_golang/prometheus/testutil"
+)
+
+func TestConnectionsAreBounded(t *testing.T) {
+	r := start(t, func(c *Config, _ *Surroundings) { c.Connections, c.AdminListen = 3, "127.0.0.1:0" })
+	var held []*net.TCPConn
+	for range 3 {
+		held = append(held, r.dial())
+	}
+	waitFor(t, "three connections", func() bool { return r.inside.Load() == 3 })
+	for range 5 {
+		got := r.exchangeRaw("POST /v1/depths HTTP/1.1\r\nHost: leat\r\nContent-Type: application/json\r\nContent-Length: 2\r\n\r\n{}")
+		response, err := http.ReadResponse(bufio.NewReader(strings.NewReader(got)), nil)
+		if err != nil {
+			t.Fatalf("%q: %v", got, err)
+		}
+		body, err := io.ReadAll(response.Body)
+		if err != nil || !response.Close || response.Header.Get("Retry-After") == "" {
+			t.Errorf("%v %v", err, response.Header)
+		}
+		reply{response.StatusCode, response.Header, body}.problem(t, 503)
+	}
+	// Probes have another door.
+	probe, err := http.Get("http://" + r.AdminAddress().String() + "/readyz")
+	if err != nil || probe.StatusCode != 200 {
+		t.Errorf("probe: %v, %v", probe, err)
+	} else {
+		probe.Body.Close()
+	}
+	http.DefaultClient.CloseIdleConnections()
+	held[0].Close()
+	waitFor(t, "a place", func() bool { return r.inside.Load() == 2 })
+	if got := r.send("POST", "/v1/depths", "{}", "Content-Type", jsonHeader); got.status != 200 {
+		t.Errorf("with a place: %d", got.status)
+	}
+	if n := testutil.ToFloat64(r.metrics.refused); n != 5 {
+		t.Errorf("counted %v refused connections", n)
+	}
+}
+
+func TestCrowdBeforeTLSIsSentAway(t *testing.T) {
+	a := newAuthority(t, "ours")
+	r, _ := startTLS(t, a, nil)
+	r.inside.Store(int64(r.config.Connections))
+	if _, err := ask(t, a.secureClient(false, "", ""), "GET", "https://"+r.address+"/livez", ""); err == nil {
+		t.Error("let in beyond the bound")
+	}
+	r.inside.Store(0)
+	if _, err := ask(t, a.secureClient(false, "", ""), "GET", "https://"+r.address+"/livez", ""); err != nil {
+		t.Error(err)
+	}
+}
+
+// TestSlowSocketsAreCut: hundreds of clients that send their header or body by drops, or read nothing, are cut at the limits, while others are served.
+func TestSlowSocketsAreCut(t *testing.T) {
+	const each, readers = 150, 10
+	r := start(t, func(c *Config, _ *Surroundings) { c.HeldBytes = 64 << 20 }, func(s *http.Server) {
+		s.ReadHeaderTimeout, s.ReadTimeout, s.WriteTimeout = 2*time.Second, 3*time.Second, 4*time.Second
+	})
+	began := time.Now()
+	cut := make(chan string, 2*each)
+	for _, kind := range []struct {
+		name, first, drop string
+		count             int
+	}{
+		{"header", "POST /v1/depths HTTP/1.1\r\n", "X: y\r\n", each},
+		{"body", "POST /v1/depths HTTP/1.1\r\nHost: leat\r\nContent-Type: application/json\r\nContent-Length: 100000\r\n\r\n{", " ", each},
+		{"reader", "POST /v1/depths HTTP/1.1\r\nHost: leat\r\nContent-Type: application/json\r\nContent-Length: 17\r\n\r\n{\"bytes\":9000000}", "", readers},
+	} {
+		for range kind.count {
+			c := r.dial()
+			if kind.drop == "" {
+				c.SetReadBuffer(4 << 10) // so that the kernel does not take what the reader leaves
+			}
+			io.WriteString(c, kind.first)
+			if kind.drop == "" {
+				continue // open and unread until the test ends: only the server can close it
+			}
+			go func() {
+				for {
+					if _, err := io.WriteString(c, kind.drop); err != nil {
+						cut <- kind.name
+						return
+					}
+					time.Sleep(100 * time.Millisecond)
+				}
+			}()
+		}
+	}
+	client := r.client()
+	for time.Since(began) < 2*time.Second {
+		for _, target := range []string{"/v1/section", "/readyz"} {
+			method := http.MethodPost
+			if target == "/readyz" {
+				method = http.MethodGet
+			}
+			request, err := http.NewRequest(method, r.url(target), strings.NewReader("{}"))
+			if err != nil {
+				t.Fatal(err)
+			}
+			request.Header.Set("Content-Type", jsonHeader)
+			response, err := client.Do(request)
+			if err != nil {
+				t.Fatalf("%s beside slow sockets: %v", target, err)
+			}
+			io.Copy(io.Discard, response.Body)
+			response.Body.Close()
+			if response.StatusCode != 200 {
+				t.Errorf("%s beside slow sockets: %s", target, response.Status)
+			}
+		}
+	}
+	count := map[string]int{}
+	for range 2 * each {
+		select {
+		case name := <-cut:
+			count[name]++
+		case <-time.After(20 * time.Second):
+			t.Fatalf("cut after 20 s more: %v", count)
+		}
+	}
+	if count["header"] != each || count["body"] != each {
+		t.Errorf("%v", count)
+	}
+	waitFor(t, "the connections to be closed", func() bool { return r.inside.Load() <= 2 })
+	waitFor(t, "the bodies to be let go", func() bool { return r.bodies.held.Load() == 0 })
+}
