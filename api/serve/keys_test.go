@@ -7,6 +7,8 @@ import (
 	"path/filepath"
 	"strings"
 	"testing"
+
+	"leat/openapi"
 )
 
 // line is a line of a keys file.
@@ -54,6 +56,13 @@ func TestKeysFile(t *testing.T) {
 		if err != nil && strings.Contains(err.Error(), "PLAINKEY") {
 			t.Errorf("the error repeats what may be a key: %v", err)
 		}
+	}
+}
+
+// The contract shows the text as it is; no request of its examples can provoke it, since keys are a setting.
+func TestContractShowsWhatAMissingKeyIsTold(t *testing.T) {
+	if !strings.Contains(string(openapi.YAML), noKey().Detail) {
+		t.Errorf("the contract does not show %q", noKey().Detail)
 	}
 }
 
