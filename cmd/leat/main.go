@@ -17,6 +17,7 @@ const (
   leat serve      start the HTTP service; leat serve --help lists its settings
   leat register   carry a register of assets through a mapping file; leat register --help tells more
   leat key        make a caller's key and its line for --keys-file; leat key --help tells more
+  leat drive      make load on a service in staging; leat drive --help tells more
   leat health     ask a running service whether it is ready; exit code 0 if so, else 1
   leat version    say what this binary is
   leat help       this text
@@ -43,12 +44,14 @@ func run(arguments, environment []string, stdout, stderr io.Writer) int {
 		return runRegister(rest, stdout, stderr)
 	case "key":
 		return runKey(rest, stdout, stderr)
+	case "drive":
+		return runDrive(rest, stdout, stderr)
 	case "health":
 		return runHealth(rest, environment, stdout, stderr)
 	case "version", "--version":
 		return runVersion(rest, stdout, stderr)
 	case "help", "--help", "-h":
-		if len(rest) == 1 && (rest[0] == "serve" || rest[0] == "health" || rest[0] == "key" || rest[0] == "register") {
+		if len(rest) == 1 && (rest[0] == "serve" || rest[0] == "health" || rest[0] == "key" || rest[0] == "register" || rest[0] == "drive") {
 			return run([]string{rest[0], "--help"}, environment, stdout, stderr)
 		}
 		fmt.Fprint(stdout, usageMessage)

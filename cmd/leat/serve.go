@@ -9,6 +9,7 @@ import (
 	"log/slog"
 	"os"
 	"os/signal"
+	"runtime"
 	"syscall"
 
 	"leat/api/operation"
@@ -32,6 +33,10 @@ func runServe(arguments, environment []string, stdout, stderr io.Writer) int {
 	defer stop()
 	log := serve.NewLog(stderr)
 	memory := limitMemory(environment)
+	if config.Solves == 0 {
+		config.Solves = runtime.GOMAXPROCS(0)
+	}
+	defer runtime.GOMAXPROCS(runtime.GOMAXPROCS(config.Solves + edgeThreads))
 	if err := serveUntil(ctx, config, memory, log); err != nil {
 		log.Error("stopped", slog.String("error", err.Error()))
 		return exitFailed
@@ -39,6 +44,10 @@ func runServe(arguments, environment []string, stdout, stderr io.Writer) int {
 	log.Info("stopped")
 	return exitOK
 }
+
+// edgeThreads is how many threads may run Go beside those that solve: for them Go's scheduler, which would let a ready goroutine wait for solvers
+// that never block, has a thread of its own, and the operating system shares the processors among all, in slices of a few milliseconds.
+const edgeThreads = 1
 
 // serveUntil wires the service together, serves until ctx is done, and stops it gracefully. A second signal changes nothing.
 func serveUntil(ctx context.Context, config serve.Config, memory int64, log *slog.Logger) error {
