@@ -44,6 +44,7 @@ func solveAppraisal(r *wire.AppraisalRequest, options *Options) (wire.Answer, *w
 	var overall appraise.Overall
 	var room flow.Room
 	findings := make([]appraise.Finding, 0, limits.Given.Len())
+	var unjudged openFindings
 	for i := range flows {
 		if err := checkpoint(); err != nil {
 			return nil, stopped(err)
@@ -58,17 +59,52 @@ func solveAppraisal(r *wire.AppraisalRequest, options *Options) (wire.Answer, *w
 		j := asset.Judge(f.Discharge, &d, &limits, judged(r, f.Name), findings[:0])
 		overall.Add(i, j.Findings)
 		describeJudgement(f, r, &j)
+		unjudged.gather(at, j.Findings)
 		if r.Bend.Given {
 			w.bend(&asset.Channel, &d, &j)
 		}
 	}
-	a.Verdict = overall.Verdict().String()
+	verdict := overall.Verdict()
+	a.Verdict = verdict.String()
+	if verdict == appraise.Undetermined {
+		w.undetermined(unjudged)
+	}
 	a.Governing = wire.Governing{Value: math.NaN(), Limit: math.NaN()}
 	if i, f, known := overall.Governing(); known {
 		a.Governing = wire.Governing{Known: true, Flow: flows[i].Name, Criterion: wire.Criterion(f.Criterion.String()), Value: f.Value, Limit: f.Limit}
 	}
 	a.Warnings = w.done()
 	return a, nil
+}
+
+// openFindings are the findings that could not be judged, each with the pointer of its flow: what an answer without findings, one row of a table, says of its verdict.
+type openFindings []openFinding
+
+type openFinding struct {
+	flow    string
+	finding appraise.Finding
+}
+
+func (o *openFindings) gather(flow string, findings []appraise.Finding) {
+	for _, f := range findings {
+		if f.Met == appraise.Unknown && f.Applies() {
+			*o = append(*o, openFinding{flow, f})
+		}
+	}
+}
+
+// undetermined says why a verdict is open: each criterion and reason once.
+func (w *warnings) undetermined(open openFindings) {
+	for _, o := range open {
+		detail := o.finding.Criterion.String() + " could not be judged."
+		if o.finding.Reason.Detail != "" {
+			detail = o.finding.Criterion.String() + " could not be judged: " + o.finding.Reason.Detail
+		}
+		w.add("undetermined", o.flow, detail)
+	}
+	if len(open) == 0 {
+		w.add("undetermined", "/criteria", "No criterion applies to this section and its flows, so that there is nothing to judge.")
+	}
 }
 
 // stopped returns the problem of a solve that its checkpoint ended.

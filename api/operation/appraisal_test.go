@@ -166,8 +166,14 @@ func TestAppraisalWarnings(t *testing.T) {
 		{`"section":{"kind":"circular","diameter":0.5},"roughness":{"manning":0.013},"bed_slope":0.002,"flows":{"ten/year":0.6},"criteria":{"greatest_fill":0.8},"bend":{"radius":9}`,
 			"surcharged /flows/ten~1year bend_in_closed_section /bend"},
 		{`"section":{"kind":"rectangular","bottom_width":2,"bank_height":2},"bed_slope":0.01,"flows":{"a":1},"criteria":{"least_freeboard":0.1},"lining":{"kind":"gravel","stone_size":40,"angle_of_repose":80},"bend":{"radius":5}`,
-			"unusual_value /lining/stone_size unusual_value /lining/angle_of_repose"},
-		{appraisedDitch + `,"flows":{"a":0.4,"b":0.5},"criteria":{"least_freeboard":0.1},"bend":{"radius":0.5}`, "bend_too_tight /bend/radius"},
+			"unusual_value /lining/stone_size unusual_value /lining/angle_of_repose undetermined /flows/a"},
+		{appraisedDitch + `,"flows":{"a":0.4,"b":0.5},"criteria":{"least_freeboard":0.1},"bend":{"radius":0.5}`, "bend_too_tight /bend/radius undetermined /flows/a"},
+		// Why a verdict is open is told of each criterion once, and only where it is open.
+		{`"section":{"kind":"rectangular","bottom_width":2},"roughness":{"manning":0.013},"bed_slope":0.01,"flows":{"a":1,"b":2},"criteria":{"least_freeboard":0.1,"least_lining_safety":1}`,
+			"undetermined /flows/a undetermined /flows/a"},
+		{`"section":{"kind":"rectangular","bottom_width":2},"roughness":{"manning":0.013},"bed_slope":0.01,"flows":{"a":1},"criteria":{"least_freeboard":0.1,"greatest_velocity":0.2}`, ""},
+		{`"section":{"kind":"rectangular","bottom_width":2,"bank_height":2},"roughness":{"manning":0.013},"bed_slope":0,"flows":{"a":1},"criteria":{"least_freeboard":0.1}`, "undetermined /flows/a"},
+		{`"section":{"kind":"circular","diameter":2},"roughness":{"manning":0.013},"bed_slope":0.01,"flows":{"a":1},"criteria":{"freeboard_rule":"canal"}`, "undetermined /criteria"},
 	} {
 		a, text := appraiseBody(t, `{`+c.body+`}`)
 		var got []string
