@@ -3,10 +3,11 @@ package serve
 import (
 	"crypto/sha256"
 	"encoding/hex"
-	"fmt"
+	"log/slog"
 	"net/http"
 	"strconv"
 	"strings"
+	"sync"
 
 	"github.com/gin-gonic/gin"
 	"github.com/go-json-experiment/json"
@@ -16,14 +17,20 @@ import (
 	"leat/api/wire"
 )
 
-// A document is one representation of a GET route, made at the start and never changed.
+// A document is one representation of a GET route, made when it is first asked for and never changed: most replicas are never asked, and
+// what conversion and compression leave behind would be half of an idle process.
 type document struct {
-	media string
+	media   string
+	class   string // Cache-Control
+	rules   string // Content-Security-Policy, where it is not that of all answers
+	content func() (content, error)
+}
+
+// content is the bytes of a document.
+type content struct {
 	body  []byte
-	tag   string // entity tag, without its quotation marks and what it bears for a coding
-	class string // Cache-Control
-	rules string // Content-Security-Policy, where it is not that of all answers
-	coded map[coding][]byte
+	tag   string                   // entity tag, without its quotation marks and what it bears for a coding
+	coded map[coding]func() []byte // where it is worth it
 }
 
 // How long documents may be kept: those that change with the binary a little while, those that change with the settings not without asking.
@@ -33,20 +40,30 @@ const (
 )
 
 func newDocument(media, class string, body []byte) document {
-	sum := sha256.Sum256(body)
-	d := document{media: media, body: body, tag: hex.EncodeToString(sum[:12]), class: class}
-	if len(body) >= leastCoded {
-		d.coded = map[coding][]byte{gzipCoding: gzipCoding.encode(nil, body), zstdCoding: zstdCoding.encode(nil, body)}
-	}
-	return d
+	return lateDocument(media, class, func() ([]byte, error) { return body, nil })
+}
+
+// lateDocument is a document whose text is made at the first request.
+func lateDocument(media, class string, text func() ([]byte, error)) document {
+	return document{media: media, class: class, content: sync.OnceValues(func() (content, error) {
+		body, err := text()
+		if err != nil {
+			return content{}, err
+		}
+		sum := sha256.Sum256(body)
+		made := content{body: body, tag: hex.EncodeToString(sum[:12])}
+		if len(body) >= leastCoded {
+			made.coded = map[coding]func() []byte{}
+			for _, c := range []coding{gzipCoding, zstdCoding} {
+				made.coded[c] = sync.OnceValue(func() []byte { return c.encode(nil, body) })
+			}
+		}
+		return made, nil
+	})}
 }
 
 // documents builds the GET documents.
 func (s *Server) documents(contract []byte) ([]route, error) {
-	contractJSON, err := yamlToJSON(contract)
-	if err != nil {
-		return nil, fmt.Errorf("the contract cannot be turned into JSON: %w", err)
-	}
 	limits, err := encode(s.limitsDocument())
 	if err != nil {
 		return nil, err
@@ -68,7 +85,7 @@ func (s *Server) documents(contract []byte) ([]route, error) {
 		s.get("/v1/units", newDocument(mediaJSON, keepAWhile, append(units, '\n'))),
 		s.get("/version", newDocument(mediaJSON, keepAndAsk, version)),
 		s.get("/openapi.yaml", newDocument(mediaYAML, keepAWhile, contract)),
-		s.get("/openapi.json", newDocument(mediaJSON, keepAWhile, contractJSON)),
+		s.get("/openapi.json", lateDocument(mediaJSON, keepAWhile, func() ([]byte, error) { return yamlToJSON(contract) })),
 		s.get("/", newPage(site.Page()), newDocument(mediaJSON, keepAWhile, site.Links())),
 	}, problems...), nil
 }
@@ -132,20 +149,26 @@ func (s *Server) show(representations ...document) gin.HandlerFunc {
 		}
 		for i, d := range representations {
 			if offers[i] == chosen {
-				d.write(c)
+				s.writeDocument(c, &d)
 				return
 			}
 		}
 	}
 }
 
-func (d *document) write(c *gin.Context) {
+func (s *Server) writeDocument(c *gin.Context, d *document) {
+	made, err := d.content()
+	if err != nil {
+		s.log.Error("a document cannot be made", slog.String("request_id", exchangeOf(c).requestID), slog.String("error", err.Error()))
+		s.writeProblem(c, internalFault())
+		return
+	}
 	h := c.Writer.Header()
-	body, tag := d.body, `"`+d.tag+`"`
-	if d.coded != nil {
+	body, tag := made.body, `"`+made.tag+`"`
+	if made.coded != nil {
 		addVary(h, "Accept-Encoding")
 		if chosen := chooseCoding(c.Request.Header); chosen != identity {
-			body, tag = d.coded[chosen], `"`+d.tag+"-"+string(chosen)+`"` // other bytes, so another tag
+			body, tag = made.coded[chosen](), `"`+made.tag+"-"+string(chosen)+`"` // other bytes, so another tag
 			h["Content-Encoding"] = []string{string(chosen)}
 		}
 	}

@@ -146,6 +146,21 @@ func (m *metrics) admission(a *admission) {
 	}
 }
 
+// bounds registers the limits that gauges run up against, so that alerts need not know the settings.
+func (m *metrics) bounds(config Config) {
+	for _, bound := range []struct {
+		name, help string
+		value      int64
+	}{
+		{"leat_spool_limit_bytes", "Most bytes of bulk answers that may wait in spool files.", config.SpoolTotal},
+		{"leat_held_limit_bytes", "Most bytes of request bodies of unary operations that are held in memory.", config.HeldBytes},
+	} {
+		gauge := prometheus.NewGauge(prometheus.GaugeOpts{Name: bound.name, Help: bound.help})
+		gauge.Set(float64(bound.value))
+		m.registry.MustRegister(gauge)
+	}
+}
+
 // prepare creates the series that are certain to occur, so that rates start from zero.
 func (m *metrics) prepare(routes []route, operations []string) {
 	for _, r := range routes {

@@ -108,6 +108,7 @@ func New(config Config, operations []*operation.Operation, around Surroundings) 
 		names[i] = op.Name
 	}
 	s.metrics.prepare(s.routes, names)
+	s.metrics.bounds(config)
 
 	s.http = s.newHTTP(s.router(s.routes, s.authorize), bodyTime+config.TimeLimit+answerTime)
 	if config.AdminListen != "" {
