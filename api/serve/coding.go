@@ -102,9 +102,17 @@ func (c coding) encode(dst, body []byte) []byte {
 	return append(dst, body...)
 }
 
-// send answers 200 with a whole body whose other headers are set, coded where the request asks for it and it is worth it.
-func (s *Server) send(c *gin.Context, body []byte) {
+// send answers 200 with a whole body, coded where the request asks for it and it is worth it; 503 where too many large ones wait for their readers.
+func (s *Server) send(c *gin.Context, media []string, body []byte) {
+	if size := int64(len(body)); size >= largeAnswer {
+		if !s.shelf.take(size) {
+			s.writeProblem(c, fullShelf())
+			return
+		}
+		defer s.shelf.give(size)
+	}
 	h := c.Writer.Header()
+	h["Content-Type"] = media
 	if len(body) >= leastCoded {
 		addVary(h, "Accept-Encoding")
 		if chosen := chooseCoding(c.Request.Header); chosen != identity {

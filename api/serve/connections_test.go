@@ -65,7 +65,7 @@ func TestCrowdBeforeTLSIsSentAway(t *testing.T) {
 // TestSlowSocketsAreCut: hundreds of clients that send their header or body by drops, or read nothing, are cut at the limits, while others are served.
 func TestSlowSocketsAreCut(t *testing.T) {
 	const each, readers = 150, 10
-	r := start(t, func(c *Config, _ *Surroundings) { c.HeldBytes = 64 << 20 }, func(s *http.Server) {
+	r := start(t, func(c *Config, _ *Surroundings) { c.HeldBytes = 128 << 20 }, func(s *http.Server) {
 		s.ReadHeaderTimeout, s.ReadTimeout, s.WriteTimeout = 2*time.Second, 3*time.Second, 4*time.Second
 	})
 	began := time.Now()
@@ -135,4 +135,25 @@ func TestSlowSocketsAreCut(t *testing.T) {
 	}
 	waitFor(t, "the connections to be closed", func() bool { return r.inside.Load() <= 2 })
 	waitFor(t, "the bodies to be let go", func() bool { return r.bodies.held.Load() == 0 })
+}
+
+// Readers that take nothing hold so much memory and no more: beyond it answers are refused, small ones are not.
+func TestLargeAnswersThatWaitAreBounded(t *testing.T) {
+	r := start(t, func(c *Config, _ *Surroundings) { c.HeldBytes = 20 << 20 }, func(s *http.Server) { s.WriteTimeout = 3 * time.Second })
+	const request = "POST /v1/depths HTTP/1.1\r\nHost: leat\r\nContent-Type: application/json\r\nContent-Length: 18\r\n\r\n{\"bytes\":19000000}"
+	c := r.dial()
+	c.SetReadBuffer(4 << 10)
+	io.WriteString(c, request)
+	waitFor(t, "an answer to wait", func() bool { return r.shelf.held.Load() > 0 })
+	if got := r.send("POST", "/v1/depths", `{"bytes":9000000}`, "Content-Type", jsonHeader); got.status != 503 || got.header.Get("Retry-After") == "" {
+		t.Errorf("with no room: %d", got.status)
+	}
+	if got := r.send("POST", "/v1/depths", `{"bytes":100000}`, "Content-Type", jsonHeader); got.status != 200 {
+		t.Errorf("with room for a small one: %d", got.status)
+	}
+	waitFor(t, "the reader to be cut", func() bool { return r.shelf.held.Load() == 0 })
+	// One alone may be larger than all the room.
+	if got := r.send("POST", "/v1/depths", `{"bytes":30000000}`, "Content-Type", jsonHeader); got.status != 200 || len(got.body) < 30000000 {
+		t.Errorf("alone: %d", got.status)
+	}
 }

@@ -106,7 +106,7 @@ func newMetrics(build Build, spoolBytes, heldBytes, connections func() int64, a 
 	}, func() float64 { return float64(spoolBytes()) })
 	held := prometheus.NewGaugeFunc(prometheus.GaugeOpts{
 		Name: "leat_held_bytes",
-		Help: "Request bodies of unary operations held in memory.",
+		Help: "Request bodies of unary operations, and their large answers that wait for readers, held in memory.",
 	}, func() float64 { return float64(heldBytes()) })
 	info := prometheus.NewGauge(prometheus.GaugeOpts{
 		Name: "leat_build_info",

@@ -105,6 +105,10 @@ func tooManyStreams(most int) *wire.Problem {
 	return wire.Saturated(fmt.Sprintf("As many bulk streams are open as may be at once, %d, the limit streams; send the request again after the seconds in Retry-After.", most))
 }
 
+func fullShelf() *wire.Problem {
+	return wire.Saturated("Too many large answers wait in memory for their readers at this moment; send the request again after the seconds in Retry-After, or ask for less at once.")
+}
+
 func aboutToStop() *wire.Problem {
 	return wire.Draining("The service is about to stop and takes no new bulk streams; send the request again after the seconds in Retry-After.")
 }

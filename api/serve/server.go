@@ -48,6 +48,7 @@ type Server struct {
 	admission    *admission
 	bodies       *larder
 	answers      answers
+	shelf        shelf
 	limits       wire.Limits
 	store        *stream.Store
 	routes       routes
@@ -78,6 +79,7 @@ func New(config Config, operations []*operation.Operation, around Surroundings) 
 		known:      around.Ready,
 		admission:  newAdmission(&config),
 		bodies:     newLarder(config.HeldBytes),
+		shelf:      shelf{room: config.HeldBytes},
 		limits: wire.Limits{
 			ArrayItems: config.ArrayItems, Points: config.Points, Reaches: config.Reaches, Stations: config.Stations, ReportPoints: config.ReportPoints, Flows: config.Flows,
 			Work: config.Work,

@@ -35,7 +35,7 @@ var settings = []setting{
 	bytesSetting("body-bytes", "greatest request body of a unary operation", 1<<10, 64<<20, func(c *Config) *int64 { return &c.BodyBytes }),
 	bytesSetting("profile-body-bytes", "greatest request body of a profile", 1<<10, 1<<30, func(c *Config) *int64 { return &c.ProfileBytes }),
 	bytesSetting("line-bytes", "greatest record of a bulk request", 1<<10, 64<<20, func(c *Config) *int64 { return &c.LineBytes }),
-	bytesSetting("held-bytes", "request bodies held in memory at once; beyond it 503", 1<<20, 64<<30, func(c *Config) *int64 { return &c.HeldBytes }),
+	bytesSetting("held-bytes", "request bodies held in memory at once, and as much again of answers that wait for their readers; beyond it 503", 1<<20, 64<<30, func(c *Config) *int64 { return &c.HeldBytes }),
 	countSetting("array-items", "greatest length of a list in a request that has no limit of its own", 1, 1_000_000, func(c *Config) *int { return &c.ArrayItems }),
 	countSetting("points", "most points of a surveyed section", 3, 1_000_000, func(c *Config) *int { return &c.Points }),
 	countSetting("reaches", "most reaches of a profile", 1, 1_000_000, func(c *Config) *int { return &c.Reaches }),

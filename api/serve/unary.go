@@ -87,8 +87,7 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 			s.writeProblem(c, problem)
 			return
 		}
-		c.Writer.Header()["Content-Type"] = media
-		s.send(c, answer)
+		s.send(c, media, answer)
 	}
 }
 
