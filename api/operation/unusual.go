@@ -20,6 +20,8 @@ var (
 	usualChezy     = usual{3, 200, "outside 3 to 200 m^(1/2)/s (5 to 360 ft^(1/2)/s); check its unit"}
 	usualSand      = usual{0, 1, "more than 1 m (3.3 ft); check its unit, which is not the millimetre"}
 	usualConduit   = usual{0.02, 30, "outside 0.02 to 30 m (0.07 to 98 ft) for a closed section; check its unit, which is not the millimetre"}
+	usualBottom    = usual{0, 300, "more than 300 m (980 ft); check its unit, which is not the millimetre"}
+	usualBank      = usual{0, 30, "more than 30 m (98 ft); check its unit, which is not the millimetre"}
 	usualSide      = usual{0, 20, "more than 20; side slopes are horizontal per unit vertical, no degrees and no percentage"}
 	usualFreeboard = usual{0, 5, "more than 5 m (16 ft); check its unit"}
 	usualVelocity  = usual{0.01, 30, "outside 0.01 to 30 m/s (0.03 to 98 ft/s); check its unit"}
@@ -35,6 +37,8 @@ var (
 func (w *warnings) doubt(base string, in *inputs) {
 	look := func(pointer, name string, n wire.Number, u usual) { w.look(base+pointer, name, n, u) }
 	if s := in.section; s != nil {
+		look("/section/bottom_width", "bottom_width", s.BottomWidth, usualBottom)
+		look("/section/bank_height", "bank_height", s.BankHeight, usualBank)
 		look("/section/side_slope", "side_slope", s.SideSlope, usualSide)
 		look("/section/left_side_slope", "left_side_slope", s.LeftSideSlope, usualSide)
 		look("/section/right_side_slope", "right_side_slope", s.RightSideSlope, usualSide)

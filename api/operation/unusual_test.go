@@ -14,6 +14,8 @@ func TestUnusualValuesAreDoubted(t *testing.T) {
 		{`{"section":{"kind":"rectangular","bottom_width":1},"roughness":{"manning":30},"bed_slope":0.001,"discharge":1}`, "/roughness/manning"},
 		{`{"section":{"kind":"rectangular","bottom_width":1},"roughness":{"strickler":0.03},"bed_slope":0.001,"discharge":1}`, "/roughness/strickler"},
 		{`{"section":{"kind":"circular","diameter":600},"roughness":{"manning":0.013},"bed_slope":0.001,"discharge":1}`, "/section/diameter"},
+		{`{"section":{"kind":"rectangular","bottom_width":1200},"roughness":{"manning":0.013},"bed_slope":0.001,"discharge":1}`, "/section/bottom_width"},
+		{`{"section":{"kind":"rectangular","bottom_width":1.2,"bank_height":900},"roughness":{"manning":0.013},"bed_slope":0.001,"discharge":1}`, "/section/bank_height"},
 		{`{"section":{"kind":"trapezoidal","bottom_width":1,"side_slope":45},"roughness":{"manning":0.03},"bed_slope":0.001,"discharge":1}`, "/section/side_slope"},
 		{`{"section":{"kind":"rectangular","bottom_width":1},"roughness":{"manning":0.03},"bed_slope":0.3,"discharge":1}`, "/bed_slope"},
 		{`{"section":{"kind":"rectangular","bottom_width":1},"roughness":{"sand_roughness":1.5},"bed_slope":0.01,"discharge":100}`, "/roughness/sand_roughness"},
