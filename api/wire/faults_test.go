@@ -69,6 +69,9 @@ func TestFaults(t *testing.T) {
 		{"depths", section(`"kind":"gutter","cross_slope":0.02,"curb_height":0.15,"gutter_width":1`), 422, []string{"/section/gutter_slope missing_member"}},
 		{"depths", section(`"kind":"gutter","cross_slope":0,"curb_height":0.15,"gutter_slope":1`), 422,
 			[]string{"/section/gutter_width missing_member", "/section/cross_slope not_positive"}},
+		// Of a member of another kind only that is said, whatever is wrong with its value.
+		{"depths", section(`"kind":"rectangular","bottom_width":1,"diameter":"x","points":[["a",1],3],"inverted":"no"`), 422,
+			[]string{"/section/diameter foreign_member", "/section/inverted foreign_member", "/section/points foreign_member"}},
 		{"depths", section(`"kind":"egg","height":1,"inverted":1`), 422, []string{"/section/inverted wrong_type"}},
 		{"depths", section(`"kind":"surveyed","points":[[0,1],[1,2e9],[null,3],[1,2,3],5,["4",5]]`), 422,
 			[]string{"/section/points/2/0 wrong_type", "/section/points/3 wrong_length", "/section/points/4 wrong_type", "/section/points/5/0 wrong_type", "/section/points/1/1 out_of_range"}},

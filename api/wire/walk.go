@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"math/bits"
 	"reflect"
+	"slices"
 
 	"github.com/go-json-experiment/json/jsontext"
 )
@@ -219,6 +220,10 @@ func (w *walk) foreign(p *plan, set uint64, variant string) {
 	}
 	for ; set != 0; set &= set - 1 {
 		f := &p.fields[bits.TrailingZeros64(set)]
+		// What is wrong with its value does not matter: whoever mended that would be told next to leave it out.
+		if own := []Fault{{Pointer: string(w.at.member(f.name))}}; !w.size {
+			w.faults = slices.DeleteFunc(w.faults, func(found Fault) bool { return covered(own, found.Pointer) })
+		}
 		w.faultAt(f.name, codeForeignMember, func() string { return foreignText(p, f, variant) })
 	}
 }
