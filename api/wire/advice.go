@@ -2,6 +2,7 @@ package wire
 
 import (
 	"slices"
+	"strconv"
 	"strings"
 
 	"github.com/go-json-experiment/json/jsontext"
@@ -107,6 +108,13 @@ func unknownValueAdvice(given string, known []string) string {
 	if kind, ok := linings[plainName(given)]; ok && slices.Contains(known, kind) {
 		return ` Did you mean "` + kind + `"?`
 	}
+	if kinds, ok := shapes[plainName(given)]; ok && slices.Contains(known, string(kinds[0])) {
+		quoted := make([]string, len(kinds))
+		for i, kind := range kinds {
+			quoted[i] = strconv.Quote(string(kind))
+		}
+		return " Did you mean " + list(quoted, "or") + "?"
+	}
 	if plainName(given) == "concrete" && slices.Contains(known, string(ShearLimited)) {
 		return " Concrete is judged by criteria such as greatest_velocity: leave lining out."
 	}
@@ -114,6 +122,15 @@ func unknownValueAdvice(given string, known []string) string {
 		return ` Did you mean "` + near + `"?`
 	}
 	return ""
+}
+
+// shapes leads from what a section is called elsewhere, in plain letters, to the kinds that may be meant.
+var shapes = map[string][]Kind{
+	"round": {Circular}, "circle": {Circular}, "pipe": {Circular}, "sewer": {Circular, Egg}, "culvert": {Circular, Box}, "tunnel": {Horseshoe, Circular},
+	"square": {Box, Rectangular}, "boxculvert": {Box}, "oval": {Egg, Elliptical}, "ovoid": {Egg}, "ellipse": {Elliptical}, "arch": {Horseshoe},
+	"ditch": {Trapezoidal}, "channel": {Trapezoidal, Rectangular}, "canal": {Trapezoidal, Rectangular}, "drain": {Trapezoidal, Rectangular},
+	"swale": {Parabolic, Trapezoidal, Triangular}, "flume": {Rectangular}, "open": {Trapezoidal, Rectangular}, "v": {Triangular}, "vshaped": {Triangular}, "vditch": {Triangular},
+	"u": {UShaped}, "uchannel": {UShaped}, "street": {Gutter}, "compound": {TwoStage, Surveyed}, "natural": {Surveyed}, "irregular": {Surveyed, Tabulated},
 }
 
 // linings leads from what a lining is called elsewhere, in plain letters, to its kind.

@@ -153,6 +153,9 @@ func (p *FlatPlan) Unknown(name, prefix string, answers *FlatTable) Fault {
 // advice says which member an unknown flat name most likely means.
 func (p *FlatPlan) advice(name, prefix string) string {
 	if meant := p.meant(name); meant != "" {
+		if node, found := p.byName[meant]; found && p.nodes[node].field.shape == shapeNamed {
+			return " Did you mean " + prefix + meant + "_ with a name of your own behind it, such as " + prefix + meant + "_design?"
+		}
 		return " Did you mean " + prefix + meant + "?"
 	}
 	return ""

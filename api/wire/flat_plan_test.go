@@ -171,6 +171,7 @@ func TestFaultsNameColumns(t *testing.T) {
 		{[]string{"section_kind", "circular", "section_diameter", "1", "roughness_manning", "0.03", "bed_slope", "0.01"}, "x_discharge"},
 		{[]string{"section", `{"kind":"circular","diameter":1}`, "section_kind", "circular", "roughness_manning", "0.03", "bed_slope", "0.01", "discharge", "1"}, "x_section_kind"},
 		{[]string{"section", `{"kind":"circular","diameter":-1}`, "roughness_manning", "0.03", "bed_slope", "0.01", "discharge", "1"}, "/x_section/diameter"},
+		{[]string{"section_kind", "circular", "section_diameter", "1", "roughness", "0.03", "bed_slope", "0.01", "discharge", "1"}, "x_roughness"},
 	} {
 		p := decode(rowOf(t, (*DepthsRequest)(nil), "x_", c.cells...))
 		f := p.Errors[0]
@@ -192,6 +193,10 @@ func TestUnknownColumnsGetAdvice(t *testing.T) {
 		}
 	}
 	if f := plan.Unknown("x_kind", "x_", nil); f.Column != "x_kind" || !strings.Contains(f.Detail, "x_section_kind") || strings.Contains(f.Detail, "prefix") {
+		t.Errorf("%+v", f)
+	}
+	appraisal := FlatPlanOf((*AppraisalRequest)(nil))
+	if f := appraisal.Unknown("x_discharge", "x_", nil); !strings.Contains(f.Detail, "Did you mean x_flows_ with a name of your own behind it, such as x_flows_design?") {
 		t.Errorf("%+v", f)
 	}
 	for i := range plan.nodes {

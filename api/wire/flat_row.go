@@ -303,6 +303,13 @@ func (r *FlatRow) translate(f Fault) Fault {
 		node, rest = child, after
 		from, to = child+1, r.plan.nodes[child].end
 		if r.values[child] != (span{}) && r.plan.nodes[child].object() {
+			if rest == "" { // the cell itself, whatever stands in it
+				f.Column, f.Pointer = r.Column(FlatPlace{node: child}), ""
+				if f.Code == codeNotAnObject {
+					f.Detail += " Or give its members flat, such as " + r.Column(FlatPlace{node: child + 1}) + "."
+				}
+				return f
+			}
 			f.Pointer = "/" + pointerEscapes.Replace(r.prefix) + f.Pointer[1:] // given nested
 			return f
 		}
