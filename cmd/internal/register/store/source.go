@@ -66,10 +66,17 @@ type KeyFault struct {
 	Twice []string // some values that several rows have, as text
 }
 
-func (f *KeyFault) Error() string { return f.Sentence("of the source") }
+func (f *KeyFault) Error() string { return f.facts("of the source") }
 
-// Sentence says so of a column.
+// Sentence says so of a column, and how to go on.
 func (f *KeyFault) Sentence(column string) string {
+	if f.Nulls > 0 {
+		return f.facts(column) + fmt.Sprintf(" To leave such rows out, write filter: {%s: {not: null}} in source.", column)
+	}
+	return f.facts(column) + " Name a column that tells each asset from all others, or leave rows out with filter in source."
+}
+
+func (f *KeyFault) facts(column string) string {
 	switch {
 	case f.Nulls == 1:
 		return fmt.Sprintf("The key column %s is empty in a row; every asset needs a key.", column)
