@@ -1,6 +1,7 @@
 package drive
 
 import (
+	"bytes"
 	"context"
 	"errors"
 	"flag"
@@ -47,6 +48,7 @@ func Run(ctx context.Context, arguments []string, stdout, stderr io.Writer) Outc
 	remote := flags.Bool("allow-remote", false, "send to a target that is not on this machine; ask its operator first")
 	length := flags.Float64("seconds", 0, "`time` of each stage, in place of the plan's")
 	output := flags.String("json", "", "`file` for the report as JSON")
+	exposition := flags.String("metrics", "", "`file` for the report in the text format of Prometheus")
 	if err := flags.Parse(arguments); errors.Is(err, flag.ErrHelp) {
 		fmt.Fprint(stdout, usage)
 		flags.SetOutput(stdout)
@@ -86,6 +88,14 @@ func Run(ctx context.Context, arguments []string, stdout, stderr io.Writer) Outc
 			err = os.WriteFile(*output, append(text, '\n'), 0o644)
 		}
 		if err != nil {
+			fmt.Fprintf(stderr, "leat drive: %v\n", err)
+			return Failed
+		}
+	}
+	if *exposition != "" {
+		var text bytes.Buffer
+		report.WriteMetrics(&text)
+		if err := os.WriteFile(*exposition, text.Bytes(), 0o644); err != nil {
 			fmt.Fprintf(stderr, "leat drive: %v\n", err)
 			return Failed
 		}

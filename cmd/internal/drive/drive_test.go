@@ -19,6 +19,7 @@ import (
 	"time"
 
 	"github.com/go-json-experiment/json"
+	"github.com/prometheus/client_golang/prometheus/testutil/promlint"
 
 	"leat/api/operation"
 	"leat/api/serve"
@@ -326,12 +327,24 @@ func TestCommand(t *testing.T) {
 	}
 	write(`"accepted_seconds":30`)
 	report := filepath.Join(folder, "report.json")
-	if outcome, out, errors := run("--target", "http://"+address, "--seconds", "0.5", "--json", report, plan); outcome != Held || !strings.Contains(out, "Everything held.") {
+	if outcome, out, errors := run("--target", "http://"+address, "--seconds", "0.5", "--json", report, "--metrics", folder+"/report.prom", plan); outcome != Held || !strings.Contains(out, "Everything held.") {
 		t.Errorf("%d, %s, %s", outcome, out, errors)
 	}
 	var told Report
 	if text, err := os.ReadFile(report); err != nil || json.Unmarshal(text, &told) != nil || told.Stages[0].Accepted.Count != 10 {
 		t.Errorf("%v, %+v", err, told)
+	}
+	text, err := os.ReadFile(folder + "/report.prom")
+	if err != nil {
+		t.Fatal(err)
+	}
+	if problems, err := promlint.New(bytes.NewReader(text)).Lint(); err != nil || len(problems) > 0 {
+		t.Errorf("%v, %v", problems, err)
+	}
+	for _, series := range []string{`leat_drive_requests{stage="only",outcome="accepted"} 10`, `leat_drive_missed 0`, `outcome="accepted",of="p99"} 0.`} {
+		if !strings.Contains(string(text), series) {
+			t.Errorf("no %s in\n%s", series, text)
+		}
 	}
 	write(`"accepted_seconds":1e-9`)
 	if outcome, out, _ := run("--target", "http://"+address, "--seconds", "0.5", plan); outcome != Missed || !strings.Contains(out, "99th percentile of the accepted") {
