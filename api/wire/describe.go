@@ -26,6 +26,19 @@ type MemberDescription struct {
 	Names    []string // that a FormName may have
 	Variants []string // kinds or laws it belongs to; none for all of them
 	Required bool     // the object that it is a member of must have it, whatever its kind or law
+
+	field *field
+}
+
+// Beyond says in a sentence why a number in the units of a system cannot be the member's value; nothing where it can, or where the member is no number.
+func (d *MemberDescription) Beyond(value float64, system System) string {
+	if d.field == nil || d.field.shape != shapeNumber && d.field.shape != shapeWhole {
+		return ""
+	}
+	if si := system.ToSI(d.Quantity, value); !d.field.bounds[0].holds(si) {
+		return d.field.outOfRange("", 0, si, system).Detail
+	}
+	return ""
 }
 
 // DescribeRequest lists the members of a request in the order of the contract, those of an object behind it; lists are not gone into.
@@ -38,7 +51,7 @@ func (p *plan) describe(above []string, out []MemberDescription) []MemberDescrip
 		f := &p.fields[i]
 		path := append(above[:len(above):len(above)], f.name)
 		out = append(out, MemberDescription{
-			Path: path, Form: f.shape.form(), Quantity: f.quantity[0], Names: f.enum, Variants: f.variants, Required: p.required&(1<<i) != 0,
+			Path: path, Form: f.shape.form(), Quantity: f.quantity[0], Names: f.enum, Variants: f.variants, Required: p.required&(1<<i) != 0, field: f,
 		})
 		if f.shape == shapeObject {
 			out = f.sub.describe(path, out)

@@ -151,6 +151,8 @@ func TestFaultsOfCriteria(t *testing.T) {
 		{"least_velocity: {", "lest_velocity: {", 16, `did you mean "least_velocity"`},
 		{"unit: cm/s", "unit: mm", 16, "it may be in m/s, cm/s"},
 		{"{constant: 75, unit: \"%\"}", "{constant: 75, unit: permile}", 15, "it may be in 1, %"},
+		{"{constant: 75, unit: \"%\"}", "75", 15, "greatest_fill must be from 1e-9 to 1, not 75. A fill of"},
+		{"greatest_fill: [design]", "greatest_fill: [desing]", 19, `did you mean "design"`},
 		{"column: flow", "column: flo", 10, `did you mean "flow"`},
 		{"greatest_fill: [design]", "least_freeboard: [design]", 19, "criteria has no least_freeboard"},
 		{"greatest_fill: [design]", "greatest_fil: [design]", 19, `did you mean "greatest_fill"`},

@@ -8,6 +8,7 @@ import (
 	"strings"
 	"unicode/utf16"
 
+	"github.com/go-json-experiment/json"
 	"github.com/go-json-experiment/json/jsontext"
 
 	"leat/api/wire"
@@ -338,11 +339,34 @@ func (c *compiling) criterionFlows() {
 	if flows == nil {
 		return
 	}
+	var names []string // of all flows, where they are fed one by one
+	if all := find(&c.m.root, "flows"); all != nil {
+		for i := range all.nodes {
+			names = append(names, all.nodes[i].name)
+		}
+	}
 	for i := range flows.nodes {
 		n := &flows.nodes[i]
+		c.flowsOf(n, names)
 		if n.needs = find(find(&c.m.root, "criteria"), n.name); n.needs == nil {
 			at := slices.IndexFunc(c.feeds, func(f memberFeed) bool { return f.name == n.flat })
 			c.faultAt(c.feeds[at].at, "criteria has no %s whose flows could be chosen.", n.name)
+		}
+	}
+}
+
+// flowsOf looks for flows that a criterion names and that there are not.
+func (c *compiling) flowsOf(n *node, names []string) {
+	for _, source := range n.sources {
+		var chosen []string
+		if names == nil || source.constant == nil || json.Unmarshal(source.constant, &chosen) != nil {
+			continue // the request tells
+		}
+		for _, name := range chosen {
+			if !slices.Contains(names, name) {
+				at := slices.IndexFunc(c.feeds, func(f memberFeed) bool { return f.name == n.flat })
+				c.faultAt(c.feeds[at].at, "%s names %q, which is none of flows%s.", n.flat, short(name), advice(name, names))
+			}
 		}
 	}
 }

@@ -354,6 +354,9 @@ func (p *parsing) value(n ast.Node, name string, about *wire.MemberDescription, 
 		return nil
 	}
 	out, detail := constantJSON(v, name, about, m)
+	if number, is := parseNumber(out, '.'); detail == "" && is {
+		detail = about.Beyond(number, p.System)
+	}
 	if detail != "" {
 		p.fault(n, "%s", detail)
 	}
