@@ -157,3 +157,44 @@ func TestLargeAnswersThatWaitAreBounded(t *testing.T) {
 		t.Errorf("alone: %d", got.status)
 	}
 }
+
+// Over HTTP/2 the limits are each stream's: a body that does not come is 408, an answer that is not read is cut, and other streams of the connection live on.
+func TestSlowStreamsAreCut(t *testing.T) {
+	r := start(t, nil, func(s *http.Server) { s.ReadTimeout, s.WriteTimeout = 500*time.Millisecond, 1500*time.Millisecond })
+	var protocols http.Protocols
+	protocols.SetUnencryptedHTTP2(true)
+	transport := &http.Transport{Protocols: &protocols, DisableCompression: true, HTTP2: &http.HTTP2Config{MaxReceiveBufferPerStream: 64 << 10, MaxReceiveBufferPerConnection: 64 << 20}}
+	defer transport.CloseIdleConnections()
+	client := &http.Client{Transport: transport, Timeout: 30 * time.Second}
+	post := func(body io.Reader) *http.Response {
+		t.Helper()
+		request, err := http.NewRequest("POST", r.url("/v1/depths"), body)
+		if err != nil {
+			t.Fatal(err)
+		}
+		request.Header.Set("Content-Type", jsonHeader)
+		response, err := client.Do(request)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return response
+	}
+	unread := post(strings.NewReader(`{"bytes":30000000}`))
+	defer unread.Body.Close()
+	body, never := io.Pipe()
+	defer never.Close()
+	slow := post(body)
+	slow.Body.Close()
+	if slow.StatusCode != http.StatusRequestTimeout || slow.ProtoMajor != 2 {
+		t.Errorf("a body that does not come: %s %s", slow.Proto, slow.Status)
+	}
+	waitFor(t, "the unread answer to be let go", func() bool { return r.shelf.held.Load() == 0 })
+	if n, err := io.Copy(io.Discard, unread.Body); err == nil || n >= 30000000 {
+		t.Errorf("an answer that was cut reads as whole: %d bytes, %v", n, err)
+	}
+	other := post(strings.NewReader(`{}`))
+	other.Body.Close()
+	if other.StatusCode != 200 || r.inside.Load() != 1 {
+		t.Errorf("another stream: %s, %d connections", other.Status, r.inside.Load())
+	}
+}

@@ -51,10 +51,12 @@ const edgeThreads = 1
 
 // serveUntil wires the service together, serves until ctx is done, and stops it gracefully. A second signal changes nothing.
 func serveUntil(ctx context.Context, config serve.Config, memory int64, log *slog.Logger) error {
-	// By custom this signal asks to read files anew; its default action would end the process.
+	// By custom this signal asks to read files anew. Where there are none, its default action stands: the end of a service whose terminal is closed.
 	hangUp := make(chan os.Signal, 1)
-	signal.Notify(hangUp, syscall.SIGHUP)
-	defer signal.Stop(hangUp)
+	if config.KeysFile != "" || config.TLSCertificate != "" {
+		signal.Notify(hangUp, syscall.SIGHUP)
+		defer signal.Stop(hangUp)
+	}
 	operations := operation.All()
 	known, err := serve.KnownAnswer(operations)
 	if err != nil {
