@@ -8,10 +8,7 @@ import (
 	"strings"
 	"testing"
 
-	"zombiezen.com/go/sqlite"
-
 	"leat/cmd/internal/demo/district"
-	"leat/cmd/internal/geopackage"
 	"leat/cmd/internal/geopackage/geopackagetest"
 	"leat/cmd/internal/register"
 )
@@ -42,27 +39,7 @@ func command(t *testing.T, arguments ...string) (outcome register.Outcome, out, 
 }
 
 // texts returns the rows of a statement, columns joined by a bar.
-func texts(t *testing.T, path, statement string) []string {
-	t.Helper()
-	f, err := geopackage.Open(t.Context(), path, geopackage.Read)
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer f.Close()
-	var out []string
-	err = f.Rows(statement, func(s *sqlite.Stmt) error {
-		var cells []string
-		for i := range s.ColumnCount() {
-			cells = append(cells, s.ColumnText(i))
-		}
-		out = append(out, strings.Join(cells, "|"))
-		return nil
-	})
-	if err != nil {
-		t.Fatal(err)
-	}
-	return out
-}
+var texts = geopackagetest.Texts
 
 // The demo ends in a layer; every row that is wrong on purpose is told with its column, and no other.
 func TestOstermereAsAGeoPackage(t *testing.T) {

@@ -11,8 +11,6 @@ import (
 	"testing"
 	"time"
 
-	"zombiezen.com/go/sqlite"
-
 	"leat/cmd/internal/geopackage"
 	"leat/cmd/internal/geopackage/geopackagetest"
 	gpkg "leat/cmd/internal/register/geopackage"
@@ -123,27 +121,7 @@ func (x *fixture) write(t testing.TB, path string, start store.Start) {
 }
 
 // texts returns the rows of a statement, columns joined by a bar.
-func texts(t testing.TB, path, statement string) []string {
-	t.Helper()
-	f, err := geopackage.Open(t.Context(), path, geopackage.Read)
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer f.Close()
-	var out []string
-	err = f.Rows(statement, func(s *sqlite.Stmt) error {
-		var cells []string
-		for i := range s.ColumnCount() {
-			cells = append(cells, s.ColumnText(i))
-		}
-		out = append(out, strings.Join(cells, "|"))
-		return nil
-	})
-	if err != nil {
-		t.Fatal(err)
-	}
-	return out
-}
+var texts = geopackagetest.Texts
 
 // Results go into the register's own file, and the file stays one that the standard allows; the register's own layer is as it was.
 func TestResultsInPlace(t *testing.T) {
