@@ -68,6 +68,14 @@ func (p *parameter) accepted() string {
 	return "one of " + strings.Join(p.values, ", ")
 }
 
+// strayAdvice says where a parameter belongs that this operation does not have.
+func strayAdvice(name string) string {
+	if slices.ContainsFunc(bulkParameters, func(p parameter) bool { return p.name == name }) {
+		return " The operations under /v1/bulk have it, which take tables and layers."
+	}
+	return ""
+}
+
 // readQuery reads those of an operation's query parameters that there are into options that hold the defaults. Its problem names every fault: an unknown
 // name, an unknown value, a name given twice, text that is no query.
 func readQuery(raw string, parameters []parameter, options call) (call, *wire.Problem) {
@@ -93,7 +101,7 @@ func readQuery(raw string, parameters []parameter, options call) (call, *wire.Pr
 		case nameErr != nil || valueErr != nil:
 			fault(clip(name), "invalid_encoding", "%q cannot be read: %% must be followed by two hexadecimal digits.", clip(pair))
 		case i < 0:
-			fault(clip(name), "unknown_parameter", "%q is no query parameter of this operation; there are %s.", clip(name), parameterNames(parameters))
+			fault(clip(name), "unknown_parameter", "%q is no query parameter of this operation; there are %s.%s", clip(name), parameterNames(parameters), strayAdvice(name))
 		case slices.Contains(seen, name):
 			fault(name, "duplicate_parameter", "%s is given more than once; give it once.", name)
 		case !parameters[i].accepts(value):
