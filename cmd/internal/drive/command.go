@@ -147,10 +147,11 @@ func Drive(ctx context.Context, plan *Plan, address string) (*Report, error) {
 		} else {
 			t.bytes = post(address, request.Path, request.Body)
 		}
-		var err error
-		if t.normal, err = d.time(ctx, t, 21); err != nil {
+		took, err := d.time(ctx, t, 21)
+		if err != nil {
 			return nil, err
 		}
+		t.normal = took[len(took)/2]
 		if err := t.judge(); err != nil {
 			return nil, err
 		}
