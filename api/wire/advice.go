@@ -115,6 +115,9 @@ func unknownValueAdvice(given string, known []string) string {
 		}
 		return " Did you mean " + list(quoted, "or") + "?"
 	}
+	if system, ok := systems[plainName(given)]; ok && slices.Contains(known, system) {
+		return ` Did you mean "` + system + `"?`
+	}
 	if plainName(given) == "concrete" && slices.Contains(known, string(ShearLimited)) {
 		return " Concrete is judged by criteria such as greatest_velocity: leave lining out."
 	}
@@ -122,6 +125,12 @@ func unknownValueAdvice(given string, known []string) string {
 		return ` Did you mean "` + near + `"?`
 	}
 	return ""
+}
+
+// systems leads from what a system of units is called elsewhere, in plain letters, to its name.
+var systems = map[string]string{
+	"metric": SI.String(), "m": SI.String(), "metre": SI.String(), "metres": SI.String(), "meter": SI.String(), "meters": SI.String(), "mks": SI.String(),
+	"imperial": US.String(), "english": US.String(), "customary": US.String(), "uscustomary": US.String(), "usc": US.String(), "ft": US.String(), "foot": US.String(), "feet": US.String(),
 }
 
 // shapes leads from what a section is called elsewhere, in plain letters, to the kinds that may be meant.

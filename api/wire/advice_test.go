@@ -24,6 +24,8 @@ func TestAdvice(t *testing.T) {
 		{`{"section":{"kind":"surveyed","points":"[[0,1],[1,0]]"}}`, "/section/points", "This must be a list of lists of two numbers, not a string. Write the list without quotes."},
 		{`{"section":{"kind":"surveyed","points":"0 1, 1 0"}}`, "/section/points", "This must be a list of lists of two numbers, not a string."},
 		{`{"section":{"kind":"surveyed","points":["3 4"]}}`, "/section/points/0", "This must be a list of two numbers, not a string."},
+		{`{"units":"feet"}`, "/units", `not "feet". Did you mean "us"?`},
+		{`{"units":"Metric"}`, "/units", `not "Metric". Did you mean "si"?`},
 		{`{"section":{"kind":"Round"}}`, "/section/kind", `not "Round". Did you mean "circular"?`},
 		{`{"section":{"kind":"culvert"}}`, "/section/kind", `not "culvert". Did you mean "circular" or "box"?`},
 		{`{"section":{"kind":"v-ditch"}}`, "/section/kind", `not "v-ditch". Did you mean "triangular"?`},

@@ -74,7 +74,7 @@ func Run(ctx context.Context, arguments []string, stdout, stderr io.Writer) Outc
 		return Misused
 	}
 	if errors.Is(err, context.Canceled) {
-		err = errors.New("stopped before the end; start it again, which leaves alone what is done, save in files that appear whole")
+		err = errors.New("stopped before the end; start it again: in a database it goes on, CSV and GeoJSON results begin anew")
 	}
 	fmt.Fprintf(stderr, "leat register %s: %v\n", c.name, err)
 	return outcome
