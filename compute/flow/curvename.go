@@ -11,14 +11,13 @@ func (c *Channel) CurveName(s *State, class SlopeClass, normal []float64) string
 
 // CurveName is Channel.CurveName at a depth, for callers who need nothing else of its state.
 func (m *Motion) CurveName(depth float64, class SlopeClass, normal []float64) string {
-	c := m.channel
-	g := c.Geometry(depth)
-	_, regime := m.regime(g, c.Full(depth))
+	g := m.geometry(depth)
+	_, regime := m.regime(m.froudeTerm(g), depth >= m.crown)
 	slope := m.FrictionSlope(g)
 	if math.IsInf(slope, 1) {
 		slope = math.NaN() // no conveyance
 	}
-	return c.curveName(depth, slope, regime, class, normal)
+	return m.channel.curveName(depth, slope, regime, class, normal)
 }
 
 func (c *Channel) curveName(depth, friction float64, regime Regime, class SlopeClass, normal []float64) string {

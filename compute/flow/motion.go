@@ -1,6 +1,8 @@
 package flow
 
 import (
+	"math"
+
 	"leat/compute/friction"
 	"leat/compute/section"
 )
@@ -11,6 +13,7 @@ type Motion struct {
 	discharge float64 // of one barrel, m3/s
 	head      float64 // discharge squared over gravity, m5
 	cosine    float64
+	crown     float64 // the height of a closed section, +Inf for an open one
 
 	// What would else be asked of the channel and its law again at every depth:
 	fixed   bool                  // alpha and beta do not vary with depth:
@@ -24,7 +27,10 @@ func (c *Channel) Motion(discharge float64) Motion { return c.motion(discharge /
 
 // motion returns the motion of a discharge of one barrel.
 func (c *Channel) motion(discharge float64) Motion {
-	m := Motion{channel: c, discharge: discharge, head: discharge * discharge / c.Gravity, cosine: c.Cosine()}
+	m := Motion{channel: c, discharge: discharge, head: discharge * discharge / c.Gravity, cosine: c.Cosine(), crown: math.Inf(1)}
+	if c.Section.Closed() {
+		m.crown = c.Section.Height()
+	}
 	m.power, m.byPower = c.Law.(friction.Power)
 	if m.fixed = m.byPower || c.constantCoefficients(); m.fixed {
 		m.given = friction.Coefficients{Energy: orOne(c.EnergyCoefficient), Momentum: orOne(c.MomentumCoefficient)}
@@ -47,10 +53,18 @@ func (m *Motion) coefficients(g section.Geometry) friction.Coefficients {
 	return m.channel.coefficients(g)
 }
 
+// geometry is Channel.Geometry, and asks the section no more than it must.
+func (m *Motion) geometry(depth float64) section.Geometry {
+	if depth < m.crown {
+		return m.channel.Section.At(depth)
+	}
+	return m.channel.Geometry(depth)
+}
+
 // conveyance returns the conveyance at a geometry; 0 where the law gives none.
 func (m *Motion) conveyance(g section.Geometry) float64 {
 	if m.byPower {
-		return m.power.At(g).K
+		return m.power.Conveyance(g.Area, g.Radius())
 	}
 	return m.channel.Law.AtDischarge(m.channel.Wetted(g), m.discharge).K
 }
@@ -68,7 +82,13 @@ func (m *Motion) Energy(g section.Geometry) float64 {
 
 // VelocityHead returns alpha*V^2/2g in m.
 func (m *Motion) VelocityHead(g section.Geometry) float64 {
-	return m.coefficients(g).Energy * m.head / (2 * g.Area * g.Area)
+	k := m.coefficients(g)
+	return m.velocityHead(&k, 1/g.Area)
+}
+
+// velocityHead returns it from the coefficients and the reciprocal of the area, which describing a depth asks for more than once.
+func (m *Motion) velocityHead(k *friction.Coefficients, over float64) float64 {
+	return k.Energy * m.head * 0.5 * over * over
 }
 
 // EnergyRate returns dE/ddepth = cos*(1 - F^2), with the change of alpha.
@@ -79,12 +99,23 @@ func (m *Motion) EnergyRate(g section.Geometry) float64 {
 // froudeTerm returns cos*F^2 = Q^2/g * (alpha*T/A^3 - (dalpha/ddepth)/(2 A^2)).
 func (m *Motion) froudeTerm(g section.Geometry) float64 {
 	k := m.coefficients(g)
-	return m.head / (g.Area * g.Area) * (k.Energy*g.TopWidth/g.Area - k.EnergyRate/2)
+	return m.froudeOver(&k, g.TopWidth, 1/g.Area)
+}
+
+// froudeOver returns it from the reciprocal of the area.
+func (m *Motion) froudeOver(k *friction.Coefficients, width, over float64) float64 {
+	return m.head * over * over * (k.Energy*width*over - k.EnergyRate*0.5)
 }
 
 // Force returns the specific force M = beta*Q^2/(g A) + cos*A*(depth of the centroid) in m3.
 func (m *Motion) Force(g section.Geometry) float64 {
-	return m.coefficients(g).Momentum*m.head/g.Area + m.cosine*g.Moment
+	k := m.coefficients(g)
+	return m.force(&k, 1/g.Area, g.Moment)
+}
+
+// force returns it from the reciprocal of the area.
+func (m *Motion) force(k *friction.Coefficients, over, moment float64) float64 {
+	return k.Momentum*m.head*over + m.cosine*moment
 }
 
 // ForceRate returns dM/ddepth in m2.

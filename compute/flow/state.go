@@ -58,27 +58,30 @@ func (c *Channel) State(depth, discharge float64) State {
 // Describe writes into s the state of a depth, 0 < depth <= the section's height, under this motion, whose total discharge in m3/s is told again; one of 0
 // stands for none. It is State for callers who describe many depths.
 func (m *Motion) Describe(depth, discharge float64, s *State) {
-	c := m.channel
-	g := c.Geometry(depth)
-	*s = State{Geometry: g, Radius: g.Radius(), HydraulicDepth: math.NaN(), CentroidDepth: g.Moment / g.Area,
-		Conveyance: math.NaN(), UniformDischarge: math.NaN(), FroudeNumber: math.NaN(), FrictionSlope: math.NaN(),
-		BedShearStress: math.NaN(), StreamPower: math.NaN()}
-	full := c.Full(depth)
+	c, nan := m.channel, math.NaN()
+	s.Geometry = m.geometry(depth)
+	g := &s.Geometry
+	over := 1 / g.Area
+	s.Radius, s.HydraulicDepth, s.CentroidDepth = g.Radius(), nan, g.Moment/g.Area
+	full := depth >= m.crown
 	if !full {
 		s.HydraulicDepth = g.Area / g.TopWidth
 	}
+	s.Conveyance, s.UniformDischarge = nan, nan
+	s.Discharge, s.Velocity, s.VelocityHead, s.FroudeNumber, s.SpecificEnergy, s.SpecificForce, s.Regime = 0, 0, 0, nan, 0, 0, 0
+	s.FrictionSlope, s.BedShearStress, s.StreamPower = nan, nan, nan
 	if c.Law != nil && c.Slope > 0 {
 		if m.byPower {
-			s.Conveyance = m.power.At(g).K
+			s.Conveyance = m.power.Conveyance(g.Area, s.Radius)
 		} else {
-			s.Conveyance = c.Law.AtSlope(c.Wetted(g), c.Slope).K
+			s.Conveyance = c.Law.AtSlope(c.Wetted(*g), c.Slope).K
 		}
 		s.UniformDischarge = c.barrels() * s.Conveyance * math.Sqrt(c.Slope)
 	}
 	if discharge > 0 {
-		m.move(s, discharge, full)
+		m.move(s, discharge, over, full)
 	} else if c.Law != nil && !(c.Slope > 0) {
-		s.Conveyance = c.restingConveyance(g)
+		s.Conveyance = c.restingConveyance(*g)
 	}
 }
 
@@ -92,19 +95,20 @@ func (c *Channel) restingConveyance(g section.Geometry) float64 {
 }
 
 // move fills in what a discharge adds to a state.
-func (m *Motion) move(s *State, discharge float64, full bool) {
-	g, c := s.Geometry, m.channel
+func (m *Motion) move(s *State, discharge, over float64, full bool) {
+	g, c := &s.Geometry, m.channel
+	k := m.coefficients(*g)
 	s.Discharge = discharge
 	s.Velocity = m.discharge / g.Area
-	s.VelocityHead = m.VelocityHead(g)
+	s.VelocityHead = m.velocityHead(&k, over)
 	s.SpecificEnergy = g.Depth*m.cosine + s.VelocityHead
-	s.SpecificForce = m.Force(g)
-	s.FroudeNumber, s.Regime = m.regime(g, full)
+	s.SpecificForce = m.force(&k, over, g.Moment)
+	s.FroudeNumber, s.Regime = m.regime(m.froudeOver(&k, g.TopWidth, over), full)
 	if c.Law == nil {
 		return
 	}
 	if !m.byPower || math.IsNaN(s.Conveyance) { // a power law's conveyance is one at every slope and discharge
-		s.Conveyance = m.conveyance(g)
+		s.Conveyance = m.conveyance(*g)
 	}
 	if !(s.Conveyance > 0) {
 		s.Conveyance = math.NaN()
@@ -116,12 +120,12 @@ func (m *Motion) move(s *State, discharge float64, full bool) {
 	s.StreamPower = s.BedShearStress * s.Velocity
 }
 
-// regime returns the Froude number (NaN where there is none) and the regime at a geometry.
-func (m *Motion) regime(g section.Geometry, full bool) (froude float64, regime Regime) {
+// regime returns the Froude number (NaN where there is none) and the regime where cos*F^2 is known.
+func (m *Motion) regime(term float64, full bool) (froude float64, regime Regime) {
 	if full {
 		return math.NaN(), FullFlow
 	}
-	square := m.froudeTerm(g) / m.cosine
+	square := term / m.cosine
 	froude = math.NaN()
 	if square >= 0 {
 		froude = math.Sqrt(square)

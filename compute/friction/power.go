@@ -69,6 +69,17 @@ func (p Power) At(g section.Geometry) Conveyance {
 	return manning(g, p.C)
 }
 
+// Conveyance returns K alone, from the area and the hydraulic radius.
+func (p Power) Conveyance(area, radius float64) float64 {
+	switch {
+	case !(area > 0 && radius < math.Inf(1)):
+		return 0
+	case p.form == Chezy:
+		return p.C * math.Sqrt(radius) * area
+	}
+	return p.C * solve.TwoThirds(radius) * area
+}
+
 // FrictionSlope returns (discharge/K)^2 with K as At gives it but for its last places, at less cost where R^(-1/3) serves for the root; +Inf where there
 // is no conveyance.
 func (p Power) FrictionSlope(g section.Geometry, discharge float64) float64 {

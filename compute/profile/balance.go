@@ -34,8 +34,11 @@ func (l *leg) workIn(p *piece, change, tolerance float64) float64 {
 		return change
 	}
 	if p.panel.form != straight {
-		// The pieces are resolved by fewer points than this rule has.
-		if once := l.work(p.panel, p.from, p.to); math.Abs(once-change) <= 100*tolerance {
+		// The pieces are resolved by fewer points than the finer rule has, and smooth ones by far fewer.
+		if once := l.work(p.panel, p.from, p.to, &quick); math.Abs(once-change) <= tolerance {
+			return once
+		}
+		if once := l.work(p.panel, p.from, p.to, &checking); math.Abs(once-change) <= 100*tolerance {
 			return once
 		}
 	}
@@ -45,7 +48,7 @@ func (l *leg) workIn(p *piece, change, tolerance float64) float64 {
 		for k := range parts {
 			x0 := p.from + (p.to-p.from)*float64(k)/float64(parts)
 			x1 := p.from + (p.to-p.from)*float64(k+1)/float64(parts)
-			sum += l.work(p.panel, x0, x1)
+			sum += l.work(p.panel, x0, x1, &checking)
 		}
 		if math.Abs(sum-work) <= tolerance {
 			return sum
@@ -57,38 +60,38 @@ func (l *leg) workIn(p *piece, change, tolerance float64) float64 {
 
 // work returns the change of the specific energy between two chainages of one panel by quadrature: of S0 - Sf, less what an inflow takes. Where the
 // panel gives the chainage over the depth, the quadrature is over the depth too: there the depth may change without end over no distance.
-func (l *leg) work(p *panel, x0, x1 float64) float64 {
+func (l *leg) work(p *panel, x0, x1 float64, rule *gauss) float64 {
 	if p.form == overDepth {
-		return l.workOverDepth(p, p.variable(x0), p.variable(x1))
+		return l.workOverDepth(p, p.variable(x0), p.variable(x1), rule)
 	}
 	half, middle := (x1-x0)/2, x0+(x1-x0)/2
 	sum := 0.0
-	for i, node := range checking.node {
+	for i, node := range rule.node {
 		at := middle + half*node
-		sum += checking.weight[i] * l.energySlope(at, p.depth(at))
+		sum += rule.weight[i] * l.energySlope(at, p.depth(at))
 	}
 	return sum * half
 }
 
-func (l *leg) workOverDepth(p *panel, from, to float64) float64 {
+func (l *leg) workOverDepth(p *panel, from, to float64, rule *gauss) float64 {
 	half, middle := (to-from)/2, from+(to-from)/2
 	reach, uniform := l.stretch.(*prismatic)
 	sum := 0.0
-	for i, node := range checking.node {
+	for i, node := range rule.node {
 		at := middle + half*node
 		run, slope := p.s.at(at)
 		y := p.depthAt(at)
 		if uniform {
-			sum += checking.weight[i] * slope * reach.steepness(reach.channel.Geometry(y))
+			sum += rule.weight[i] * slope * reach.steepness(reach.channel.Geometry(y))
 		} else {
-			sum += checking.weight[i] * slope * l.energySlope(p.x0+run, y)
+			sum += rule.weight[i] * slope * l.energySlope(p.x0+run, y)
 		}
 	}
 	return sum * half
 }
 
-// checking is the rule of the balances, of more points than the solver's.
-var checking = newGauss(24)
+// checking is the rule of the balances, of more points than the solver's; quick is tried before it, and holds where it finds what the ends say.
+var checking, quick = newGauss(24), newGauss(12)
 
 // energySlope returns dE/dx: S0 - Sf, less (2*beta - alpha)*Q*q/(g A^2) for a lateral inflow that brings no momentum.
 func (l *leg) energySlope(x, y float64) float64 {

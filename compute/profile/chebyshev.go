@@ -110,9 +110,68 @@ func (a *antiderivative) at(t float64) (value, slope float64) {
 	return e + t*o, o + 4*(t*de+square*do)
 }
 
-// invert returns the t in [-1, 1] at which a monotone function has a value between 0 and the whole, by Newton's iteration inside a bracket from a first guess,
-// with the value and the derivative where it last looked.
-func (a *antiderivative) invert(want, whole, t float64) (root, at, value, slope float64) {
+// bent is at with the second derivative, whose recurrence takes no longer, since the processor works on it beside the others.
+func (a *antiderivative) bent(t float64) (value, slope, bend float64) {
+	square := t * t
+	s := 2*square - 1
+	s2 := 2 * s
+	e, e1 := a[terms], 0.0
+	o, o1 := a[terms-1], 0.0
+	de, de1, do, do1 := 0.0, 0.0, 0.0, 0.0
+	be, be1, bo, bo1 := 0.0, 0.0, 0.0, 0.0 // the second derivatives with s
+	for k := terms - 2; k > 0; k -= 2 {
+		be, be1 = 4*de-be1+s2*be, be
+		bo, bo1 = 4*do-bo1+s2*bo, bo
+		de, de1 = 2*e-de1+s2*de, de
+		do, do1 = 2*o-do1+s2*do, do
+		e, e1 = a[k]-e1+s2*e, e
+		o, o1 = a[k-1]-o1+s2*o, o
+	}
+	be = 2*de + s*be - be1
+	de = e + s*de - de1
+	e = a[0] + s*e - e1
+	bo -= bo1
+	do -= do1
+	o -= o1
+	return e + t*o, o + 4*(t*de+square*do), 4*(de+3*t*do) + 16*square*(be+t*bo)
+}
+
+// follow returns the t in [-1, 1] at which a monotone function has a value, from a guess that is near, by Halley's iteration, whose steps shrink by cubes; and
+// what it found where it last looked. It gives up, and ok is false, where a step is large against what the function bends over, or leads out of the interval.
+func (a *antiderivative) follow(want, t float64) (root float64, last footing, ok bool) {
+	for range 4 {
+		if !(t >= -1 && t <= 1) {
+			return 0, last, false
+		}
+		value, slope, bend := a.bent(t)
+		last = footing{t, value, slope, bend}
+		step := (want - value) / slope
+		b := bend / (2 * slope)
+		if !(math.Abs(b*step) < 0.02) {
+			return 0, last, false
+		}
+		step /= 1 + b*step
+		next := t + step
+		if math.Abs(step*step*step)*(1+b*b) <= 1e-17 {
+			return next, last, next >= -1 && next <= 1
+		}
+		t = next
+	}
+	return 0, last, false
+}
+
+// A footing is a t with the value of a function and its first two derivatives there.
+type footing struct{ t, value, slope, bend float64 }
+
+// guess returns where a function has another value, by the series of its inverse, with its third derivative.
+func (f *footing) guess(want, third float64) float64 {
+	step := (want - f.value) / f.slope
+	b := f.bend / (2 * f.slope)
+	return f.t + step*(1-step*(b-step*(2*b*b-third/(6*f.slope))))
+}
+
+// invert returns the t in [-1, 1] at which a monotone function has a value between 0 and the whole, by Newton's iteration inside a bracket from a first guess.
+func (a *antiderivative) invert(want, whole, t float64) (root float64) {
 	lo, hi := -1.0, 1.0
 	sign := math.Copysign(1, whole)
 	before := 0.0 // the size of the step that led to t; 0 where none of Newton's did
@@ -120,7 +179,7 @@ func (a *antiderivative) invert(want, whole, t float64) (root, at, value, slope 
 		if !(t > lo && t < hi) {
 			t, before = lo+(hi-lo)/2, 0
 		}
-		value, slope = a.at(t)
+		value, slope := a.at(t)
 		e := value - want
 		if sign*e < 0 {
 			lo = t
@@ -130,14 +189,14 @@ func (a *antiderivative) invert(want, whole, t float64) (root, at, value, slope 
 		step := e / slope
 		size := math.Abs(step)
 		if !(size > 4e-16) || hi-lo < 4e-16 {
-			return t, t, value, slope
+			return t
 		}
 		next := t - step
 		// Where steps shrink by squares, what this one leaves is size*(size/before)^2 at most.
 		if next > lo && next < hi && size*size*size <= 1e-17*before*before {
-			return next, t, value, slope
+			return next
 		}
 		t, before = next, size
 	}
-	return t, t, value, slope
+	return t
 }

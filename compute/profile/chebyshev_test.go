@@ -26,8 +26,19 @@ func TestAntiderivative(t *testing.T) {
 		if !(math.Abs(value-integral(x)) <= 2e-13) || !(math.Abs(slope-f(x)) <= 2e-11) {
 			t.Errorf("at %v: %v, %v, want %v, %v", x, value, slope, integral(x), f(x))
 		}
+		if v, r, bend := a.bent(x); !(math.Abs(v-value) <= 1e-14) || !(math.Abs(r-slope) <= 1e-12) || !(math.Abs(bend-2*f(x)) <= 1e-8) {
+			t.Errorf("at %v: %v, %v, %v, want %v, %v, %v", x, v, r, bend, value, slope, 2*f(x))
+		}
+		for _, guess := range [4]float64{x, x - 1e-3, x + 1e-3, x - 3e-3} {
+			if i == 0 || i == 200 {
+				continue // the root may lie beyond by the last places
+			}
+			if root, _, ok := a.follow(value, guess); ok == (guess < -1 || guess > 1) || ok && !(math.Abs(root-x) <= 1e-14) {
+				t.Errorf("followed from %v: %v, want %v", guess, root, x)
+			}
+		}
 		for _, guess := range [4]float64{-1, x, 0.3, 1} {
-			if root, _, _, _ := a.invert(value, a.whole(), guess); !(math.Abs(root-x) <= 1e-14) {
+			if root := a.invert(value, a.whole(), guess); !(math.Abs(root-x) <= 1e-14) {
 				t.Errorf("from %v: %v, want %v", guess, root, x)
 			}
 		}
@@ -45,7 +56,7 @@ func TestInvertWhereNothingMoves(t *testing.T) {
 	whole := a.whole()
 	for k := range 400 {
 		want := whole * math.Ldexp(1, -k/4)
-		got, _, _, _ := a.invert(want, whole, 2*want/whole-1)
+		got := a.invert(want, whole, 2*want/whole-1)
 		if off := 300 * (got + 1) * (got + 1) / -want; !(math.Abs(300*(got+1)*(got+1)+want) <= 1e-12) {
 			t.Errorf("%v: %v, %v of it", want, got, off)
 		}

@@ -80,8 +80,7 @@ func (p *panel) variable(x float64) float64 {
 
 func (p *panel) invert(x float64) float64 {
 	want, whole := x-p.x0, p.x1-p.x0
-	t, _, _, _ := p.s.invert(want, whole, 2*want/whole-1)
-	return t
+	return p.s.invert(want, whole, 2*want/whole-1)
 }
 
 // depthAt returns the depth at a t of a panel over depth.
@@ -121,7 +120,7 @@ func (p *panel) chainage(depth float64) float64 {
 		run, _ := p.s.at(2*(p.chart.of(depth)-p.u0)/(p.u1-p.u0) - 1)
 		return p.x0 + run
 	case overChainage:
-		t, _, _, _ := p.s.invert(depth-p.y0, p.y1-p.y0, 2*(depth-p.y0)/(p.y1-p.y0)-1)
+		t := p.s.invert(depth-p.y0, p.y1-p.y0, 2*(depth-p.y0)/(p.y1-p.y0)-1)
 		return p.x0 + (p.x1-p.x0)*(t+1)/2
 	}
 	return p.x0 + (p.x1-p.x0)*((depth-p.y0)/(p.y1-p.y0))
@@ -132,11 +131,9 @@ func (p *panel) chainage(depth float64) float64 {
 type reader struct {
 	trace *trace
 	panel int
-	known bool // the panel has been read, over depth, at:
-	t     float64
-	value float64
-	slope float64
-	bend  float64 // the change of the slope with t
+	known bool    // the panel has been read, over depth, at:
+	at    footing // and its third derivative about there is
+	third float64
 }
 
 // depth returns the depth at a chainage that the trace covers.
@@ -145,18 +142,22 @@ func (r *reader) depth(x float64) float64 {
 	if p.form != overDepth || x == p.x0 || x == p.x1 {
 		return p.depth(x)
 	}
-	want, whole := x-p.x0, p.x1-p.x0
-	guess := 2*want/whole - 1
+	want := x - p.x0
+	guess := 2*want/(p.x1-p.x0) - 1
 	if r.known {
-		step := (want - r.value) / r.slope
-		guess = r.t + step*(1-step*r.bend/(2*r.slope))
+		guess = r.at.guess(want, r.third)
 	}
-	root, t, value, slope := p.s.invert(want, whole, guess)
-	if r.known && t != r.t {
-		r.bend = (slope - r.slope) / (t - r.t)
+	t, at, ok := p.s.follow(want, guess)
+	if !ok {
+		r.known = false
+		return p.depthAt(p.s.invert(want, p.x1-p.x0, 2*want/(p.x1-p.x0)-1))
 	}
-	r.known, r.t, r.value, r.slope = true, t, value, slope
-	return p.depthAt(root)
+	r.third = 0
+	if r.known && at.t != r.at.t {
+		r.third = (at.bend - r.at.bend) / (at.t - r.at.t)
+	}
+	r.known, r.at = true, at
+	return p.depthAt(t)
 }
 
 // find goes to the panel that holds a chainage; at a discontinuity the one that ends there.

@@ -2,10 +2,23 @@ package solve
 
 import "math"
 
-// TwoThirds returns x^(2/3) for x >= 0.
+// TwoThirds returns x^(2/3) for x >= 0 to less than one unit in the last place. A guess y at x^(-1/3), as in InverseCubeRoot, is mended by one step and cut to
+// seventeen bits, so that y^3 is exact and x*y too, in two parts of x; the rest of the binomial series of x*y*(1 - h)^(-1/3), with h = 1 - x*y^3, is
+// small against them. Where x^2 or y^3 might leave the normal numbers, math.Cbrt serves.
 func TwoThirds(x float64) float64 {
-	root := math.Cbrt(x)
-	return root * root
+	if !(x > 1e-290 && x < 1e290) {
+		root := math.Cbrt(x)
+		return root * root
+	}
+	bits := math.Float64bits(x)
+	y := math.Float64frombits(thirdGuess - bits/3)
+	h := 1 - (x*y)*(y*y)
+	q := h * h
+	y += y * (h*(1.0/3+h*(2.0/9)) + q*(h*(14.0/81)+q*(35.0/243)))
+	y = math.Float64frombits((math.Float64bits(y) + 1<<35) &^ (1<<36 - 1))
+	high := math.Float64frombits(bits &^ (1<<27 - 1))
+	h = 1 - x*(y*y*y)
+	return high*y + ((x-high)*y + (x*y)*(h*(1.0/3+h*(2.0/9+h*(14.0/81)))))
 }
 
 // InverseCubeRoot returns x^(-1/3) for 1e-290 < x < 1e290, and by way of math.Cbrt for others, to about one and a half units in the last place. It waits for
