@@ -4,7 +4,9 @@
 #   docker run --rm --read-only -p 127.0.0.1:8080:8080 -e LEAT_ALLOW_OPEN=true leat
 #
 # The build fetches Go modules; the running container needs no network but its own port. What needs no container either:
-# CGO_ENABLED=0 go build -trimpath ./cmd/leat
+# CGO_ENABLED=0 go build -trimpath -tags nomsgpack ./cmd/leat
+#
+# The same commit gives the same binary, and with the builder told to forget the time the same image: .ci/long image.
 
 # Any image with this Go and a shell will do.
 ARG GO_IMAGE=golang:1.26
@@ -14,11 +16,16 @@ WORKDIR /src
 COPY go.mod go.sum ./
 RUN go mod download && go mod verify
 COPY . .
+# What the binary is made of asks that its licences go along.
+RUN mkdir /out && go run .ci/licences.go -texts > /out/licences.txt && cp LICENSE /out/licence.txt
 # GOAMD64=v1 is part of what the service promises: the same request gives the same bytes on every replica. The folder for
 # bulk answers that wait is made here since an empty image has nothing to make it with.
-RUN CGO_ENABLED=0 GOAMD64=v1 go build -trimpath -ldflags '-s -w' -o /out/leat ./cmd/leat && mkdir -m 0700 /out/spool
+RUN CGO_ENABLED=0 GOAMD64=v1 go build -trimpath -tags nomsgpack -ldflags '-s -w' -o /out/leat ./cmd/leat && mkdir -m 0700 /out/spool
 
 FROM scratch
+# Of authorities that sign the certificates of databases; the service itself calls nobody.
+COPY --from=build /etc/ssl/certs/ca-certificates.crt /etc/ssl/certs/ca-certificates.crt
+COPY --from=build /out/licences.txt /out/licence.txt /
 COPY --from=build /out/leat /leat
 COPY --from=build --chown=65532:65532 /out/spool /spool
 # By number: an orchestrator can then see that it is not root.

@@ -19,7 +19,7 @@ const (
   leat key        make a caller's key and its line for --keys-file; leat key --help tells more
   leat drive      make load on a service in staging; leat drive --help tells more
   leat health     ask a running service whether it is ready; exit code 0 if so, else 1
-  leat version    say what this binary is
+  leat version    say what this binary is; with --components, what it is made of (CycloneDX)
   leat help       this text
 
 Exit codes: 0 done, 1 failed, 2 misused; of register also 3: done, and some rows have problems.

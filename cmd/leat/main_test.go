@@ -46,6 +46,7 @@ func TestExitCodes(t *testing.T) {
 		{"unknown", nil, []string{"server"}, 2, nil, []string{`unknown command "server"`}},
 		{"version", nil, []string{"version"}, 0, []string{"leat ", "engine ", "go1."}, nil},
 		{"--version", nil, []string{"--version"}, 0, []string{"leat ", "engine "}, nil},
+		{"version --components", nil, []string{"version", "--components"}, 0, []string{`"bomFormat": "CycloneDX"`, `"purl": "pkg:golang/std@`, `"name": "leat"`}, nil},
 		{"version with more", nil, []string{"version", "x"}, 2, nil, []string{"no arguments"}},
 		{"help serve", nil, []string{"help", "serve"}, 0, []string{"--listen VALUE"}, nil},
 		{"help health", nil, []string{"help", "health"}, 0, []string{"/readyz"}, nil},

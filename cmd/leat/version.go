@@ -4,17 +4,31 @@ import (
 	"fmt"
 	"io"
 	"runtime"
+	"runtime/debug"
 
 	"leat/api/serve"
 	"leat/compute"
 )
 
 func runVersion(arguments []string, stdout, stderr io.Writer) int {
+	build := serve.ReadBuild()
+	if len(arguments) == 1 && (arguments[0] == "--components" || arguments[0] == "-components") {
+		info, found := debug.ReadBuildInfo()
+		if !found {
+			fmt.Fprintln(stderr, "leat version: this binary does not say what it is made of; build it with Go's modules")
+			return exitFailed
+		}
+		if err := writeComponents(stdout, info, build); err != nil {
+			fmt.Fprintf(stderr, "leat version: %v\n", err)
+			return exitFailed
+		}
+		fmt.Fprintln(stdout)
+		return exitOK
+	}
 	if len(arguments) > 0 {
-		fmt.Fprintf(stderr, "leat version takes no arguments\n")
+		fmt.Fprintf(stderr, "leat version takes no arguments but --components, which lists what the binary is made of (CycloneDX 1.6, JSON)\n")
 		return exitMisused
 	}
-	build := serve.ReadBuild()
 	modified := ""
 	if build.Modified {
 		modified = " (modified)"
