@@ -81,7 +81,7 @@ func run(w io.Writer, texts bool) error {
 			for _, id := range told {
 				ids[id] = true
 			}
-			if len(told) == 0 !strings.HasPrefix(strings.ToLower(name), "notice") {
+			if len(told) == 0 && !strings.HasPrefix(strings.ToLower(name), "notice") {
 				return fmt.Errorf("%s: the licence in %s is not one of those that are known here", m.Path, name)
 			}
 			fmt.Fprintf(&all, "\n---- %s %s, %s\n\n%s\n", m.Path, m.Version, name, bytes.TrimSpace(text))
