@@ -52,8 +52,9 @@ type Flat interface {
 
 // A FlatTable holds the columns of the flat answers of one operation, in an order that only grows at its end. It is immutable.
 type FlatTable struct {
-	columns []flatColumn
-	names   map[string]int
+	columns  []flatColumn
+	names    map[string]int
+	warnings func(Answer) []Warning
 }
 
 // A flatColumn is a column with what finds its value, told in the units of the row.
@@ -74,7 +75,7 @@ func FlatTableOf(form Answer) *FlatTable {
 // newFlatTable makes the table of an operation: id, line and units, its scalars, then warnings, problem and fingerprint. later are columns that
 // came when those were there already.
 func newFlatTable(scalars []flatColumn, warnings func(Answer) []Warning, fingerprint func(Answer) string, later ...flatColumn) *FlatTable {
-	t := &FlatTable{names: map[string]int{}}
+	t := &FlatTable{names: map[string]int{}, warnings: warnings}
 	t.add(flatColumn{FlatColumn{Name: "id", Type: FlatText}, func(r *FlatAnswer) FlatValue {
 		return textValue(string(appendPlain(nil, r.ID)))
 	}})
@@ -118,6 +119,14 @@ func (t *FlatTable) add(columns ...flatColumn) {
 		t.names[c.Name] = len(t.columns)
 		t.columns = append(t.columns, c)
 	}
+}
+
+// Warnings returns the warnings of a row's answer.
+func (t *FlatTable) Warnings(r *FlatAnswer) []Warning {
+	if r.Answer == nil {
+		return nil
+	}
+	return t.warnings(r.Answer)
 }
 
 func (t *FlatTable) has(name string) bool {

@@ -1,9 +1,12 @@
 package register
 
 import (
+	"cmp"
 	"fmt"
 	"io"
+	"maps"
 	"os"
+	"slices"
 	"strings"
 	"time"
 
@@ -144,12 +147,29 @@ func (c *command) summarize(file *mapping.File, r *run.Report) {
 	for _, kind := range r.Kinds.Most() {
 		fmt.Fprintf(c.stdout, "  %8d  %-20s %s\n", r.Kinds[kind], kind.Code, kind.Columns)
 	}
+	if len(r.Verdicts) > 0 {
+		fmt.Fprintf(c.stdout, "verdicts of the assets computed: %s\n", most(r.Verdicts))
+	}
+	if len(r.Warned) > 0 {
+		fmt.Fprintf(c.stdout, "assets computed with warnings: %s\n", most(r.Warned))
+	}
 	if len(r.Worst) > 0 {
 		fmt.Fprintln(c.stdout, "worst of the assets computed:")
 		for _, w := range r.Worst {
 			fmt.Fprintf(c.stdout, "  %-24s %s\n", w.Asset, w.Text)
 		}
 	}
+}
+
+// most tells counts, the greatest first.
+func most(counts map[string]int64) string {
+	var parts []string
+	for _, name := range slices.SortedFunc(maps.Keys(counts), func(a, b string) int {
+		return cmp.Or(cmp.Compare(counts[b], counts[a]), cmp.Compare(a, b))
+	}) {
+		parts = append(parts, fmt.Sprintf("%d %s", counts[name], name))
+	}
+	return strings.Join(parts, ", ")
 }
 
 // problemsName is where the problems are.

@@ -45,7 +45,9 @@ type Report struct {
 	Counts  store.Counts // of this process, a resumed run's earlier part not included
 	Kinds   Kinds        // of its problems
 	Worst   []Worst      // of the assets computed by this process
-	Took    time.Duration
+	// Verdicts and Warned count those assets by verdict and by each code among their warnings.
+	Verdicts, Warned map[string]int64
+	Took             time.Duration
 }
 
 // A Job is a mapping file with its opened tables.
@@ -146,6 +148,7 @@ func (j *Job) all(ctx context.Context, target store.Target, mode mode) (*Report,
 		}
 	}
 	var top worst
+	var all tally
 	p := &pipeline{
 		plan: j.plan, source: j.source, target: target, mode: mode, query: *query, rows: j.options.Rows,
 		skip: !state.Fresh, mark: true, id: newIdentity(state.Run),
@@ -160,6 +163,7 @@ func (j *Job) all(ctx context.Context, target store.Target, mode mode) (*Report,
 		report.Counts.Add(t.batch.Counts)
 		report.Kinds.add(t.kinds)
 		top.merge(&t.worst)
+		all.merge(&t.tally)
 		if j.options.Progress != nil {
 			j.options.Progress(&Progress{Counts: report.Counts, Total: total, Kinds: report.Kinds, Problems: t.batch.Problems})
 		}
@@ -174,7 +178,7 @@ func (j *Job) all(ctx context.Context, target store.Target, mode mode) (*Report,
 			return report, err
 		}
 	}
-	report.Worst, report.Took = top.assets, time.Since(began)
+	report.Worst, report.Verdicts, report.Warned, report.Took = top.assets, all.verdicts, all.warned, time.Since(began)
 	if target != nil {
 		counts := state.Counts
 		counts.Add(report.Counts)

@@ -63,6 +63,7 @@ type task struct {
 	memory row.Memory
 	at     row.Value // when it is computed
 	kinds  Kinds
+	tally  tally
 
 	done chan struct{}
 }
@@ -87,6 +88,7 @@ func (t *task) stretch(keys row.Kind, ordered bool, after, until row.Value) {
 	}
 	t.known.reset()
 	t.worst.reset()
+	t.tally.reset()
 	clear(t.kinds)
 }
 
@@ -242,6 +244,7 @@ func (w *worker) result(t *task, values []row.Value, solved *operation.Solved, f
 	t.cells = append(t.cells, id.version, t.at)
 	t.batch.Results = append(t.batch.Results, t.cells[start:len(t.cells):len(t.cells)])
 	t.worst.consider(w.plan, values[0], &answer)
+	t.tally.count(w.plan, &answer)
 }
 
 // refused adds the problems that a request was answered with.
