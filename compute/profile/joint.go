@@ -147,14 +147,24 @@ func (s *side) highest(b flow.Branch, f func(section.Geometry) float64) (depth f
 	case high < 0:
 		return 0, false
 	}
-	if at(lo) > 0 {
-		if lo = solve.Dip(at, lo, lo+(hi-lo)/2, hi); !(at(lo) <= 0) {
+	// Next to zero at its lower end, the last places must not decide whether the function dips.
+	low, touching := at(lo), touches*s.energy(lo)
+	if low > -touching {
+		switch dip := solve.Dip(at, lo, lo+(hi-lo)/2, hi); {
+		case at(dip) <= 0:
+			lo = dip
+		case low <= touching:
+			return lo, true
+		default:
 			return 0, false
 		}
 	}
 	depth, _, ok = solve.RootSlopeless(at, lo, hi)
 	return depth, ok
 }
+
+// touches is the share of the energy below which an excess of energy may be nothing but its last places.
+const touches = 1e-14
 
 // lowest returns the shallowest zero on a falling branch of a function that is positive at its lower end; the function may dip once.
 func (s *side) lowest(b flow.Branch, f func(section.Geometry) float64) (depth float64, ok bool) {
@@ -248,9 +258,23 @@ func (j *joint) above(below float64) (above, error) {
 // losses, or at an inflow its force, does not suffice.
 func (j *joint) pass(depth float64) (lower float64, ok bool) {
 	head := j.upper.head(depth)
-	lower, ok = j.lower.supercritical(j.upper.energy(depth)+j.drop, j.loss, head, j.entry)
+	if lower, ok = depth, j.unchanged(depth); !ok {
+		lower, ok = j.lower.supercritical(j.upper.energy(depth)+j.drop, j.loss, head, j.entry)
+	}
 	if ok && j.inflow {
 		lower, ok = j.with.supercriticalAtForce(j.lower.force(lower))
 	}
 	return lower, ok
+}
+
+// unchanged reports whether supercritical flow goes on below the joint at the depth at which it arrives: there neither its energy nor its velocity head changes
+// beyond the last places. With a loss every depth beside it asks for more energy, so that no search would find it.
+func (j *joint) unchanged(depth float64) bool {
+	if j.drop != 0 || j.entry != 0 {
+		return false
+	}
+	above, below := j.upper.channel.Geometry(depth), j.lower.channel.Geometry(depth)
+	energy, head := j.upper.motion.Energy(above), j.upper.motion.VelocityHead(above)
+	return math.Abs(j.lower.motion.Energy(below)-energy) <= touches*energy && math.Abs(j.lower.motion.VelocityHead(below)-head) <= touches*head &&
+		j.lower.motion.EnergyRate(below) < 0
 }
