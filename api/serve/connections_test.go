@@ -66,8 +66,15 @@ func TestCrowdBeforeTLSIsSentAway(t *testing.T) {
 func TestSlowSocketsAreCut(t *testing.T) {
 	const each, readers = 150, 10
 	r := start(t, func(c *Config, _ *Surroundings) { c.HeldBytes = 128 << 20 }, func(s *http.Server) {
-		s.ReadHeaderTimeout, s.ReadTimeout, s.WriteTimeout = 2*time.Second, 3*time.Second, 4*time.Second
+		s.ReadHeaderTimeout, s.ReadTimeout, s.WriteTimeout = 2*time.Second, 3*time.Second, 6*time.Second
 	})
+	// One after the other, so that none is refused for want of a slot. Open and unread until the test ends: only the server can close them.
+	for i := range readers {
+		c := r.dial()
+		c.SetReadBuffer(4 << 10) // so that the kernel does not take what the reader leaves
+		io.WriteString(c, "POST /v1/depths HTTP/1.1\r\nHost: leat\r\nContent-Type: application/json\r\nContent-Length: 17\r\n\r\n{\"bytes\":9000000}")
+		waitFor(t, "an answer to wait for its reader", func() bool { return r.shelf.held.Load() >= int64(i+1)*9000000 })
+	}
 	began := time.Now()
 	cut := make(chan string, 2*each)
 	for _, kind := range []struct {
@@ -76,17 +83,10 @@ func TestSlowSocketsAreCut(t *testing.T) {
 	}{
 		{"header", "POST /v1/depths HTTP/1.1\r\n", "X: y\r\n", each},
 		{"body", "POST /v1/depths HTTP/1.1\r\nHost: leat\r\nContent-Type: application/json\r\nContent-Length: 100000\r\n\r\n{", " ", each},
-		{"reader", "POST /v1/depths HTTP/1.1\r\nHost: leat\r\nContent-Type: application/json\r\nContent-Length: 17\r\n\r\n{\"bytes\":9000000}", "", readers},
 	} {
 		for range kind.count {
 			c := r.dial()
-			if kind.drop == "" {
-				c.SetReadBuffer(4 << 10) // so that the kernel does not take what the reader leaves
-			}
 			io.WriteString(c, kind.first)
-			if kind.drop == "" {
-				continue // open and unread until the test ends: only the server can close it
-			}
 			go func() {
 				for {
 					if _, err := io.WriteString(c, kind.drop); err != nil {
