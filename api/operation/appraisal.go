@@ -93,12 +93,22 @@ func (o *openFindings) gather(flow string, findings []appraise.Finding) {
 	}
 }
 
-// undetermined says why a verdict is open: each criterion and reason once.
+// undetermined says why a verdict is open: each reason once, with the criteria that it keeps from being judged, at the first flow for which it does.
 func (w *warnings) undetermined(open openFindings) {
-	for _, o := range open {
-		detail := o.finding.Criterion.String() + " could not be judged."
+	for i, o := range open {
+		same := func(f openFinding) bool { return f.finding.Reason == o.finding.Reason }
+		if slices.ContainsFunc(open[:i], same) {
+			continue
+		}
+		var criteria []string
+		for _, f := range open[i:] {
+			if name := f.finding.Criterion.String(); same(f) && !slices.Contains(criteria, name) {
+				criteria = append(criteria, name)
+			}
+		}
+		detail := strings.Join(criteria, ", ") + " could not be judged."
 		if o.finding.Reason.Detail != "" {
-			detail = o.finding.Criterion.String() + " could not be judged: " + o.finding.Reason.Detail
+			detail = strings.Join(criteria, ", ") + " could not be judged: " + o.finding.Reason.Detail
 		}
 		w.add("undetermined", o.flow, detail)
 	}

@@ -171,6 +171,9 @@ func TestAppraisalWarnings(t *testing.T) {
 		// Why a verdict is open is told of each criterion once, and only where it is open.
 		{`"section":{"kind":"rectangular","bottom_width":2},"roughness":{"manning":0.013},"bed_slope":0.01,"flows":{"a":1,"b":2},"criteria":{"least_freeboard":0.1,"least_lining_safety":1}`,
 			"undetermined /flows/a undetermined /flows/a"},
+		// One reason is told once, whatever it keeps from being judged.
+		{`"section":{"kind":"rectangular","bottom_width":2,"bank_height":2},"roughness":{"manning":0.013},"bed_slope":0,"flows":{"a":1,"b":2},"criteria":{"least_freeboard":0.1,"greatest_velocity":2}`,
+			"undetermined /flows/a"},
 		{`"section":{"kind":"rectangular","bottom_width":2},"roughness":{"manning":0.013},"bed_slope":0.01,"flows":{"a":1},"criteria":{"least_freeboard":0.1,"greatest_velocity":0.2}`, ""},
 		{`"section":{"kind":"rectangular","bottom_width":2,"bank_height":2},"roughness":{"manning":0.013},"bed_slope":0,"flows":{"a":1},"criteria":{"least_freeboard":0.1}`, "undetermined /flows/a"},
 		{`"section":{"kind":"circular","diameter":2},"roughness":{"manning":0.013},"bed_slope":0.01,"flows":{"a":1},"criteria":{"freeboard_rule":"canal"}`, "undetermined /criteria"},
