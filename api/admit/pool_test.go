@@ -14,7 +14,7 @@ import (
 func work(h *Hold, length time.Duration) {
 	for done := time.Duration(0); done < length; done += 100 * time.Microsecond {
 		time.Sleep(100 * time.Microsecond)
-		h.Checkpoint()
+		h.Checkpoint(time.Now())
 	}
 }
 
@@ -72,7 +72,7 @@ func TestNoMoreHoldersThanSlots(t *testing.T) {
 					p.mutex.Lock()
 					h.since -= time.Second // as if it had been held for long: it gives way wherever somebody waits
 					p.mutex.Unlock()
-					h.Checkpoint()
+					h.Checkpoint(time.Now())
 					if n := inside.Add(1); n > 3 {
 						t.Errorf("%d at once", n)
 					}
@@ -213,7 +213,7 @@ func TestClassesShareEqually(t *testing.T) {
 							time.Sleep(100 * time.Microsecond)
 							held[class].Add(int64(100 * time.Microsecond))
 							if checks {
-								h.Checkpoint()
+								h.Checkpoint(time.Now())
 							}
 						}
 						h.Release()
@@ -327,7 +327,7 @@ func TestSilenceIsSinceTheLastSignOfLife(t *testing.T) {
 		if s := p.Silence(); s != 2*time.Second {
 			t.Error(s)
 		}
-		a.Checkpoint()
+		a.Checkpoint(time.Now())
 		if s := p.Silence(); s != time.Second {
 			t.Error(s)
 		}
@@ -380,7 +380,7 @@ func BenchmarkCheckpoint(b *testing.B) {
 	h := p.Hold(Long)
 	h.Acquire(b.Context())
 	for b.Loop() {
-		h.Checkpoint()
+		h.Checkpoint(time.Now())
 	}
 	h.Release()
 }

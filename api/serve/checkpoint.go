@@ -13,11 +13,14 @@ func checkpoints(ctx context.Context, limit time.Duration, hold func(worker int)
 	return func(worker int) func() error {
 		slot, deadline := hold(worker), time.Now().Add(limit)
 		return func() error {
-			deadline = deadline.Add(slot.Checkpoint())
+			now := time.Now()
+			if waited := slot.Checkpoint(now); waited > 0 {
+				now, deadline = now.Add(waited), deadline.Add(waited)
+			}
 			switch {
 			case ctx.Err() != nil:
 				return goneClient()
-			case time.Now().After(deadline):
+			case now.After(deadline):
 				return lateAnswer(limit)
 			}
 			return nil
