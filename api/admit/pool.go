@@ -9,6 +9,10 @@ import (
 // turn is how long a solve holds its slot at least before it gives way to another class, and what a class is charged with in advance.
 const turn = time.Millisecond
 
+// usualWait is the part of the greatest wait that one may be expected to wait. Means are not promises, least of all where other programs want the same
+// processors: so nearly all that are let in get a slot before the greatest wait is over, instead of a late refusal.
+const usualWait = 4
+
 // Settings are what a Pool is told.
 type Settings struct {
 	Slots int           // how many solve at once
@@ -92,7 +96,7 @@ func (p *Pool) refusal(class Class) *Refusal {
 	switch {
 	case n >= p.settings.Queue:
 		return &Refusal{LineFull, n, expected}
-	case expected > p.settings.Wait/2: // means are not promises: so nearly all that are let in do not wait longer than Wait
+	case expected > p.settings.Wait/usualWait:
 		return &Refusal{LongWait, n, expected}
 	}
 	return nil

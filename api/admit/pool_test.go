@@ -122,7 +122,7 @@ func TestAFullLineRefusesAtOnce(t *testing.T) {
 // Whoever would wait too long by what solves took lately is refused at once, however many places there are.
 func TestALongWaitIsRefusedAtOnce(t *testing.T) {
 	synctest.Test(t, func(t *testing.T) {
-		p := New(Settings{Slots: 2, Queue: 1000, Wait: 100 * time.Millisecond})
+		p := New(Settings{Slots: 2, Queue: 1000, Wait: 200 * time.Millisecond})
 		do(t, p, Long, 10*time.Millisecond)
 		var all sync.WaitGroup
 		var refused atomic.Int64

@@ -100,7 +100,7 @@ func (s *Server) noSlot(c *gin.Context, err error) *wire.Problem {
 	case admit.LineFull:
 		why += ", as many as may at once"
 	case admit.LongWait:
-		why += ", and one more would not be solved within queue_wait_seconds"
+		why += ", and one more would have to wait for too much of queue_wait_seconds"
 	case admit.WaitedLong:
 		why = fmt.Sprintf("the request waited for queue_wait_seconds, %v", s.config.QueueWait.Seconds())
 	}

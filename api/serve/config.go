@@ -69,7 +69,7 @@ func Default() Config {
 		Work:         limits.Work,
 		TimeLimit:    10 * time.Second,
 		Queue:        256,
-		QueueWait:    500 * time.Millisecond,
+		QueueWait:    time.Second,
 		Streams:      64,
 		Burst:        100,
 		IdleLimit:    30 * time.Second,

@@ -46,7 +46,7 @@ var settings = []setting{
 	durationSetting("time-limit", "longest time of one calculation; beyond it 504", 100*time.Millisecond, 10*time.Minute, func(c *Config) *time.Duration { return &c.TimeLimit }),
 	countSetting("solves", "requests and bulk lines solved at once; 0 is one for each processor", 0, 1024, func(c *Config) *int { return &c.Solves }),
 	countSetting("queue", "requests that may wait to be solved, long ones (profiles) and short ones each; beyond it 503", 1, 100_000, func(c *Config) *int { return &c.Queue }),
-	durationSetting("queue-wait", "longest time that a request waits to be solved; one that would wait longer gets 503 at once", time.Millisecond, time.Minute, func(c *Config) *time.Duration { return &c.QueueWait }),
+	durationSetting("queue-wait", "longest time that a request waits to be solved; one that is expected to wait for more than a quarter of it gets 503 at once", time.Millisecond, time.Minute, func(c *Config) *time.Duration { return &c.QueueWait }),
 	countSetting("streams", "bulk streams open at once; beyond it 503", 1, 100_000, func(c *Config) *int { return &c.Streams }),
 	{
 		"rate", "requests a second from each caller, told by its key or else its address, a bulk stream counting as one; beyond it 429; 0 is no bound", "0, or a number from 0.01 to 1000000",
