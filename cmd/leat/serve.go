@@ -11,11 +11,15 @@ import (
 	"os/signal"
 	"runtime"
 	"syscall"
+	"time"
 
 	"leat/api/operation"
 	"leat/api/serve"
 	"leat/openapi"
 )
+
+// lastLines is how long the process waits at its end for its log to be taken.
+const lastLines = time.Second
 
 // runServe serves until a signal asks to stop.
 func runServe(arguments, environment []string, stdout, stderr io.Writer) int {
@@ -31,7 +35,9 @@ func runServe(arguments, environment []string, stdout, stderr io.Writer) int {
 	// Before anything listens, so that no signal finds the default action, which would cut requests.
 	ctx, stop := signal.NotifyContext(context.Background(), syscall.SIGINT, syscall.SIGTERM)
 	defer stop()
-	log := serve.NewLog(stderr)
+	lines := serve.NewPatientLog(stderr)
+	defer lines.Close(lastLines)
+	log := serve.NewLog(lines)
 	memory := limitMemory(environment)
 	if config.Solves == 0 {
 		config.Solves = runtime.GOMAXPROCS(0)
