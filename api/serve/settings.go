@@ -338,8 +338,10 @@ func (c *Config) check() []error {
 	if !c.AllowOpen && c.KeysFile == "" && c.TLSCertificate == "" && !isLoopback(c.Listen) {
 		mistakes = append(mistakes, fmt.Errorf("--listen %s lets anyone on the network call; give --keys-file or --tls-certificate, or say --allow-open", c.Listen))
 	}
-	if !c.AllowOpen && c.AdminListen != "" && !isLoopback(c.AdminListen) {
-		mistakes = append(mistakes, fmt.Errorf("--admin-listen %s shows metrics and process profiles to anyone on the network; listen on 127.0.0.1, or say --allow-open", c.AdminListen))
+	// Where callers are known, whoever sets both knows that the network keeps them from the admin port. To ask for --allow-open there would open the
+	// public listener too on the day that the keys' setting is lost.
+	if !c.AllowOpen && c.KeysFile == "" && c.TLSCertificate == "" && c.AdminListen != "" && !isLoopback(c.AdminListen) {
+		mistakes = append(mistakes, fmt.Errorf("--admin-listen %s shows metrics and process profiles to anyone on the network; listen on 127.0.0.1, give callers keys or TLS, or say --allow-open", c.AdminListen))
 	}
 	if c.AdminListen != "" && c.AdminListen == c.Listen && !strings.HasSuffix(c.Listen, ":0") {
 		mistakes = append(mistakes, fmt.Errorf("--admin-listen and --listen are both %s; give them different ports", c.Listen))

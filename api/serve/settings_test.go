@@ -116,7 +116,7 @@ func TestListeningBeyondTheMachineMustBeMeant(t *testing.T) {
 		{"--listen :8080", false}, {"--listen 0.0.0.0:8080", false}, {"--listen [::]:8080", false}, {"--listen 10.0.0.7:8080", false}, {"--listen leat.example:80", false},
 		{"--listen :8080 --allow-open", true}, {"--listen :8080 --allow-open=false", false}, {"--listen :8080 --keys-file keys", true},
 		{"--listen :8080 --tls-certificate c --tls-key k", true}, {"--tls-certificate c", false}, {"--tls-key k", false}, {"--client-authorities a", false},
-		{"--admin-listen 127.0.0.1:9090", true}, {"--admin-listen :9090", false}, {"--admin-listen :9090 --keys-file keys", false}, {"--admin-listen :9090 --allow-open", true},
+		{"--admin-listen 127.0.0.1:9090", true}, {"--admin-listen :9090", false}, {"--admin-listen :9090 --keys-file keys", true}, {"--admin-listen :9090 --tls-certificate c --tls-key k", true}, {"--admin-listen :9090 --allow-open", true},
 		{"--admin-listen 127.0.0.1:8080", false}, {"--listen 127.0.0.1:0 --admin-listen 127.0.0.1:0", true},
 	} {
 		_, err := Load(strings.Fields(row.arguments), nil)
