@@ -57,13 +57,13 @@ func (c *Channel) piece(f *curve, lo, hi float64, visit func(b Branch) bool) boo
 	n := c.cut(f, lo, hi, &knot)
 	b := Branch{Lo: lo, Rising: f.risesFromZero(), First: true}
 	if lo > 0 {
-		b.Rising = f.rate(c.Section.At(above(lo))) >= 0
+		b.Rising = f.rises(c.Section.At(above(lo)))
 	}
 	for i := 1; i <= n; i++ {
 		end := knot[i]
 		rising := true
 		if !math.IsInf(end, 1) {
-			rising = f.rate(c.Section.At(end)) >= 0
+			rising = f.rises(c.Section.At(end))
 		}
 		if rising != b.Rising {
 			// A turn that rounds to the end of the piece, the crown perhaps, stays just inside it.

@@ -12,17 +12,20 @@ import (
 // dst's capacity does not suffice.
 func (c *Channel) Critical(discharge float64, dst []float64) (depths []float64, absent Absence) {
 	m := c.Motion(discharge)
-	return m.critical(dst)
+	depths, absent, _ = m.critical(dst)
+	return depths, absent
 }
 
-func (m *Motion) critical(dst []float64) (depths []float64, absent Absence) {
+// critical is Channel.Critical. margin is the greatest negative dE/ddepth that the search has met at an end of a stretch: were the cosine greater by less than
+// its size, the search would have taken the same way. It is -Inf where no search was needed.
+func (m *Motion) critical(dst []float64) (depths []float64, absent Absence, margin float64) {
 	if m.onceCritical() {
 		hi := m.channel.Section.Height()
 		depth, ok := m.criticalBetween(0, hi)
 		if !ok {
-			return dst, Unsolved
+			return dst, Unsolved, math.Inf(-1)
 		}
-		return append(dst, depth), Present
+		return append(dst, depth), Present, math.Inf(-1)
 	}
 	none := len(dst)
 	f := m.hollow(specificEnergy)
@@ -49,11 +52,11 @@ func (m *Motion) critical(dst []float64) (depths []float64, absent Absence) {
 	})
 	switch {
 	case len(dst) > none:
-		return dst, Present
+		return dst, Present, f.margin
 	case kinked:
-		return dst, Kinked
+		return dst, Kinked, f.margin
 	}
-	return dst, FillsFirst
+	return dst, FillsFirst, f.margin
 }
 
 // onceCritical reports whether exactly one depth is known to be critical: alpha is constant, and A^3/T rises throughout.

@@ -33,6 +33,7 @@ type curve struct {
 	of      quantity
 	turning turning
 	a, b    float64 // for a power law the conveyance is proportional to A^a/P^b to a constant power; else 0
+	margin  float64 // the greatest negative rate that was met at an end of a stretch
 }
 
 // uniform returns the curve of conveyance at the channel's slope.
@@ -59,7 +60,7 @@ func (c *Channel) uniform() curve {
 // hollow returns the curve of energy or force. Where the coefficients are constant both have a derivative of the sign of
 // cos - constant*T/A^3.
 func (m *Motion) hollow(of quantity) curve {
-	f := curve{motion: *m, of: of}
+	f := curve{motion: *m, of: of, margin: math.Inf(-1)}
 	if m.fixed {
 		switch m.channel.Section.Form() {
 		case section.Rising, section.Arched:
@@ -83,6 +84,16 @@ func (f *curve) value(g section.Geometry) float64 {
 		return f.motion.Force(g)
 	}
 	return f.motion.channel.Law.AtSlope(g, f.motion.channel.Slope).K
+}
+
+// rises reports whether the quantity rises at a geometry, and keeps the margin.
+func (f *curve) rises(g section.Geometry) bool {
+	rate := f.rate(g)
+	if rate >= 0 {
+		return true
+	}
+	f.margin = max(f.margin, rate)
+	return false
 }
 
 // slope returns the derivative of the quantity with depth at a geometry.

@@ -28,9 +28,13 @@ func (c *Channel) Depths(discharge float64, room *Room) Depths {
 	d := Depths{CriticalSlope: math.NaN(), Bank: math.NaN(), Capacity: Capacity{math.NaN(), math.NaN()}, FullDischarge: math.NaN(),
 		Ratio: math.NaN(), Freeboard: math.NaN(), Fill: math.NaN(), FullFriction: math.NaN()}
 	d.Normal, d.NormalAbsent = c.Normal(discharge, room.normal[:0])
-	d.Critical, d.CriticalAbsent = c.Critical(discharge, room.critical[:0])
+	m := c.Motion(discharge)
+	var margin float64
+	d.Critical, d.CriticalAbsent, margin = m.critical(room.critical[:0])
 	d.Class = c.Class(discharge, d.Normal, d.Critical)
-	if slope, known := c.CriticalSlope(discharge); known {
+	if slope, known := m.criticalSlopeBeside(d.Critical, margin); known {
+		d.CriticalSlope = slope
+	} else if slope, known = c.CriticalSlope(discharge); known {
 		d.CriticalSlope = slope
 	}
 	if bank, known := c.BankHeight(); known {

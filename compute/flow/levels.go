@@ -29,7 +29,7 @@ func (m *Motion) ForceBranches(visit func(b Branch) bool) {
 // section has no critical depth.
 func (m *Motion) LeastEnergy() (depth, energy float64, known bool) {
 	var room [8]float64
-	depths, _ := m.critical(room[:0])
+	depths, _, _ := m.critical(room[:0])
 	energy = math.Inf(1)
 	for _, y := range depths {
 		if e := m.Energy(m.channel.Section.At(y)); e < energy {
