@@ -148,6 +148,12 @@ func Drive(ctx context.Context, plan *Plan, address string) (*Report, error) {
 			t.bytes = post(address, request.Path, request.Body)
 		}
 		took, err := d.time(ctx, t, 21)
+		// On a busy machine all tries of aim may have been slow; a faster one afterwards tells.
+		for again := 0; again < 3 && err == nil && took[0].Seconds() < 0.8*request.TakeSeconds; again++ {
+			if err = d.aim(ctx, t); err == nil {
+				took, err = d.time(ctx, t, 21)
+			}
+		}
 		if err != nil {
 			return nil, err
 		}
