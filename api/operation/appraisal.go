@@ -14,11 +14,15 @@ import (
 
 // Appraisal is the operation appraisal: whether one section is good enough for its flows.
 var Appraisal = Operation{Name: "appraisal", Form: (*wire.AppraisalAnswer)(nil), Request: (*wire.AppraisalRequest)(nil), Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
-	var request wire.AppraisalRequest
-	return run("appraisal", body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
-		return solveAppraisal(&request, &options)
+	request := appraisalRequests.take()
+	solved, problem := run("appraisal", body, options, request, &request.Common, func() (wire.Answer, *wire.Problem) {
+		return solveAppraisal(request, &options)
 	})
+	appraisalRequests.leave(request) // not after a panic
+	return solved, problem
 }}
+
+var appraisalRequests requests[wire.AppraisalRequest]
 
 // notice stands in every appraisal.
 const notice = "An aid to judgement: local codes and standards come first, and a licensed engineer decides. A culvert is its barrel here; inlet control is not computed."

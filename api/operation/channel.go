@@ -59,8 +59,11 @@ func (in inputs) build(place string, faults []wire.Fault) (flow.Channel, []wire.
 
 // gather adds the faults of a constructor of compute under the pointer of what was being built: a member at a place of the request.
 func gather(all []wire.Fault, place, member string, err error) []wire.Fault {
+	if err == nil {
+		return all // before faults, which escapes, is made
+	}
 	var faults compute.Faults
-	if err != nil && errors.As(err, &faults) {
+	if errors.As(err, &faults) {
 		return append(all, wire.FaultsUnder(place+member, faults)...)
 	}
 	return all
@@ -69,8 +72,11 @@ func gather(all []wire.Fault, place, member string, err error) []wire.Fault {
 // asGiven returns the faults of a section under the members that the request gives: where one member stands for both sides, those of
 // its two sides are one fault of that member.
 func asGiven(s *wire.Section, err error) error {
+	if err == nil {
+		return nil // before faults, which escapes, is made
+	}
 	var faults compute.Faults
-	if err == nil || !errors.As(err, &faults) {
+	if !errors.As(err, &faults) {
 		return err
 	}
 	both := map[string]string{}

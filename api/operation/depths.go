@@ -9,11 +9,15 @@ import (
 
 // Depths is the operation depths: the characteristic depths of one section.
 var Depths = Operation{Name: "depths", Form: (*wire.DepthsAnswer)(nil), Request: (*wire.DepthsRequest)(nil), Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
-	var request wire.DepthsRequest
-	return run("depths", body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
-		return solveDepths(&request, options.Brief)
+	request := depthsRequests.take()
+	solved, problem := run("depths", body, options, request, &request.Common, func() (wire.Answer, *wire.Problem) {
+		return solveDepths(request, options.Brief)
 	})
+	depthsRequests.leave(request) // not after a panic
+	return solved, problem
 }}
+
+var depthsRequests requests[wire.DepthsRequest]
 
 func solveDepths(r *wire.DepthsRequest, brief bool) (wire.Answer, *wire.Problem) {
 	in := inputs{&r.Common, r.Barrels, &r.Section, &r.Roughness, r.BedSlope}

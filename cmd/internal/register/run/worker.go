@@ -38,8 +38,9 @@ type worker struct {
 	mode    mode
 	writer  *mapping.Writer
 	options operation.Options
-	body    []byte // what is hashed: the operation, the engine's version, the request
-	head    int    // where the request begins in it
+	body    []byte          // what is hashed: the operation, the engine's version, the request
+	head    int             // where the request begins in it
+	answer  wire.FlatAnswer // of the row at hand: it would reach the heap
 }
 
 func newWorker(p *plan, mode mode) *worker {
@@ -217,9 +218,10 @@ func (w *worker) result(t *task, values []row.Value, solved *operation.Solved, f
 	for _, at := range w.mapping.Copied {
 		t.cells = append(t.cells, values[at])
 	}
-	answer := wire.FlatAnswer{Units: solved.Units, Answer: solved.Answer}
+	answer := &w.answer
+	*answer = wire.FlatAnswer{Units: solved.Units, Answer: solved.Answer}
 	for k, i := range w.answers {
-		v := w.table.Value(&answer, i)
+		v := w.table.Value(answer, i)
 		cell := row.Value{}
 		if v.Given {
 			switch w.layout.Columns[1+len(w.mapping.Copied)+k].Kind {
@@ -243,8 +245,8 @@ func (w *worker) result(t *task, values []row.Value, solved *operation.Solved, f
 	}
 	t.cells = append(t.cells, id.version, t.at)
 	t.batch.Results = append(t.batch.Results, t.cells[start:len(t.cells):len(t.cells)])
-	t.worst.consider(w.plan, values[0], &answer)
-	t.tally.count(w.plan, &answer)
+	t.worst.consider(w.plan, values[0], answer)
+	t.tally.count(w.plan, answer)
 }
 
 // refused adds the problems that a request was answered with.

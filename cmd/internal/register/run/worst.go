@@ -29,11 +29,11 @@ func (w *worst) reset() { w.assets = w.assets[:0] }
 
 // consider takes in an answer. By an appraisal the governing value counts against its limit, otherwise the discharge against the capacity.
 func (w *worst) consider(p *plan, asset row.Value, answer *wire.FlatAnswer) {
-	at, measure, text := p.measure(answer)
-	if !at || len(w.assets) == kept && measure <= w.assets[kept-1].Measure {
+	measure, known := p.measure(answer)
+	if !known || len(w.assets) == kept && measure <= w.assets[kept-1].Measure {
 		return
 	}
-	w.add(Worst{asset.String(), measure, text()})
+	w.add(Worst{asset.String(), measure, p.badness(answer)})
 }
 
 func (w *worst) add(a Worst) {
@@ -53,31 +53,41 @@ func (w *worst) merge(other *worst) {
 	}
 }
 
+// cell returns one cell of an answer; one that is not given where the answer has none of that name.
+func (p *plan) cell(answer *wire.FlatAnswer, name string) wire.FlatValue {
+	if i, found := p.table.Find(name); found {
+		return p.table.Value(answer, i)
+	}
+	return wire.FlatValue{}
+}
+
 // measure says how bad an answer is.
-func (p *plan) measure(answer *wire.FlatAnswer) (known bool, measure float64, text func() string) {
-	cell := func(name string) wire.FlatValue {
-		if i, found := p.table.Find(name); found {
-			return p.table.Value(answer, i)
-		}
-		return wire.FlatValue{}
-	}
-	verdict := cell("verdict")
+func (p *plan) measure(answer *wire.FlatAnswer) (measure float64, known bool) {
+	verdict := p.cell(answer, "verdict")
 	if !verdict.Given {
-		ratio := cell("capacity_ratio")
-		return ratio.Given, ratio.Number, func() string { return fmt.Sprintf("carries %.4g times its capacity", ratio.Number) }
+		ratio := p.cell(answer, "capacity_ratio")
+		return ratio.Number, ratio.Given
 	}
-	value, limit := cell("governing_value"), cell("governing_limit")
+	value, limit := p.cell(answer, "governing_value"), p.cell(answer, "governing_limit")
 	if measure = math.Abs(value.Number-limit.Number) / math.Abs(limit.Number); math.IsNaN(measure) {
 		measure = 0
 	}
 	if verdict.Text != "falls_short" {
 		measure = -measure
 	}
-	return limit.Given, measure, func() string {
-		where := cell("governing_criterion").Text
-		if flow := cell("governing_flow").Text; flow != "" {
-			where += " under " + flow
-		}
-		return fmt.Sprintf("%s: %s %.4g, limit %.4g %s", verdict.Text, where, value.Number, limit.Number, cell("governing_unit").Text)
+	return measure, limit.Given
+}
+
+// badness says in words what measure says in a number.
+func (p *plan) badness(answer *wire.FlatAnswer) string {
+	verdict := p.cell(answer, "verdict")
+	if !verdict.Given {
+		return fmt.Sprintf("carries %.4g times its capacity", p.cell(answer, "capacity_ratio").Number)
 	}
+	where := p.cell(answer, "governing_criterion").Text
+	if flow := p.cell(answer, "governing_flow").Text; flow != "" {
+		where += " under " + flow
+	}
+	return fmt.Sprintf("%s: %s %.4g, limit %.4g %s", verdict.Text, where,
+		p.cell(answer, "governing_value").Number, p.cell(answer, "governing_limit").Number, p.cell(answer, "governing_unit").Text)
 }
