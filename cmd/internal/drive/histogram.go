@@ -9,7 +9,6 @@ import (
 type histogram struct {
 	counts [1100]int64
 	total  int64
-	sum    time.Duration
 	most   time.Duration
 }
 
@@ -25,7 +24,6 @@ func bucketOf(d time.Duration) int {
 func (h *histogram) add(d time.Duration) {
 	h.counts[bucketOf(d)]++
 	h.total++
-	h.sum += d
 	h.most = max(h.most, d)
 }
 
@@ -38,11 +36,4 @@ func (h *histogram) quantile(share float64) time.Duration {
 		}
 	}
 	return 0
-}
-
-func (h *histogram) mean() time.Duration {
-	if h.total == 0 {
-		return 0
-	}
-	return h.sum / time.Duration(h.total)
 }
