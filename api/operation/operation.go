@@ -61,6 +61,9 @@ type Solved struct {
 	ID     wire.ID     // of the request; a part of its body
 
 	Fingerprint string // of the request; empty where it was not asked for
+
+	request wire.Request // as it was decoded: Figure samples from it
+	options Options      // of its call
 }
 
 // AppendJSON appends the answer object, with the id inside it or without.
@@ -101,7 +104,7 @@ func run(name string, body []byte, options Options, request wire.Request, common
 	if problem != nil {
 		return Solved{ID: common.ID}, problem
 	}
-	solved := Solved{Answer: answer, Units: common.System, ID: common.ID}
+	solved := Solved{Answer: answer, Units: common.System, ID: common.ID, request: request, options: options}
 	if options.Fingerprint {
 		solved.Fingerprint = wire.Fingerprint(name, body, solved.Units)
 		answer.SetFingerprint(solved.Fingerprint)

@@ -43,5 +43,8 @@ func appendPlain(dst []byte, id ID) []byte {
 	return append(dst, id...)
 }
 
+// Text returns an id as people read it: a string without its quotes and escapes, a number as its literal.
+func (id ID) Text() string { return string(appendPlain(nil, id)) }
+
 // MaxIDCharacters is the length of the longest id that is a string.
 const MaxIDCharacters = 256

@@ -4,6 +4,7 @@ package section
 type Gutter struct {
 	bands
 	curb float64
+	line []stretch
 }
 
 // NewGutter returns a gutter whose depth is measured at the curb: a vertical curb of curb_height that goes on above it, and a street that rises
@@ -33,7 +34,8 @@ func NewGutter(crossSlope, curbHeight, gutterWidth, gutterSlope float64) (Sectio
 	if gutterWidth > 0 {
 		l.side(gutterWidth, gutterWidth*gutterSlope, 1/gutterSlope)
 	}
-	return &Gutter{compile(l.onward(1 / crossSlope)), curbHeight}, nil
+	line := l.onward(1 / crossSlope)
+	return &Gutter{compile(line), curbHeight, line}, nil
 }
 
 // Bank implements Section: the top of the curb.
