@@ -99,7 +99,7 @@ func (s *Solved) Figure() (*Figure, *wire.Problem) {
 	case *wire.AppraisalRequest:
 		return appraisalFigure(r, s.Answer.(*wire.AppraisalAnswer))
 	case *wire.ProfileRequest:
-		return profileFigure(r, s.Answer.(*wire.ProfileAnswer), s.options)
+		return profileFigure(s.profile, r, s.Answer.(*wire.ProfileAnswer))
 	}
 	return nil, wire.Internal("There is no picture of this answer.")
 }
@@ -203,11 +203,7 @@ func appraisalFigure(r *wire.AppraisalRequest, a *wire.AppraisalAnswer) (*Figure
 	return &Figure{Cross: cross(&asset.Channel, &in, known(depths...)...), Facts: facts(wire.Number{}, r.BedSlope)}, nil
 }
 
-func profileFigure(r *wire.ProfileRequest, a *wire.ProfileAnswer, options Options) (*Figure, *wire.Problem) {
-	p, problem := newProfileRun(r, options)
-	if problem != nil {
-		return nil, problem
-	}
+func profileFigure(p *profileRun, r *wire.ProfileRequest, a *wire.ProfileAnswer) (*Figure, *wire.Problem) {
 	names := p.names()
 	courses := p.run.Courses()
 	long := &Long{Courses: make([]Course, len(courses))}

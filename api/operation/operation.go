@@ -63,7 +63,7 @@ type Solved struct {
 	Fingerprint string // of the request; empty where it was not asked for
 
 	request wire.Request // as it was decoded: Figure samples from it
-	options Options      // of its call
+	profile *profileRun  // of a profile, as it was built for its solve
 }
 
 // AppendJSON appends the answer object, with the id inside it or without.
@@ -104,7 +104,7 @@ func run(name string, body []byte, options Options, request wire.Request, common
 	if problem != nil {
 		return Solved{ID: common.ID}, problem
 	}
-	solved := Solved{Answer: answer, Units: common.System, ID: common.ID, request: request, options: options}
+	solved := Solved{Answer: answer, Units: common.System, ID: common.ID, request: request}
 	if options.Fingerprint {
 		solved.Fingerprint = wire.Fingerprint(name, body, solved.Units)
 		answer.SetFingerprint(solved.Fingerprint)

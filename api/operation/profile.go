@@ -26,9 +26,10 @@ func solve(run *profile.Run) (*profile.Answer, error) {
 func newProfile(solve func(*profile.Run) (*profile.Answer, error)) Operation {
 	return Operation{Name: "profile", Form: (*wire.ProfileAnswer)(nil), Request: (*wire.ProfileRequest)(nil), Long: true, Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 		var request wire.ProfileRequest
-		return run("profile", body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
-			p, problem := newProfileRun(&request, options)
-			if problem != nil {
+		var p *profileRun
+		solved, problem := run("profile", body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
+			var problem *wire.Problem
+			if p, problem = newProfileRun(&request, options); problem != nil {
 				return nil, problem
 			}
 			answer, err := solve(&p.run)
@@ -37,6 +38,8 @@ func newProfile(solve func(*profile.Run) (*profile.Answer, error)) Operation {
 			}
 			return p.answer(answer), nil
 		})
+		solved.profile = p
+		return solved, problem
 	}}
 }
 

@@ -12,6 +12,9 @@ type scale struct {
 }
 
 func (s scale) at(value float64) float64 {
+	if s.to == s.from {
+		return 0.5 * (s.first + s.last)
+	}
 	return s.first + (value-s.from)/(s.to-s.from)*(s.last-s.first)
 }
 

@@ -22,7 +22,7 @@ type level struct {
 // The room beside a plot: left for the ticks and right for labels.
 const (
 	tickRoom  = 46.0
-	labelRoom = 168.0
+	labelRoom = 196.0
 	paperWide = 640.0
 	margin    = 14.0
 )
@@ -78,9 +78,16 @@ func (l *list) cross(c *operation.Cross, units wire.System, r rectangle, waterDe
 		ring := append(append([]point(nil), wall...), first)
 		l.line(lining, ring...)
 	default:
-		// Ground below the wall; level beside it where it ends at the bank.
-		earth := append([]point{{max(plot.left, first.x-brim), plot.bottom}, {max(plot.left, first.x-brim), first.y}}, wall...)
-		earth = append(earth, point{min(plot.right, last.x+brim), last.y}, point{min(plot.right, last.x+brim), plot.bottom})
+		// Ground below the wall; level beside it where it ends at the bank. Elsewhere it goes on upwards.
+		from, to := first.x, last.x
+		if ends := c.Outline; ends[0].Y <= c.Bank*(1+1e-9) {
+			from = max(plot.left, from-brim)
+		}
+		if ends := c.Outline; ends[len(ends)-1].Y <= c.Bank*(1+1e-9) {
+			to = min(plot.right, to+brim)
+		}
+		earth := append([]point{{from, plot.bottom}, {from, first.y}}, wall...)
+		earth = append(earth, point{to, last.y}, point{to, plot.bottom})
 		l.area(ground, earth...)
 		if !math.IsNaN(waterDepth) {
 			l.area(water, wetted(c.Outline, waterDepth, at)...)
@@ -132,17 +139,21 @@ func (l *list) levels(c *operation.Cross, across, up scale, plot rectangle, leve
 	}
 }
 
-// label writes a text to the right of a plot at a height, with a sample of its line and a leader from what it means.
+// label writes a text to the right of a plot at a height, with a sample of its line and a leader from what it means. A pen without a stroke leaves the
+// place of the sample free for a sign; nil has the text stand there.
 func (l *list) label(p *pen, name, value string, from point, right, y float64) {
 	l.line(leader, from, point{right + 4, from.y}, point{right + 12, y}, point{right + 14, y})
-	if p.stroke != "" {
+	x, room := right+43, labelRoom-46
+	switch {
+	case p == nil:
+		x, room = right+18, labelRoom-20
+	case p.stroke != "":
 		l.line(p, point{right + 14, y}, point{right + 38, y})
 	}
-	const room = labelRoom - 46
 	if value != "" {
 		name = cut(name, common, room-wide(" "+value, common)) + " " + value
 	}
-	l.write(ink, point{right + 43, y + 4}, start, common, cut(name, common, room))
+	l.write(ink, point{x, y + 4}, start, common, cut(name, common, room))
 }
 
 // zones draws where zones of roughness part, and what each has.

@@ -2,6 +2,7 @@ package picture
 
 import (
 	"math"
+	"strconv"
 
 	"leat/api/operation"
 	"leat/api/wire"
@@ -43,20 +44,27 @@ func drawDepths(solved *operation.Solved, a *wire.DepthsAnswer, f *operation.Fig
 		levels = append(levels, level{markPens[m.Name], m.Name, told(units, wire.QuantityLength, m.Depth), m.Depth, nil})
 		l.describe(m.Name + " depth " + told(units, wire.QuantityLength, m.Depth) + ".")
 	}
-	for _, absent := range []string{a.NormalAbsent, a.CriticalAbsent} {
-		if absent != "" {
-			l.describe(absent)
-		}
-	}
 	foot := l.cross(f.Cross, units, rectangle{margin, bodyTop, paperWide - margin, bodyTop + crossHigh}, waterDepth, levels)
 	if a.SlopeClass != "" {
 		l.describe("The slope is " + a.SlopeClass + ".")
+	}
+	for _, absent := range []struct{ depth, why string }{{"normal", a.NormalAbsent}, {"critical", a.CriticalAbsent}} {
+		if absent.why == "" {
+			continue
+		}
+		text := "There is no " + absent.depth + " depth: " + absent.why
+		l.describe(text)
+		for _, line := range lines(text, common, paperWide-2*margin) {
+			foot += 17
+			l.write(ink, point{margin, foot}, start, common, line)
+		}
+		foot += 4
 	}
 	if len(f.Energy) == 0 {
 		return l.finish(foot + margin)
 	}
 
-	top := foot + 30
+	top := foot + 38
 	bottom := top + chartHigh - 44
 	left, right := margin+tickRoom, paperWide-margin-labelRoom
 	half := 0.5 * (right - left - 22)
@@ -64,7 +72,7 @@ func drawDepths(solved *operation.Solved, a *wire.DepthsAnswer, f *operation.Fig
 	up := scale{0, deepest, bottom, top}
 	shown := up
 	shown.to = units.FromSI(wire.QuantityLength, deepest)
-	l.write(soft, point{margin, top - 8}, start, small, "depth ("+unitText(units, wire.QuantityLength)+")")
+	l.write(soft, point{margin, top - 14}, start, small, "depth ("+unitText(units, wire.QuantityLength)+")")
 	l.axisLeft(shown, left, left, 8)
 	var pens []*pen
 	var energies, forces []operation.Point2
@@ -118,7 +126,10 @@ func drawSection(solved *operation.Solved, a *wire.SectionAnswer, f *operation.F
 
 // leftOut says that not everything is drawn.
 func (l *list) leftOut(y float64, n int, what string) {
-	text := number(float64(n)) + " more " + what + " are not drawn; the answer as JSON or CSV has them."
+	text := strconv.Itoa(n) + " more " + what + " are not drawn; the answer as JSON has them."
+	if n == 1 {
+		text = "One more of the " + what + " is not drawn; the answer as JSON has it."
+	}
 	l.write(soft, point{margin, y + 14}, start, small, text)
 	l.describe(text)
 }
@@ -156,7 +167,7 @@ func drawRating(solved *operation.Solved, a *wire.RatingAnswer, f *operation.Fig
 	up := scale{0, 1.04 * highest, bottom, top}
 	shown := up
 	shown.to = units.FromSI(wire.QuantityLength, up.to)
-	l.write(soft, point{margin, top - 10}, start, small, "depth ("+unitText(units, wire.QuantityLength)+")")
+	l.write(soft, point{margin, top - 14}, start, small, "depth ("+unitText(units, wire.QuantityLength)+")")
 	l.axisLeft(shown, left, right, 10)
 	var points []operation.Point2
 	var pens []*pen
@@ -187,7 +198,7 @@ func drawRating(solved *operation.Solved, a *wire.RatingAnswer, f *operation.Fig
 	for _, i := range few(seen, 8) {
 		p := points[i]
 		at := point{across.at(p.X), up.at(p.Y)}
-		notes = append(notes, note{soft, told(units, wire.QuantityDischarge, p.X), "at " + told(units, wire.QuantityLength, p.Y), at})
+		notes = append(notes, note{nil, told(units, wire.QuantityDischarge, p.X), "at " + told(units, wire.QuantityLength, p.Y), at})
 		wanted = append(wanted, at.y)
 	}
 	places := spread(wanted, top+4, bottom)

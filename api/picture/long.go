@@ -24,11 +24,11 @@ func drawProfile(solved *operation.Solved, a *wire.ProfileAnswer, f *operation.F
 	l := &long{list: newList("Profile", solved, f.Facts), units: solved.Units, answer: a, courses: f.Long.Courses, places: f.Long.Places}
 	left, right := margin+tickRoom+6, paperWide-margin-8
 	l.along = scale{0, a.Length, left, right}
-	y := l.legend(bodyTop + 4)
+	y := l.legend(bodyTop+4, f.Long.Reported)
 
 	flags, used, leftOut := rows(l.flags(), left-30, right+8, 5)
 	flagFoot := y + 14*float64(used) + 4
-	plot := rectangle{left, flagFoot + 8, right, flagFoot + 8 + 280}
+	plot := rectangle{left, flagFoot + 10, right, flagFoot + 10 + 280}
 	up := l.heights(plot)
 	for _, g := range flags {
 		base := flagFoot - 14*float64(g.row) - 3
@@ -41,20 +41,20 @@ func drawProfile(solved *operation.Solved, a *wire.ProfileAnswer, f *operation.F
 	l.longSection(plot, up, f.Long.Reported)
 	y = plot.bottom + 36
 	if scaled := math.Abs(up.at(up.from+l.deepest()) - up.at(up.from)); scaled < 45 {
-		y = l.depthsAlong(rectangle{left, y + 14, right, y + 14 + 120})
+		y = l.depthsAlong(rectangle{left, y + 22, right, y + 22 + 120})
 	}
 	y = l.stretchesOfCurves(y)
 	y = l.stretchesOfReaches(y)
 	if leftOut > 0 {
-		l.leftOut(y-8, leftOut, "marks")
-		y += 14
+		l.leftOut(y, leftOut, "marks")
+		y += 20
 	}
 	l.tell()
 	return l.finish(y + 6)
 }
 
 // legend names the lines that are drawn.
-func (l *long) legend(y float64) float64 {
+func (l *long) legend(y float64, reported bool) float64 {
 	entries := []struct {
 		pen  *pen
 		text string
@@ -62,7 +62,7 @@ func (l *long) legend(y float64) float64 {
 	}{
 		{waterLine, "water", true}, {energyLine, "energy", true}, {normalLine, "normal depth", l.anyLevel(func(c *operation.Course) [2]float64 { return c.Normal })},
 		{critical, "critical depth", l.anyLevel(func(c *operation.Course) [2]float64 { return c.Critical })}, {bedLine, "bed", true},
-		{bankLine, "bank", l.anyTop(false)}, {crownLine, "crown", l.anyTop(true)}, {jumpLine, "jump", len(l.answer.Jumps) > 0},
+		{bankLine, "bank", l.anyTop(false)}, {crownLine, "crown", l.anyTop(true)}, {jumpLine, "jump", len(l.answer.Jumps) > 0}, {station, "reported", reported},
 	}
 	x := margin
 	for _, e := range entries {
@@ -73,7 +73,11 @@ func (l *long) legend(y float64) float64 {
 		if x+width > paperWide-margin {
 			x, y = margin, y+16
 		}
-		l.line(e.pen, point{x, y}, point{x + 28, y})
+		if e.pen == station {
+			l.dot(point{x + 14, y})
+		} else {
+			l.line(e.pen, point{x, y}, point{x + 28, y})
+		}
 		l.write(ink, point{x + 33, y + 4}, start, small, e.text)
 		x += width
 	}
@@ -97,10 +101,18 @@ func (l *long) flags() []sign {
 	}
 	for i := range l.answer.Controls {
 		c := &l.answer.Controls[i]
-		out = append(out, sign{l.along.at(c.Chainage), "control: " + spoken(c.Kind), curve})
+		out = append(out, sign{l.along.at(c.Chainage), "control: " + controlText(c.Kind), curve})
 	}
 	slices.SortStableFunc(out, func(a, b sign) int { return cmp.Compare(a.at, b.at) })
 	return out
+}
+
+// controlText is what a kind of control is called.
+func controlText(kind string) string {
+	if kind == "sharp_crested" || kind == "broad_crested" {
+		kind += "_weir"
+	}
+	return spoken(kind)
 }
 
 // heights chooses which levels a plot shows: bed, water and energy all, and of the other lines what lies not far above those.
@@ -140,7 +152,7 @@ func (l *long) longSection(plot rectangle, up scale, reported bool) {
 	shown := up
 	shown.from, shown.to = l.units.FromSI(wire.QuantityLength, up.from), l.units.FromSI(wire.QuantityLength, up.to)
 	unit := unitText(l.units, wire.QuantityLength)
-	l.write(soft, point{margin, plot.top - 8}, start, small, "level ("+unit+")")
+	l.write(soft, point{margin, plot.top - 14}, start, small, "level ("+unit+")")
 	l.axisLeft(shown, plot.left, plot.right, 8)
 	chainages := l.along
 	chainages.to = l.units.FromSI(wire.QuantityLength, l.answer.Length)
@@ -174,7 +186,7 @@ func (l *long) longSection(plot rectangle, up scale, reported bool) {
 		l.jump(&l.answer.Jumps[i], up)
 	}
 	if reported {
-		for i := range l.answer.Stations {
+		for _, i := range few(len(l.answer.Stations), mostDots) {
 			s := &l.answer.Stations[i]
 			l.dot(point{l.along.at(s.Chainage), up.at(s.WaterLevel)})
 		}
@@ -256,7 +268,7 @@ func (l *long) depthsAlong(plot rectangle) float64 {
 	up := scale{0, 1.06 * most, plot.bottom, plot.top}
 	shown := up
 	shown.to = l.units.FromSI(wire.QuantityLength, up.to)
-	l.write(soft, point{margin, plot.top - 8}, start, small, "depth ("+unitText(l.units, wire.QuantityLength)+")")
+	l.write(soft, point{margin, plot.top - 14}, start, small, "depth ("+unitText(l.units, wire.QuantityLength)+")")
 	l.axisLeft(shown, plot.left, plot.right, 5)
 	var surface []point
 	for i := range l.places {
@@ -285,7 +297,7 @@ func (l *long) depthsAlong(plot rectangle) float64 {
 func (l *long) strip(y, from, to float64, name string) {
 	l.line(frame, point{from, y + 3}, point{from, y - 11})
 	l.line(frame, point{to, y + 3}, point{to, y - 11})
-	if wide(name, small)+6 <= to-from {
+	if name != "" && wide(name, small)+6 <= to-from {
 		l.write(ink, point{0.5 * (from + to), y}, middle, small, name)
 	}
 }
@@ -321,7 +333,11 @@ func (l *long) stretchesOfReaches(y float64) float64 {
 			continue // too near to the mark before to be told from it
 		}
 		last = to
-		l.strip(y, from, to, cut(c.ID.Text(), small, max(to-from-8, wide("…", small))))
+		name := ""
+		if to-from > 14 {
+			name = cut(c.ID.Text(), small, to-from-8)
+		}
+		l.strip(y, from, to, name)
 	}
 	return y + 8
 }
@@ -345,9 +361,12 @@ func (l *long) tell() {
 	}
 	for i := range a.Controls[:min(len(a.Controls), mostTold)] {
 		c := &a.Controls[i]
-		l.describe("A control (" + spoken(c.Kind) + ") at chainage " + length(c.Chainage) + ".")
+		l.describe("A control (" + controlText(c.Kind) + ") at chainage " + length(c.Chainage) + ".")
 	}
 }
+
+// mostDots is how many reported stations are marked: more would be a band.
+const mostDots = 150
 
 // mostTold bounds how many of a kind a description tells.
 const mostTold = 20

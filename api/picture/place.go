@@ -43,25 +43,49 @@ type rowed struct {
 	from, to float64 // of the text
 }
 
-// rows gives flags, in order from the left, rows above each other so that neither texts nor their leaders touch. Those that find no place in so many rows
-// are left out, and counted.
-func rows(flags []sign, left, right float64, most int) (placed []rowed, used, leftOut int) {
+// rows gives signs rows above each other so that neither texts nor their leaders touch. Those that find no place in so many rows are left out, and
+// counted. Which order and which row to try first depends on where they crowd, so all are tried, and the one that leaves out fewest is taken.
+func rows(signs []sign, left, right float64, most int) (placed []rowed, used, leftOut int) {
+	leftOut = len(signs) + 1
+	reversed := slices.Clone(signs)
+	slices.Reverse(reversed)
+	for _, ordered := range [][]sign{signs, reversed} {
+		for _, fromAbove := range []bool{false, true} {
+			p, u, o := rowsInOrder(ordered, left, right, most, fromAbove)
+			if o < leftOut || o == leftOut && u < used {
+				placed, used, leftOut = p, u, o
+			}
+		}
+	}
+	return placed, used, leftOut
+}
+
+// rowsInOrder places signs one after the other in the first row that has room, from below or from above.
+func rowsInOrder(signs []sign, left, right float64, most int, fromAbove bool) (placed []rowed, used, leftOut int) {
 	const gap = 5
+	lowest := most
 next:
-	for _, f := range flags {
+	for _, f := range signs {
 		width := wide(f.text, small)
 		for row := range most {
+			if fromAbove {
+				row = most - 1 - row
+			}
 			for _, from := range []float64{f.at + gap, f.at - gap - width} {
 				r := rowed{f, row, from, from + width}
 				if r.from < left || r.to > right || slices.ContainsFunc(placed, func(o rowed) bool { return r.touches(o, gap) }) {
 					continue
 				}
 				placed = append(placed, r)
-				used = max(used, row+1)
+				lowest = min(lowest, row)
 				continue next
 			}
 		}
 		leftOut++
+	}
+	for i := range placed {
+		placed[i].row -= lowest
+		used = max(used, placed[i].row+1)
 	}
 	return placed, used, leftOut
 }

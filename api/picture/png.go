@@ -133,7 +133,7 @@ func (c *canvas) disc(x, y, radius float64) {
 	const corners = 10
 	var ring [2 * corners]float64
 	for i := range corners {
-		angle := -2 * math.Pi * float64(i) / corners
+		angle := 2 * math.Pi * float64(i) / corners
 		ring[2*i], ring[2*i+1] = x+radius*math.Cos(angle), y+radius*math.Sin(angle)
 	}
 	c.polygon(ring[:]...)

@@ -14,7 +14,7 @@ var darkStyle = func() string {
 	for _, p := range pens {
 		b.WriteString("." + p.name + "{")
 		if p.darkStroke != "" {
-			b.WriteString("stroke:" + p.darkStroke)
+			b.WriteString("stroke:" + p.darkStroke + ";")
 		}
 		if p.darkFill != "" {
 			b.WriteString("fill:" + p.darkFill)

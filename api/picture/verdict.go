@@ -73,7 +73,10 @@ func drawAppraisal(solved *operation.Solved, a *wire.AppraisalAnswer, f *operati
 		l.write(soft, point{margin + 20, y + 17}, start, common, cut(text, common, paperWide-2*margin-20))
 		l.describe(text + ".")
 	}
-	y += 34
+	y += 16
+	if a.Governing.Known {
+		y += 18
+	}
 	levels := bankLevel(f.Cross, units)
 	deepest := math.NaN()
 	drawn := few(len(a.Flows), mostLevels)
@@ -126,10 +129,10 @@ func (l *list) findings(a *wire.AppraisalAnswer, units wire.System, y float64) f
 			l.write(ink, point{criterionAt, y}, start, common, cut(spoken(string(finding.Criterion)), common, valueAt-criterionAt-6))
 			value, limit := told(units, q, finding.Value), told(units, q, finding.Limit)
 			if p == unjudged {
-				value = cut(spoken(finding.Reason), common, limitAt-valueAt-6)
+				value = cut(spoken(finding.Reason), common, paperWide-margin-valueAt)
 			}
 			l.write(ink, point{valueAt, y}, start, common, value)
-			if !math.IsNaN(finding.Limit) {
+			if p != unjudged && !math.IsNaN(finding.Limit) {
 				l.write(ink, point{limitAt, y}, start, common, limit)
 			}
 			sign := map[*pen]string{meets: "met", fallsShort: "not met", unjudged: "not judged"}[p]

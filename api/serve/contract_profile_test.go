@@ -5,6 +5,7 @@ import (
 	"encoding/csv"
 	"encoding/json"
 	"fmt"
+	"image/png"
 	"strings"
 	"testing"
 
@@ -88,6 +89,22 @@ func TestContractForms(t *testing.T) {
 		}
 	}
 
+	for _, op := range operation.All() {
+		for _, name := range exampleFiles(t, op.Name+".", ".request.json") {
+			status, media, answer := ask(op.Name, "image/svg+xml, image/*;q=0.5", example(t, name))
+			if status != 200 || media != "image/svg+xml" || !bytes.HasPrefix(answer, []byte("<svg ")) {
+				t.Errorf("%s as a drawing: %d %s %.80s", name, status, media, answer)
+			}
+			if again, _, second := ask(op.Name, "image/svg+xml", example(t, name)); again != 200 || !bytes.Equal(answer, second) {
+				t.Errorf("%s: the same request gave another drawing", name)
+			}
+		}
+		status, media, answer := ask(op.Name, "image/png", example(t, exampleFiles(t, op.Name+".", ".request.json")[0]))
+		if config, err := png.DecodeConfig(bytes.NewReader(answer)); status != 200 || media != "image/png" || err != nil || config.Width != 1280 {
+			t.Errorf("%s as a PNG: %d %s %v", op.Name, status, media, err)
+		}
+	}
+
 	const geo = "application/geo+json"
 	placed := example(t, "profile.surveyed.request.json")
 	status, media, answer := ask("profile", geo, placed)
@@ -121,7 +138,8 @@ func TestContractForms(t *testing.T) {
 		{"profile", geo, oneReach(`"downstream":{"depth":-1}`), 422, "/downstream/depth"},
 		{"depths", geo, `{}`, 406, "application/json, text/csv"},
 		{"depths", "text/csv", `{}`, 422, "/section"},
-		{"profile", "image/gif", `{}`, 406, "application/json, text/csv, application/geo+json"},
+		{"profile", "image/gif", `{}`, 406, "application/json, text/csv, application/geo+json, image/svg+xml, image/png"},
+		{"depths", "image/svg+xml", `{}`, 422, "/section"},
 	} {
 		if status, _, answer := ask(row.op, row.accept, []byte(row.body)); status != row.status || !strings.Contains(string(answer), row.says) {
 			t.Errorf("%s as %s: %d %s", row.op, row.accept, status, answer)

@@ -10,6 +10,7 @@ import (
 	"leat/api/admit"
 	"leat/api/format"
 	"leat/api/operation"
+	"leat/api/picture"
 	"leat/api/wire"
 )
 
@@ -40,7 +41,7 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 	if op.Long {
 		limit = bodyLimit{"profile_body_bytes", s.config.ProfileBytes}
 	}
-	forms := format.Renderings(op)
+	forms := append(format.Renderings(op), picture.Renderings(op)...)
 	offers := []string{mediaJSON}
 	for i := range forms {
 		offers = append(offers, forms[i].MediaType)

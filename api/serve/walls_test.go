@@ -52,7 +52,7 @@ func readHouse(t *testing.T) house {
 	if err != nil {
 		t.Fatal(err)
 	}
-	for _, expected := range []string{"compute", "compute/section", "compute/friction", "api/wire", "api/operation", "api/stream", "api/admit", "api/format", "api/site", "api/serve", "cmd/leat", "openapi"} {
+	for _, expected := range []string{"compute", "compute/section", "compute/friction", "api/wire", "api/operation", "api/stream", "api/admit", "api/format", "api/picture", "api/site", "api/serve", "cmd/leat", "openapi"} {
 		if h[expected] == nil {
 			t.Fatalf("package %s was not found: the walls would stand around nothing", expected)
 		}

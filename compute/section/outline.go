@@ -2,8 +2,8 @@ package section
 
 import "math"
 
-// arcSamples is into how many chords a smooth piece of a round wall is parted: none of them strays from it by more than about a thousandth of the piece.
-const arcSamples = 24
+// arcSamples is into how many chords a smooth piece of a round wall is parted: none of them strays from it by more than a few ten-thousandths of the piece.
+const arcSamples = 48
 
 // outlined is a section that knows where its walls stand.
 type outlined interface {

@@ -14,7 +14,7 @@ func TestOutlinesEncloseTheArea(t *testing.T) {
 		if _, table := s.(*Tabulated); exact == table {
 			t.Errorf("%s: exact %v", sample.name, exact)
 		}
-		tolerance := 8e-3 // of chords, most of it near the bed
+		tolerance := 2e-3 // of chords, most of it near the bed
 		switch s.(type) {
 		case *Trapezoidal, *Triangular, *Benched, *Gutter, *SurveyedLine, *Box:
 			tolerance = 1e-7
