@@ -89,19 +89,31 @@ const samples = 120
 
 // Figure samples what a picture of the answer draws. It may be called once the request is solved, as long as its body lives.
 func (s *Solved) Figure() (*Figure, *wire.Problem) {
-	switch r := s.request.(type) {
-	case *wire.SectionRequest:
-		return sectionFigure(r, s.Answer.(*wire.SectionAnswer))
-	case *wire.DepthsRequest:
-		return depthsFigure(r, s.Answer.(*wire.DepthsAnswer))
-	case *wire.RatingRequest:
-		return ratingFigure(r, s.Answer.(*wire.RatingAnswer))
-	case *wire.AppraisalRequest:
-		return appraisalFigure(r, s.Answer.(*wire.AppraisalAnswer))
-	case *wire.ProfileRequest:
-		return profileFigure(s.profile, r, s.Answer.(*wire.ProfileAnswer))
+	switch a := s.Answer.(type) {
+	case *wire.SectionAnswer:
+		return figure(s, a, sectionFigure)
+	case *wire.DepthsAnswer:
+		return figure(s, a, depthsFigure)
+	case *wire.RatingAnswer:
+		return figure(s, a, ratingFigure)
+	case *wire.AppraisalAnswer:
+		return figure(s, a, appraisalFigure)
+	case *wire.ProfileAnswer:
+		return profileFigure(s.profile, s.profile.request, a)
 	}
 	return nil, wire.Internal("There is no picture of this answer.")
+}
+
+// figure decodes a request anew and samples from it.
+func figure[R any, A wire.Answer, P interface {
+	*R
+	wire.Request
+}](s *Solved, answer A, sample func(P, A) (*Figure, *wire.Problem)) (*Figure, *wire.Problem) {
+	request := P(new(R))
+	if problem := wire.Decode(s.body, s.defaultUnits, s.limits, request); problem != nil {
+		return nil, problem
+	}
+	return sample(request, answer)
 }
 
 func sectionFigure(r *wire.SectionRequest, a *wire.SectionAnswer) (*Figure, *wire.Problem) {

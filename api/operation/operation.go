@@ -62,8 +62,11 @@ type Solved struct {
 
 	Fingerprint string // of the request; empty where it was not asked for
 
-	request wire.Request // as it was decoded: Figure samples from it
-	profile *profileRun  // of a profile, as it was built for its solve
+	// What Figure samples from: the request as it came, since the decoded one may be in use for another by then; of a profile, what was built of it.
+	body         []byte
+	defaultUnits wire.System
+	limits       *wire.Limits
+	profile      *profileRun
 }
 
 // AppendJSON appends the answer object, with the id inside it or without.
@@ -104,7 +107,7 @@ func run(name string, body []byte, options Options, request wire.Request, common
 	if problem != nil {
 		return Solved{ID: common.ID}, problem
 	}
-	solved := Solved{Answer: answer, Units: common.System, ID: common.ID, request: request}
+	solved := Solved{Answer: answer, Units: common.System, ID: common.ID, body: body, defaultUnits: options.Units, limits: options.limits()}
 	if options.Fingerprint {
 		solved.Fingerprint = wire.Fingerprint(name, body, solved.Units)
 		answer.SetFingerprint(solved.Fingerprint)
