@@ -53,6 +53,8 @@ func (a fixedAnswer) AppendJSON(dst []byte, _ wire.System, _ wire.ID) []byte {
 
 func (a fixedAnswer) SetFingerprint(string) {}
 
+func (a fixedAnswer) NonFinite() string { return "" }
+
 func newBulk(t testing.TB, op *operation.Operation, options operation.Options, choice Choice, lineBytes int) *Bulk {
 	t.Helper()
 	b, problem := New(op, options, choice, lineBytes)

@@ -15,7 +15,7 @@ import (
 // Appraisal is the operation appraisal: whether one section is good enough for its flows.
 var Appraisal = Operation{Name: "appraisal", Form: (*wire.AppraisalAnswer)(nil), Request: (*wire.AppraisalRequest)(nil), Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 	request := appraisalRequests.take()
-	solved, problem := run("appraisal", body, options, request, &request.Common, func() (wire.Answer, *wire.Problem) {
+	solved, problem := Run("appraisal", body, options, request, &request.Common, func() (wire.Answer, *wire.Problem) {
 		return solveAppraisal(request, &options)
 	})
 	appraisalRequests.leave(request) // not after a panic

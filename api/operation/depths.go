@@ -10,7 +10,7 @@ import (
 // Depths is the operation depths: the characteristic depths of one section.
 var Depths = Operation{Name: "depths", Form: (*wire.DepthsAnswer)(nil), Request: (*wire.DepthsRequest)(nil), Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 	request := depthsRequests.take()
-	solved, problem := run("depths", body, options, request, &request.Common, func() (wire.Answer, *wire.Problem) {
+	solved, problem := Run("depths", body, options, request, &request.Common, func() (wire.Answer, *wire.Problem) {
 		return solveDepths(request, options.Brief)
 	})
 	depthsRequests.leave(request) // not after a panic

@@ -98,14 +98,17 @@ func (o *Options) limits() *wire.Limits {
 	return o.Limits
 }
 
-// run is the path that every operation takes: decode into request, solve it.
-func run(name string, body []byte, options Options, request wire.Request, common *wire.Common, solve func() (wire.Answer, *wire.Problem)) (Solved, *wire.Problem) {
+// Run is the path that every operation takes: decode into request, solve it, and look whether all numbers of the answer are some.
+func Run(name string, body []byte, options Options, request wire.Request, common *wire.Common, solve func() (wire.Answer, *wire.Problem)) (Solved, *wire.Problem) {
 	if problem := wire.Decode(body, options.Units, options.limits(), request); problem != nil {
 		return Solved{ID: common.ID}, problem
 	}
 	answer, problem := solve()
 	if problem != nil {
 		return Solved{ID: common.ID}, problem
+	}
+	if what := answer.NonFinite(); what != "" {
+		return Solved{ID: common.ID}, wire.NonFiniteResult("The calculation ended, but " + what + " came out infinite or as no number; nothing is given rather than that.")
 	}
 	solved := Solved{Answer: answer, Units: common.System, ID: common.ID, body: body, defaultUnits: options.Units, limits: options.limits()}
 	if options.Fingerprint {

@@ -27,7 +27,7 @@ func newProfile(solve func(*profile.Run) (*profile.Answer, error)) Operation {
 	return Operation{Name: "profile", Form: (*wire.ProfileAnswer)(nil), Request: (*wire.ProfileRequest)(nil), Long: true, Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 		var request wire.ProfileRequest
 		var p *profileRun
-		solved, problem := run("profile", body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
+		solved, problem := Run("profile", body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
 			var problem *wire.Problem
 			if p, problem = newProfileRun(&request, options); problem != nil {
 				return nil, problem

@@ -11,7 +11,7 @@ import (
 // Rating is the operation rating: a depth-discharge table.
 var Rating = Operation{Name: "rating", Form: (*wire.RatingAnswer)(nil), Request: (*wire.RatingRequest)(nil), Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 	var request wire.RatingRequest
-	return run("rating", body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
+	return Run("rating", body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
 		return solveRating(&request, &options)
 	})
 }}

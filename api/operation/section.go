@@ -9,7 +9,7 @@ import (
 // Section is the operation section: geometry and hydraulics at given depths.
 var Section = Operation{Name: "section", Form: (*wire.SectionAnswer)(nil), Request: (*wire.SectionRequest)(nil), Solve: func(body []byte, options Options) (Solved, *wire.Problem) {
 	var request wire.SectionRequest
-	return run("section", body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
+	return Run("section", body, options, &request, &request.Common, func() (wire.Answer, *wire.Problem) {
 		return solveSection(&request, &options)
 	})
 }}

@@ -65,6 +65,8 @@ func (a fakeAnswer) AppendJSON(dst []byte, _ wire.System, _ wire.ID) []byte { re
 
 func (a fakeAnswer) SetFingerprint(string) {}
 
+func (a fakeAnswer) NonFinite() string { return "" }
+
 // A running server and what a test wants to know of it.
 type running struct {
 	*Server

@@ -6,4 +6,6 @@ type Answer interface {
 	AppendJSON(dst []byte, system System, id ID) []byte
 	// SetFingerprint sets the fingerprint that the answer is told with: see Traced.
 	SetFingerprint(fingerprint string)
+	// NonFinite says in words what of the answer should be a number and is infinite or NaN; empty where nothing is.
+	NonFinite() string
 }
