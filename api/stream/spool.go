@@ -83,15 +83,15 @@ func (s *spool) append(data []byte) {
 		s.tail.n += n
 		s.size += int64(n)
 		s.over = s.over || s.size > s.store.memory
-		filled := s.tail
-		if filled.n == pageSize {
-			s.tail = nil
+		var filled *page
+		if s.tail.n == pageSize {
+			filled, s.tail = s.tail, nil
 		}
 		spill := s.store.folder != "" && !s.full && (s.memory+1)*pageSize > s.store.memory
 		s.mutex.Unlock()
 		data = data[n:]
-		if filled.n < pageSize {
-			break
+		if filled == nil {
+			break // the tail may be taken already, and serve another stream
 		}
 		// Nobody else knows of the page until it is pushed: the side that takes waits for the signal if there is nothing older.
 		w := waiting{page: filled}
