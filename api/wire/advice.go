@@ -102,6 +102,9 @@ func unknownMemberAdvice(name string, known, accepted []string) string {
 
 // unknownValueAdvice says which name an unknown one was meant to be, if that can be told.
 func unknownValueAdvice(given string, known []string) string {
+	if len(given) > longestMisspelt {
+		return ""
+	}
 	if given == "MultiLineString" && slices.Contains(known, "LineString") {
 		return " Merge its parts to one LineString, from upstream to downstream."
 	}
