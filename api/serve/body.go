@@ -14,16 +14,25 @@ import (
 // A larder holds the request bodies that are in memory and bounds their sum. Room is taken as bytes arrive, so that a caller who
 // announces much and sends little holds little.
 type larder struct {
-	room    int64
-	held    atomic.Int64
-	buffers sync.Pool
+	room   int64
+	held   atomic.Int64
+	first  sync.Pool // of buffers of firstBuffer bytes
+	second sync.Pool // of keptBuffer
 }
 
-// keptBuffer is the size of a fresh buffer; larger ones are not kept for reuse.
-const keptBuffer = 16 << 10
+// A body begins in a buffer of firstBuffer bytes, which most requests do not fill and which is what one that never comes takes up. One that does goes to
+// a buffer of keptBuffer; larger ones are not kept for reuse.
+const (
+	firstBuffer = 2 << 10
+	keptBuffer  = 16 << 10
+)
 
 func newLarder(room int64) *larder {
-	return &larder{room: room, buffers: sync.Pool{New: func() any { return new([keptBuffer]byte) }}}
+	return &larder{
+		room:   room,
+		first:  sync.Pool{New: func() any { return new([firstBuffer]byte) }},
+		second: sync.Pool{New: func() any { return new([keptBuffer]byte) }},
+	}
 }
 
 func (l *larder) take(n int64) bool {
@@ -39,17 +48,51 @@ type body struct {
 	bytes  []byte
 	larder *larder
 	held   int64
-	pooled *[keptBuffer]byte
+	first  *[firstBuffer]byte // to give back
+	second *[keptBuffer]byte  // to give back
 }
 
 func (b *body) release() {
 	b.larder.held.Add(-b.held)
 	b.held = 0
 	b.bytes = nil
-	if b.pooled != nil {
-		b.larder.buffers.Put(b.pooled)
-		b.pooled = nil
+	if b.first != nil {
+		b.larder.first.Put(b.first)
+		b.first = nil
 	}
+	if b.second != nil {
+		b.larder.second.Put(b.second)
+		b.second = nil
+	}
+}
+
+// grow moves the body to a larger buffer, of at most about most bytes, and reports whether there was room.
+func (b *body) grow(most int64) bool {
+	old := b.bytes
+	size := int64(keptBuffer)
+	if b.first == nil {
+		size = min(2*int64(cap(old)), most)
+	}
+	if size <= int64(cap(old)) {
+		return true
+	}
+	if !b.larder.take(size - b.held) {
+		return false
+	}
+	b.held = size
+	if b.first != nil {
+		b.second = b.larder.second.Get().(*[keptBuffer]byte)
+		b.bytes = append(b.second[:0], old...)
+		b.larder.first.Put(b.first)
+		b.first = nil
+		return true
+	}
+	b.bytes = append(make([]byte, 0, size), old...)
+	if b.second != nil {
+		b.larder.second.Put(b.second)
+		b.second = nil
+	}
+	return true
 }
 
 // A bodyLimit is the most bytes that a request body may have, and the name of that limit in GET /v1/limits.
@@ -71,27 +114,18 @@ func (l *larder) read(r *http.Request, limit bodyLimit) (b body, problem *wire.P
 			b.release()
 		}
 	}()
-	if !l.take(keptBuffer) {
+	if !l.take(firstBuffer) {
 		skip(r)
 		return b, fullHouse()
 	}
-	b.held = keptBuffer
-	b.pooled = l.buffers.Get().(*[keptBuffer]byte)
-	b.bytes = b.pooled[:0]
+	b.held = firstBuffer
+	b.first = l.first.Get().(*[firstBuffer]byte)
+	b.bytes = b.first[:0]
 	for {
-		if len(b.bytes) == cap(b.bytes) {
-			size := min(2*int64(cap(b.bytes)), limit.bytes+1) // the byte beyond the limit tells exactly full from too much
-			if size > int64(cap(b.bytes)) {
-				if !l.take(size - b.held) {
-					b.release()
-					skip(r)
-					return b, fullHouse()
-				}
-				b.held = size
-				grown := make([]byte, len(b.bytes), size)
-				copy(grown, b.bytes)
-				b.bytes = grown
-			}
+		if len(b.bytes) == cap(b.bytes) && !b.grow(limit.bytes+1) { // the byte beyond the limit tells exactly full from too much
+			b.release()
+			skip(r)
+			return b, fullHouse()
 		}
 		n, err := r.Body.Read(b.bytes[len(b.bytes):cap(b.bytes)])
 		b.bytes = b.bytes[:len(b.bytes)+n]

@@ -79,7 +79,7 @@ func TestContractFailures(t *testing.T) {
 	s, server, waiting, release := startTroubled(t, time.Minute, func(c *serve.Config) {
 		c.TimeLimit = time.Second
 		c.BodyBytes = 4 << 10
-		c.HeldBytes = 30 << 10 // room for one body
+		c.HeldBytes = 3 << 10 // room for one body
 		c.DrainDelay = 300 * time.Millisecond
 	})
 	const target = "/v1/depths"

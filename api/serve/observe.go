@@ -62,10 +62,17 @@ func (s *Server) observe(silent map[string]bool) gin.HandlerFunc {
 	}
 }
 
-// logAccess writes the one line of a request.
+// logAccess writes the one line of a request, but not of each refusal in a storm of them.
 func (s *Server) logAccess(c *gin.Context, e *exchange, elapsed time.Duration) {
 	level, status := slog.LevelInfo, c.Writer.Status()
+	write, leftOut := s.refusals.took(time.Since(s.began), isRefusal(status) && e.cut == "" && e.early == "")
+	s.logLeftOut(leftOut)
+	if !write {
+		return
+	}
 	switch {
+	case isRefusal(status): // the service does as it should; alerts go by the metrics
+		level = slog.LevelWarn
 	case status >= 500:
 		level = slog.LevelError
 	case status >= 400 || e.cut != "":

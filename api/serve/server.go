@@ -57,6 +57,8 @@ type Server struct {
 	admin        *http.Server // nil without an admin listener
 	adminAddress net.Addr
 	inside       atomic.Int64 // connections on the public listener
+	began        time.Time
+	refusals     refusalLog
 
 	keys     atomic.Pointer[keyring]    // nil where none are asked for
 	tls      atomic.Pointer[tls.Config] // nil without TLS
@@ -88,6 +90,7 @@ func New(config Config, operations []*operation.Operation, around Surroundings) 
 		draining: make(chan struct{}),
 		stopped:  make(chan struct{}),
 		served:   make(chan error, 2),
+		began:    time.Now(),
 	}
 	if err := s.store.Check(); err != nil {
 		return nil, fmt.Errorf("--spool-dir %q cannot be used: %w", config.SpoolDir, err)
@@ -192,5 +195,6 @@ func (s *Server) Stop() error {
 		// Last, so that probes are answered while requests end. A profile being taken is worth no wait.
 		err = errors.Join(err, s.admin.Close())
 	}
+	s.logLeftOut(s.refusals.rest())
 	return err
 }

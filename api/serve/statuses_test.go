@@ -30,7 +30,7 @@ func TestEveryProblemStatus(t *testing.T) {
 	s, server, waiting, release := startTroubled(t, 700*time.Millisecond, func(c *serve.Config) {
 		c.TimeLimit = time.Second
 		c.BodyBytes = 4 << 10
-		c.HeldBytes = 30 << 10 // room for one body
+		c.HeldBytes = 3 << 10 // room for one body
 		c.KeysFile = keys
 	})
 	defer server.Stop()
