@@ -29,7 +29,7 @@ type Operation struct {
 	// Long says that requests may be long and their solves take a while.
 	Long bool
 	// Solve decodes one request object, checks it and solves it. With a problem, which is without Instance, what it returns holds
-	// the ID alone, where the body could be read that far.
+	// ID and Kind alone, where the body could be read that far.
 	Solve func(body []byte, options Options) (Solved, *wire.Problem)
 }
 
@@ -59,6 +59,7 @@ type Solved struct {
 	Answer wire.Answer
 	Units  wire.System // of the request, in which the answer is told
 	ID     wire.ID     // of the request; a part of its body
+	Kind   wire.Kind   // of its section; what the request gives in its place where it could not be read or is none that there is
 
 	Fingerprint string // of the request; empty where it was not asked for
 
@@ -101,16 +102,16 @@ func (o *Options) limits() *wire.Limits {
 // Run is the path that every operation takes: decode into request, solve it, and look whether all numbers of the answer are some.
 func Run(name string, body []byte, options Options, request wire.Request, common *wire.Common, solve func() (wire.Answer, *wire.Problem)) (Solved, *wire.Problem) {
 	if problem := wire.Decode(body, options.Units, options.limits(), request); problem != nil {
-		return Solved{ID: common.ID}, problem
+		return Solved{ID: common.ID, Kind: request.SectionKind()}, problem
 	}
 	answer, problem := solve()
 	if problem != nil {
-		return Solved{ID: common.ID}, problem
+		return Solved{ID: common.ID, Kind: request.SectionKind()}, problem
 	}
 	if what := answer.NonFinite(); what != "" {
-		return Solved{ID: common.ID}, wire.NonFiniteResult("The calculation ended, but " + what + " came out infinite or as no number; nothing is given rather than that.")
+		return Solved{ID: common.ID, Kind: request.SectionKind()}, wire.NonFiniteResult("The calculation ended, but " + what + " came out infinite or as no number; nothing is given rather than that.")
 	}
-	solved := Solved{Answer: answer, Units: common.System, ID: common.ID, body: body, defaultUnits: options.Units, limits: options.limits()}
+	solved := Solved{Answer: answer, Units: common.System, ID: common.ID, Kind: request.SectionKind(), body: body, defaultUnits: options.Units, limits: options.limits()}
 	if options.Fingerprint {
 		solved.Fingerprint = wire.Fingerprint(name, body, solved.Units)
 		answer.SetFingerprint(solved.Fingerprint)

@@ -78,6 +78,8 @@ func TestFaultyAnswers(t *testing.T) {
 	text := string(r.send("GET", "/metrics", "").body)
 	for _, series := range []string{
 		`leat_refusals_total{problem="non_finite_result"} 2`,
+		`leat_solves_total{kind="rectangular",operation="section",outcome="result"} 6`, // what cannot be written is solved
+		`leat_solves_total{kind="rectangular",operation="section",outcome="problem"} 4`,
 		`leat_refusals_total{problem="internal_error"} 1`,
 		`leat_bulk_lines_total{operation="section",outcome="result"} 2`,
 		`leat_bulk_lines_total{operation="section",outcome="problem"} 3`,

@@ -72,8 +72,8 @@ func newMetrics(build Build, spoolBytes, heldBytes, connections func() int64, a 
 		}, []string{"route"}),
 		solves: prometheus.NewCounterVec(prometheus.CounterOpts{
 			Name: "leat_solves_total",
-			Help: "Requests and bulk lines that were handed to an operation, by operation and outcome.",
-		}, []string{"operation", "outcome"}),
+			Help: "Requests and bulk lines that were handed to an operation, by operation, kind of section and outcome.",
+		}, []string{"operation", "kind", "outcome"}),
 		refusals: prometheus.NewCounterVec(prometheus.CounterOpts{
 			Name: "leat_refusals_total",
 			Help: "Whole requests refused, by the kind of the problem; refused bulk lines are counted in leat_bulk_lines_total.",
@@ -182,9 +182,11 @@ func (m *metrics) prepare(routes []route, operations []string) {
 		m.refusals.WithLabelValues(kind)
 	}
 	for _, name := range operations {
-		for _, outcome := range []string{outcomeResult, outcomeProblem, outcomePanic} {
-			m.solves.WithLabelValues(name, outcome)
+		for _, kind := range solveKinds(name) {
+			m.solves.WithLabelValues(name, string(kind), outcomeResult)
+			m.solves.WithLabelValues(name, string(kind), outcomeProblem)
 		}
+		m.solves.WithLabelValues(name, string(unknownKind), outcomePanic)
 		m.lines.WithLabelValues(name, outcomeResult)
 		m.lines.WithLabelValues(name, outcomeProblem)
 	}

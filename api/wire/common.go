@@ -21,12 +21,17 @@ func (c *Common) common() *Common { return c }
 // work is that of a request whose sizes do not matter.
 func (c *Common) work() (units float64, member string) { return 0, "" }
 
+// SectionKind is that of a request without a section.
+func (c *Common) SectionKind() Kind { return "" }
+
 // Request is what Decode fills: a pointer to a struct that embeds Common.
 type Request interface {
 	common() *Common
 	// work estimates, from the sizes of a request that keeps all other rules, what its solve costs; one unit is about a microsecond of a
 	// processor. It names the member that most of it is due to.
 	work() (units float64, member string)
+	// SectionKind is the kind of the request's section, or whatever stands in its place where the request breaks that rule.
+	SectionKind() Kind
 }
 
 // Barrelled holds the member that stands beside every section.
