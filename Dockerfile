@@ -6,7 +6,7 @@
 # The build fetches Go modules; the running container needs no network but its own port. What needs no container either:
 # CGO_ENABLED=0 go build -trimpath -tags nomsgpack ./cmd/leat
 #
-# The same commit gives the same binary, and with the builder told to forget the time the same image: .ci/long image.
+# The same commit gives the same binary: .ci/long reproducible.
 
 # Any image with this Go and a shell will do.
 ARG GO_IMAGE=golang:1.26
