@@ -11,6 +11,8 @@ type Rendering struct {
 	MediaType string
 	// ContentType is MediaType with its parameters.
 	ContentType string
+	// Policy is the Content-Security-Policy of this form, where it is not that of all answers.
+	Policy string
 	// Append appends the answer in this form. On failure it returns dst unchanged and the problem that says why this answer cannot be given so.
 	Append func(dst []byte, solved *operation.Solved) ([]byte, *wire.Problem)
 }
@@ -19,10 +21,10 @@ type Rendering struct {
 func Renderings(op *operation.Operation) []Rendering {
 	var out []Rendering
 	if _, ok := op.Form.(wire.Tabular); ok {
-		out = append(out, Rendering{"text/csv", "text/csv; charset=utf-8; header=present", appendTable})
+		out = append(out, Rendering{MediaType: "text/csv", ContentType: "text/csv; charset=utf-8; header=present", Append: appendTable})
 	}
 	if _, ok := op.Form.(wire.Placed); ok {
-		out = append(out, Rendering{"application/geo+json", "application/geo+json", appendPlaces})
+		out = append(out, Rendering{MediaType: "application/geo+json", ContentType: "application/geo+json", Append: appendPlaces})
 	}
 	return out
 }

@@ -70,6 +70,9 @@ type Solved struct {
 	profile      *profileRun
 }
 
+// Request returns the request as it came: a part of its body, and no longer there than that.
+func (s *Solved) Request() []byte { return s.body }
+
 // AppendJSON appends the answer object, with the id inside it or without.
 func (s *Solved) AppendJSON(dst []byte, inside bool) []byte {
 	if !inside {

@@ -2,6 +2,7 @@ package serve
 
 import (
 	"net/http"
+	"slices"
 	"sync"
 	"time"
 
@@ -11,6 +12,7 @@ import (
 	"leat/api/format"
 	"leat/api/operation"
 	"leat/api/picture"
+	"leat/api/record"
 	"leat/api/wire"
 )
 
@@ -41,7 +43,7 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 	if op.Long {
 		limit = bodyLimit{"profile_body_bytes", s.config.ProfileBytes}
 	}
-	forms := append(format.Renderings(op), picture.Renderings(op)...)
+	forms := slices.Concat(format.Renderings(op), picture.Renderings(op), record.Renderings(op))
 	offers := []string{mediaJSON}
 	for i := range forms {
 		offers = append(offers, forms[i].MediaType)
@@ -87,6 +89,11 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 		if problem != nil {
 			s.writeProblem(c, problem)
 			return
+		}
+		for i := range forms {
+			if forms[i].MediaType == accepted && forms[i].Policy != "" {
+				c.Writer.Header()["Content-Security-Policy"] = []string{forms[i].Policy}
+			}
 		}
 		s.send(c, media, answer)
 	}
