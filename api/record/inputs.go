@@ -3,6 +3,8 @@ package record
 import (
 	"encoding/json"
 	"fmt"
+	"slices"
+	"strings"
 
 	"leat/api/wire"
 	"leat/compute"
@@ -109,6 +111,7 @@ func listInputs(out *[]input, place, parent string, n node, system wire.System) 
 func rowInput(place, member string, list any, system wire.System) input {
 	in := input{Name: place}
 	all, _ := list.(items)
+	var givenUnits, usedUnits []string
 	for i, n := range all {
 		at := -1
 		if _, tuple := quantityOf(member, i); tuple {
@@ -118,20 +121,28 @@ func rowInput(place, member string, list any, system wire.System) input {
 		if literal, isNumber := n.value.(json.Number); isNumber {
 			inSI = used(member, at, literal, system)
 		}
-		separator := "; "
-		if i == 0 {
-			separator = ""
+		if i > 0 {
+			in.Given += "; "
+			in.Used += "; "
 		}
-		in.Given += separator + given
-		in.Used += separator + inSI
-		if at >= 0 {
-			in.GivenUnit += separator + unit(system, member, at)
-			in.UsedUnit += separator + unit(wire.SI, member, at)
-		} else {
-			in.GivenUnit, in.UsedUnit = unit(system, member, -1), unit(wire.SI, member, -1)
+		in.Given += given
+		in.Used += inSI
+		if _, isNumber := n.value.(json.Number); isNumber {
+			givenUnits = append(givenUnits, unit(system, member, at))
+			usedUnits = append(usedUnits, unit(wire.SI, member, at))
 		}
 	}
+	in.GivenUnit = strings.Join(once(givenUnits), "; ")
+	in.UsedUnit = strings.Join(once(usedUnits), "; ")
 	return in
+}
+
+// once returns one unit where all are the same.
+func once(units []string) []string {
+	if len(units) > 1 && !slices.ContainsFunc(units, func(u string) bool { return u != units[0] }) {
+		return units[:1]
+	}
+	return units
 }
 
 // used returns a number of the request in SI.

@@ -271,7 +271,7 @@ func TestStepsComeOut(t *testing.T) {
 				want = n[0] * n[1] * math.Sqrt(n[2])
 			case "velocity head":
 				want = n[0] * n[1] * n[1] / (n[2] * n[3])
-			case "froude number":
+			case "Froude number":
 				want = math.Sqrt(n[0] * n[1] * n[1] * n[2] / (n[3] * n[4] * cosine(5)))
 			case "specific energy":
 				want = n[0]*cosine(1) + n[3]

@@ -107,5 +107,7 @@ func (n node) text() string {
 	return "none"
 }
 
+var spelt = strings.NewReplacer("_", " ", "froude", "Froude", "vedernikov", "Vedernikov")
+
 // words returns a name as people read it.
-func words(name string) string { return strings.ReplaceAll(name, "_", " ") }
+func words(name string) string { return spelt.Replace(name) }
