@@ -56,6 +56,15 @@ var byMember = []struct {
 	{"greatest_vedernikov_number", method{"Vedernikov number", "(A/K dK/dA − 1) F", "V. V. Vedernikov (1945); " + chow + "section 8-8"}},
 }
 
+// ofKind are the equations of sections that can be followed by hand; m is a side slope, b the bottom width, d the diameter.
+var ofKind = map[string]method{
+	"rectangular": {"Rectangle", "A = b y, P = b + 2 y, T = b", chow + "table 2-1"},
+	"trapezoidal": {"Trapezoid", "A = (b + (m1 + m2) y/2) y, P = b + y (√(1 + m1²) + √(1 + m2²)), T = b + (m1 + m2) y", chow + "table 2-1"},
+	"triangular":  {"Triangle", "A = (m1 + m2) y²/2, P = y (√(1 + m1²) + √(1 + m2²)), T = (m1 + m2) y", chow + "table 2-1"},
+	"circular":    {"Circle", "φ = 2 arccos(1 − 2 y/d), A = d² (φ − sin φ)/8, P = φ d/2, T = d sin(φ/2)", chow + "table 2-1"},
+	"earth":       {"Permissible velocity of earth", "table of soils", "S. Fortier and F. C. Scobey (1926); " + chow + "table 7-3"},
+}
+
 // methods lists what was done for an answer, with the laws that its request uses.
 func methods(name string, request node) []method {
 	section := method{"Section", "A, P, T and z of the kind by geometry, exact for its shape", chow + "section 2-3 and table 2-1"}
@@ -64,6 +73,12 @@ func methods(name string, request node) []method {
 	each(request, func(n node) {
 		if n.value != nil {
 			held[n.key] = true
+		}
+	})
+	each(request, func(n node) {
+		kind, _ := n.value.(string)
+		if m, known := ofKind[kind]; known && n.key == "kind" && !slices.Contains(out, m) {
+			out = append(out, m)
 		}
 	})
 	for _, row := range byMember {
