@@ -52,10 +52,6 @@ func (l *list) area(p *pen, points ...point) {
 	}
 }
 
-func (l *list) box(p *pen, x, y, w, h float64) {
-	l.area(p, point{x, y}, point{x + w, y}, point{x + w, y + h}, point{x, y + h})
-}
-
 // The sizes of text.
 const (
 	small   = 11.0
