@@ -1,6 +1,7 @@
 package serve
 
 import (
+	"context"
 	"net/http"
 	"slices"
 	"sync"
@@ -64,7 +65,12 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 		}
 		slot := s.admission.hold(class)
 		defer s.admission.put(class, slot)
-		options.Begin = checkpoints(c.Request.Context(), s.config.TimeLimit, func(int) *admit.Hold { return slot })
+		// A client that closed its own direction looks like one gone. Only long solves are worth ending for that: a short one's answer is there at once.
+		patience := context.Background()
+		if op.Long {
+			patience = c.Request.Context()
+		}
+		options.Begin = checkpoints(patience, s.config.TimeLimit, func(int) *admit.Hold { return slot })
 		if len(c.Request.TransferEncoding) > 0 {
 			// net/http hides a Content-Length beside chunks. A proxy that went by it would see other requests on
 			// this connection than we do, so there must be no further ones (RFC 9112, 6.3).
@@ -82,7 +88,7 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 		defer body.release()
 		buffer := s.answers.get()
 		defer s.answers.put(buffer)
-		answer, media, problem := s.solve(c, slot, func() ([]byte, []string, *wire.Problem) {
+		answer, media, problem := s.solve(c, patience, slot, func() ([]byte, []string, *wire.Problem) {
 			return answerAs(op, forms, accepted, (*buffer)[:0], body.bytes, options)
 		})
 		*buffer = answer
@@ -99,10 +105,10 @@ func (s *Server) unary(op *operation.Operation) gin.HandlerFunc {
 	}
 }
 
-// solve has a request solved when there is a slot, which it gives back, after a panic too.
-func (s *Server) solve(c *gin.Context, slot *admit.Hold, solve func() ([]byte, []string, *wire.Problem)) ([]byte, []string, *wire.Problem) {
+// solve has a request solved when there is a slot, which it gives back, after a panic too. It waits for one until patience ends.
+func (s *Server) solve(c *gin.Context, patience context.Context, slot *admit.Hold, solve func() ([]byte, []string, *wire.Problem)) ([]byte, []string, *wire.Problem) {
 	began := time.Now()
-	if err := slot.Acquire(c.Request.Context()); err != nil {
+	if err := slot.Acquire(patience); err != nil {
 		return nil, nil, s.noSlot(c, err)
 	}
 	defer slot.Release()
