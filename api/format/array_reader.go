@@ -6,6 +6,7 @@ import (
 	"io"
 
 	"leat/api/stream"
+	"leat/api/wellformed"
 	"leat/api/wire"
 )
 
@@ -124,7 +125,7 @@ func (a *itemReader) Ready() bool { return a.ended || a.find() || a.err != nil }
 // Position is the item that comes next.
 func (a *itemReader) Position() int64 { return a.record }
 
-func isBlankJSON(data []byte) bool { return skipSpace(data, 0) == len(data) }
+func isBlankJSON(data []byte) bool { return wellformed.SkipSpace(data, 0) == len(data) }
 
 // An arrayReader finds the items of a body that is one JSON array.
 type arrayReader struct {

@@ -7,6 +7,7 @@ import (
 	"github.com/go-json-experiment/json/jsontext"
 
 	"leat/api/stream"
+	"leat/api/wellformed"
 	"leat/api/wire"
 )
 
@@ -85,7 +86,7 @@ func tooLongCollection(limit int) *wire.Problem {
 // findFeatures returns where, after its bracket, the list of features of a collection begins; 0 where more of the collection is needed, and a
 // clause where it cannot be one.
 func findFeatures(head []byte) (end int, clause string) {
-	i := skipSpace(head, 0)
+	i := wellformed.SkipSpace(head, 0)
 	if i == len(head) {
 		return 0, ""
 	}
@@ -98,7 +99,7 @@ func findFeatures(head []byte) (end int, clause string) {
 	default:
 		return 0, collectionWanted
 	}
-	i = skipSpace(head, i+1)
+	i = wellformed.SkipSpace(head, i+1)
 	for {
 		if i >= len(head) {
 			return 0, ""
@@ -110,15 +111,15 @@ func findFeatures(head []byte) (end int, clause string) {
 			return 0, notJSON
 		}
 		start := i
-		i = skipString(head, i)
+		i = wellformed.SkipString(head, i)
 		name := head[start:i]
-		if i = skipSpace(head, i); i >= len(head) {
+		if i = wellformed.SkipSpace(head, i); i >= len(head) {
 			return 0, ""
 		}
 		if head[i] != ':' {
 			return 0, notJSON
 		}
-		if i = skipSpace(head, i+1); i >= len(head) {
+		if i = wellformed.SkipSpace(head, i+1); i >= len(head) {
 			return 0, ""
 		}
 		if string(name) == `"features"` {
@@ -128,16 +129,16 @@ func findFeatures(head []byte) (end int, clause string) {
 			return i + 1, ""
 		}
 		value := i
-		i = skipValue(head, i)
+		i = wellformed.SkipValue(head, i)
 		if string(name) == `"type"` && i < len(head) && string(head[value:i]) != `"FeatureCollection"` {
 			return 0, "the type of the collection must be FeatureCollection; " + collectionWanted
 		}
-		if i = skipSpace(head, i); i >= len(head) {
+		if i = wellformed.SkipSpace(head, i); i >= len(head) {
 			return 0, ""
 		}
 		switch head[i] {
 		case ',':
-			i = skipSpace(head, i+1)
+			i = wellformed.SkipSpace(head, i+1)
 		case '}':
 		default:
 			return 0, notJSON
@@ -177,7 +178,7 @@ func (f *featureReader) close() error {
 		return refuseJSON("syntax_error", "the collection is not well-formed JSON after its features")
 	}
 	isCollection := false
-	eachMember(whole, func(name, value []byte, _, _ int) {
+	wellformed.Each(whole, func(name, value []byte, _, _ int) {
 		isCollection = isCollection || string(name) == `"type"` && string(value) == `"FeatureCollection"`
 	})
 	if !isCollection {
@@ -201,13 +202,13 @@ func (f *featureReader) read(r *request, record []byte) {
 		r.problem, r.id = malformed(record, f.b), findID(record, "id")
 		return
 	}
-	if record[skipSpace(record, 0)] != '{' {
+	if record[wellformed.SkipSpace(record, 0)] != '{' {
 		r.problem = wire.InvalidRequest(wire.Fault{Code: "not_an_object", Detail: "A feature must be an object."})
 		return
 	}
 	p := featureParts{record: record, end: bytes.LastIndexByte(record, '}')}
 	isFeature := false
-	eachMember(record, func(name, value []byte, from, to int) {
+	wellformed.Each(record, func(name, value []byte, from, to int) {
 		p.members++
 		switch string(name) {
 		case `"type"`:

@@ -6,6 +6,7 @@ import (
 	"github.com/go-json-experiment/json/jsontext"
 
 	"leat/api/stream"
+	"leat/api/wellformed"
 	"leat/api/wire"
 )
 
@@ -26,7 +27,7 @@ func (r *request) readJSON(b *Bulk, record []byte) {
 	switch {
 	case !jsontext.Value(record).IsValid():
 		r.problem, r.id = malformed(record, b), findID(record, b.choice.Prefix+"id")
-	case record[skipSpace(record, 0)] != '{':
+	case record[wellformed.SkipSpace(record, 0)] != '{':
 		r.problem = wire.InvalidRequest(wire.Fault{Code: "not_an_object", Detail: "A record must be an object, one for each request."})
 	default:
 		r.readMembers(b, record)

@@ -155,6 +155,9 @@ var aside = map[string]func(importer string) bool{
 		return importer == "api/format" || importer == "api/serve" || strings.HasPrefix(importer, "cmd/")
 	},
 	"api/admit": func(importer string) bool { return importer == "api/serve" || strings.HasPrefix(importer, "cmd/") },
+	"api/wellformed": func(importer string) bool {
+		return importer == "api/format" || importer == "cmd/internal/register/geojson"
+	},
 	"openapi": func(importer string) bool {
 		return importer == "api/serve" || importer == "api/site" || importer == "cmd/leat"
 	},
@@ -221,7 +224,7 @@ func TestImportsPointOneWay(t *testing.T) {
 // What the packages of leat register may import of ours. None of them knows HTTP.
 var ofRegister = map[string][]string{
 	"row": {}, "wholefile": {}, "store": {"row"},
-	"csvfile": {"row", "store", "wholefile"}, "geojson": {"row", "store", "wholefile", "csvfile"},
+	"csvfile": {"row", "store", "wholefile"}, "geojson": {"row", "store", "wholefile", "csvfile", "api/wellformed"},
 	"geopackage": {"row", "store", "cmd/internal/geopackage"}, "postgres": {"row", "store"},
 	"mapping": {"row", "store", "api/wire", "api/operation"},
 	"run":     {"row", "store", "mapping", "api/wire", "api/operation", "compute"},

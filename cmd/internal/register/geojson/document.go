@@ -9,6 +9,8 @@ import (
 	"os"
 
 	"github.com/go-json-experiment/json/jsontext"
+
+	"leat/api/wellformed"
 )
 
 // A document is an open feature collection, read one feature at a time.
@@ -127,68 +129,6 @@ func members(object jsontext.Value, found func(name string, value jsontext.Value
 	if object.Kind() != '{' {
 		return errors.New("not an object")
 	}
-	at := skipSpace(object, 1)
-	for at < len(object) && object[at] == '"' {
-		end := textEnd(object, at)
-		name, err := jsontext.AppendUnquote(nil, object[at:end])
-		if err != nil {
-			return err
-		}
-		at = skipSpace(object, end)
-		at = skipSpace(object, at+1) // the colon
-		end = valueEnd(object, at)
-		found(string(name), object[at:end])
-		at = skipSpace(object, end)
-		if at < len(object) && object[at] == ',' {
-			at = skipSpace(object, at+1)
-		}
-	}
+	wellformed.Each(object, func(name, value []byte, _, _ int) { found(wellformed.Name(name), value) })
 	return nil
-}
-
-// The three functions below go over JSON that the decoder has found sound.
-
-func skipSpace(b []byte, at int) int {
-	for at < len(b) && (b[at] == ' ' || b[at] == '\n' || b[at] == '\r' || b[at] == '\t') {
-		at++
-	}
-	return at
-}
-
-func textEnd(b []byte, at int) int {
-	for at++; at < len(b) && b[at] != '"'; at++ {
-		if b[at] == '\\' {
-			at++
-		}
-	}
-	return at + 1
-}
-
-func valueEnd(b []byte, at int) int {
-	depth := 0
-	for at < len(b) {
-		switch b[at] {
-		case '"':
-			at = textEnd(b, at)
-			if depth == 0 {
-				return at
-			}
-			continue
-		case '{', '[':
-			depth++
-		case '}', ']':
-			if depth == 0 {
-				return at
-			}
-			if depth--; depth == 0 {
-				return at + 1
-			}
-		case ',', ' ', '\n', '\r', '\t':
-			if depth == 0 {
-				return at
-			}
-		}
-		at++
-	}
-	return at
 }
