@@ -5,6 +5,7 @@ import (
 	"slices"
 
 	"leat/compute/flow"
+	"leat/compute/solve"
 )
 
 // collocation integrates a varying stretch panel by panel: on each the derivative is a polynomial that satisfies the equation at the Gauss points
@@ -503,17 +504,11 @@ func (c *collocation) stopAtBreak(p panel) (panel, bool) {
 
 // crossing returns the distance from its start at which a panel over chainage passes a depth.
 func (p *panel) crossing(depth float64) float64 {
-	lo, hi := -1.0, 1.0
-	for range 60 {
-		t := lo + (hi-lo)/2
+	before, _ := solve.Turn(func(t float64) bool {
 		rise, _ := p.s.at(t)
-		if (p.y0+rise-depth)*(p.y1-depth) > 0 {
-			hi = t
-		} else {
-			lo = t
-		}
-	}
-	return math.Abs(p.x1-p.x0) * (lo + 1) / 2
+		return !((p.y0+rise-depth)*(p.y1-depth) > 0)
+	}, -1, 1)
+	return math.Abs(p.x1-p.x0) * (before + 1) / 2
 }
 
 // crossed returns the first break that a panel passes on its way.

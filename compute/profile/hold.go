@@ -47,15 +47,8 @@ func (l *ledge) leaves(share, distance float64) (at float64, out bool) {
 	if inside(distance) {
 		return 0, false
 	}
-	lo, hi := 0.0, distance
-	for range 60 {
-		if middle := lo + (hi-lo)/2; inside(middle) {
-			lo = middle
-		} else {
-			hi = middle
-		}
-	}
-	return hi, true
+	_, at = solve.Turn(inside, 0, distance)
+	return at, true
 }
 
 // edge returns the depth that stands for a side of a break, by its last places: such that the next depth towards the break's other side is still on this one.
@@ -117,14 +110,7 @@ func (c *collocation) pushedBack(b float64) bool {
 	for i := 1; i <= parts; i++ {
 		x := c.x + (c.far-c.x)*float64(i)/parts
 		if free(x) {
-			for range 60 {
-				if middle := last + (x-last)/2; free(middle) {
-					x = middle
-				} else {
-					last = middle
-				}
-			}
-			to = x
+			_, to = solve.Turn(func(x float64) bool { return !free(x) }, last, x)
 			break
 		}
 		last = x
